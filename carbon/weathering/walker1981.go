@@ -1,0 +1,44 @@
+package weathering
+
+import (
+	"math"
+
+	"cycle/carbon/cite"
+	"cycle/carbon/units"
+)
+
+// Walker1981 is the law of Walker, Hays & Kasting (1981):
+//
+//	W/W₀ = (p/p₀)^β · exp((T − T₀)/Tₑ)
+//
+// W is the global silicate weathering flux, p the CO₂ partial pressure, T the
+// global mean surface temperature; subscript 0 is the reference state. The
+// paper has β = 0.3, Tₑ = 13.7 K and T₀ = 285 K; here T₀ is that of the
+// scenario. It knows no runoff and no supply limit.
+type Walker1981 struct {
+	Beta float64 // β
+	Te   float64 // Tₑ, K
+	t0   float64 // T₀, K
+}
+
+func newWalker1981() Law { return &Walker1981{Beta: 0.3, Te: 13.7} }
+
+// Relative returns W/W₀.
+func (l *Walker1981) Relative(e *Env) float64 {
+	return math.Exp(l.Beta*e.LnP + (e.T-l.t0)/l.Te)
+}
+
+// Fields lists β and Tₑ.
+func (l *Walker1981) Fields() []units.Field {
+	ref := cite.Ref{Work: cite.Walker1981, Trust: cite.Checked}
+	return []units.Field{
+		{Key: "exponent", Min: 0, Max: 2, Published: units.Range{Lo: 0.1, Hi: 0.5}, Doc: "exponent β of the CO2 pressure", Source: ref, Value: &l.Beta},
+		{Key: "efold", Kind: units.Interval, Unit: "K", Min: 2, Max: 200, Published: units.Range{Lo: 10, Hi: 40}, Doc: "warming Tₑ that multiplies weathering by e", Source: ref, Value: &l.Te},
+	}
+}
+
+// Bind fixes T₀.
+func (l *Walker1981) Bind(ref Reference) error { l.t0 = ref.T; return nil }
+
+// Range is not stated in the paper.
+func (l *Walker1981) Range() Range { return Range{} }
