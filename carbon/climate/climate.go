@@ -71,6 +71,13 @@ type AlbedoEntry struct {
 	New    func() Albedo
 }
 
+// Radiations lists the laws of outgoing radiation; the first is the default. To
+// add a law, write its file and add its row.
+var Radiations = []RadiationEntry{
+	{"kadoya2019", "fit to a radiative-convective model, 150-350 K and up to 10 bar of CO2", "F = −3.1 + X B Yᵀ,  X = [1, ξ, …, ξ⁶],  Y = [1, y, …, y⁴],  ξ = 0.01 (T − 250),  y = 0.2 log₁₀ p (p < 1 bar), log₁₀ p (p ≥ 1 bar)", []cite.Ref{{Work: cite.KadoyaTajika2019, Where: "appendix", Trust: cite.Checked}}, newKadoya2019},
+	{"williams1997", "fit to a radiative-convective model with weak CO2 forcing", "F = Σᵢⱼ cᵢⱼ φⁱ Tʲ,  φ = ln(p/3.3e-4 bar)", []cite.Ref{{Work: cite.WilliamsKasting1997, Where: "appendix", Trust: cite.Checked}}, newWilliams1997},
+}
+
 // Albedos lists the albedo laws; the first is the default.
 var Albedos = []AlbedoEntry{
 	{"ramp", "smooth ice-albedo ramp under a Rayleigh layer that grows with CO2", "A = 1 − (1 − r)(1 − a)/(1 − r a),  a = a_w + (a_i − a_w)·½[1 − tanh((T − T_c)/w)],  r = ρp/(1 + ρp)", []cite.Ref{{Work: cite.North1975, Note: "albedo over ice", Trust: cite.Memory}, cite.Own("shape of the ramp")}, newRamp},
@@ -102,9 +109,9 @@ func (l *Ramp) IceFraction(t float64) float64 {
 
 // Planetary returns A.
 func (l *Ramp) Planetary(t, p float64) float64 {
-	a := l.Warm + (l.Ice-l.Warm)*l.IceFraction(t)
-	r := l.Rayleigh * p / (1 + l.Rayleigh*p)
-	return 1 - (1-r)*(1-a)/(1-r*a)
+	b := 1 - l.Warm - (l.Ice-l.Warm)*l.IceFraction(t) // 1 − a
+	// (1 − r)(1 − a)/(1 − r a) with r = x/(1 + x), x = ρp
+	return 1 - b/(1+l.Rayleigh*p*b)
 }
 
 // Free is the albedo without ice.
