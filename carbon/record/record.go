@@ -198,9 +198,9 @@ type Run struct {
 	Solver      Solver    `json:"solver"`
 	Laws        []Law     `json:"laws"`
 	Warnings    []Warning `json:"warnings"`
-	Inputs      []Input   `json:"inputs"`
+	Inputs      []Input   `json:"-"`
 	Works       []Work    `json:"works"`
-	Command     string    `json:"command"` // that repeats the run
+	Command     string    `json:"-"` // that repeats the run
 
 	ReferenceAgeGyr float64 `json:"reference_age_gyr"`
 	Rows            []Row   `json:"-"` // the history, in order of age

@@ -241,3 +241,20 @@ func (f *Field) Check(value float64) error {
 	}
 	return nil
 }
+
+// Option is a key whose value is one of a few words.
+type Option struct {
+	Key     string
+	Doc     string
+	Allowed []string
+	Source  cite.Ref
+	Value   *string
+}
+
+// Flag is a key that is true or false.
+type Flag struct {
+	Key    string
+	Doc    string
+	Source cite.Ref
+	Value  *bool
+}

@@ -1,0 +1,167 @@
+package outgas
+
+import (
+	"encoding/csv"
+	"errors"
+	"fmt"
+	"io"
+	"math"
+	"strconv"
+	"strings"
+
+	"gonum.org/v1/gonum/interp"
+
+	"cycle/carbon/cite"
+	"cycle/carbon/units"
+)
+
+// prescribed gives a total flux from the mantle and lets both carbonate
+// reservoirs return to the mantle at their reference turnover, so that carbon
+// is conserved.
+type prescribed struct {
+	turnover
+	total float64 // F₀, mol/yr
+}
+
+func (l *prescribed) Bind(ref Reference) error {
+	l.total = ref.Total()
+	return l.bind(ref)
+}
+
+func (l *prescribed) fluxes(in *Input, relative float64) Fluxes {
+	return Fluxes{
+		Ridge:     relative * l.total * in.Area * in.Scale,
+		Subducted: in.Seafloor / l.Tau,
+		Foundered: in.Continental * l.meta,
+	}
+}
+
+// Steady is a constant outgassing, F = F₀.
+type Steady struct{ prescribed }
+
+func newSteady() Law { return &Steady{prescribed{turnover: newTurnover()}} }
+
+// Fields lists the subduction time.
+func (l *Steady) Fields() []units.Field { return l.fields() }
+
+// Fluxes returns the fluxes.
+func (l *Steady) Fluxes(in *Input) Fluxes { return l.fluxes(in, 1) }
+
+// PowerLaw is outgassing that declines with the heat flow Q of Krissansen-Totton,
+// Arney & Catling (2018):
+//
+//	F = F₀ Q^m,  Q = (1 − τ/4.5 Gyr)^(−n)
+//
+// with τ the time before present, so that Q = (t/t₀)^(−n) in age t; t₀ is the
+// reference age here. Held below 0.05 t₀, where it is singular.
+type PowerLaw struct {
+	prescribed
+	N, M float64
+	t0   float64 // yr
+}
+
+func newPowerLaw() Law {
+	return &PowerLaw{prescribed: prescribed{turnover: newTurnover()}, N: 0.365, M: 1.5}
+}
+
+// Fields lists n and m.
+func (l *PowerLaw) Fields() []units.Field {
+	return append([]units.Field{
+		{Key: "heat_exponent", Min: 0, Max: 2, Published: units.Range{Lo: 0, Hi: 0.73}, Doc: "exponent n of the decline of heat flow", Source: cite.Ref{Work: cite.Lehmer2020, Note: "middle of the published range"}, Value: &l.N},
+		{Key: "outgassing_exponent", Min: 0, Max: 4, Published: units.Range{Lo: 1, Hi: 2}, Doc: "exponent m of outgassing against heat flow", Source: cite.Ref{Work: cite.Lehmer2020, Note: "middle of the published range"}, Value: &l.M},
+	}, l.fields()...)
+}
+
+// Bind fixes t₀.
+func (l *PowerLaw) Bind(ref Reference) error {
+	l.t0 = ref.Age
+	return l.prescribed.Bind(ref)
+}
+
+// Fluxes returns the fluxes.
+func (l *PowerLaw) Fluxes(in *Input) Fluxes {
+	x := math.Max(in.Age/l.t0, 0.05)
+	return l.fluxes(in, math.Exp(-l.N*l.M*math.Log(x)))
+}
+
+// Table is total outgassing from a user's CSV with the columns age_gyr and
+// outgassing_tmol_yr, of this planet (not scaled with its size), interpolated
+// monotonically and held at both ends.
+type Table struct {
+	prescribed
+	text     string
+	ages, vs []float64 // yr, mol/yr
+	curve    interp.FritschButland
+}
+
+func newTable() Law { return &Table{prescribed: prescribed{turnover: newTurnover()}} }
+
+// Fields lists the subduction time.
+func (l *Table) Fields() []units.Field { return l.fields() }
+
+// Text returns the CSV as loaded.
+func (l *Table) Text() *string { return &l.text }
+
+// Load reads the CSV.
+func (l *Table) Load(r io.Reader) error {
+	raw, err := io.ReadAll(io.LimitReader(r, 1<<20))
+	if err != nil {
+		return err
+	}
+	rd := csv.NewReader(strings.NewReader(string(raw)))
+	rd.TrimLeadingSpace = true
+	rd.Comment = '#'
+	rd.FieldsPerRecord = 2
+	var ages, vs []float64
+	header := true
+	for {
+		rec, err := rd.Read()
+		if errors.Is(err, io.EOF) {
+			break
+		}
+		if err != nil {
+			return err
+		}
+		line, _ := rd.FieldPos(0)
+		if header {
+			if rec[0] != "age_gyr" || rec[1] != "outgassing_tmol_yr" {
+				return fmt.Errorf("line %d: found header %q, allowed is \"age_gyr,outgassing_tmol_yr\"", line, strings.Join(rec, ","))
+			}
+			header = false
+			continue
+		}
+		a, err1 := strconv.ParseFloat(rec[0], 64)
+		v, err2 := strconv.ParseFloat(rec[1], 64)
+		if err1 != nil || err2 != nil || !(a >= 0 && a <= 20) || !(v >= 0 && v <= 1e4) {
+			return fmt.Errorf("line %d: found %q, allowed are an age of 0 to 20 Gyr and an outgassing of 0 to 10000 Tmol/yr", line, strings.Join(rec, ","))
+		}
+		if n := len(ages); n > 0 && a*1e9 <= ages[n-1] {
+			return fmt.Errorf("line %d: found age %s Gyr, allowed is more than the line before", line, rec[0])
+		}
+		ages, vs = append(ages, a*1e9), append(vs, v*1e12)
+	}
+	if len(ages) < 2 {
+		return errors.New("found fewer than two rows, allowed are two or more")
+	}
+	l.ages, l.vs, l.text = ages, vs, string(raw)
+	return nil
+}
+
+// Bind needs a loaded table.
+func (l *Table) Bind(ref Reference) error {
+	if len(l.ages) == 0 {
+		return errors.New("the law \"table\" needs a table of outgassing: set table_file")
+	}
+	if err := l.curve.Fit(l.ages, l.vs); err != nil {
+		return err
+	}
+	return l.prescribed.Bind(ref)
+}
+
+// Fluxes returns the fluxes.
+func (l *Table) Fluxes(in *Input) Fluxes {
+	a := math.Min(math.Max(in.Age, l.ages[0]), l.ages[len(l.ages)-1])
+	f := l.fluxes(in, 1)
+	f.Ridge = l.curve.Predict(a) * in.Scale
+	return f
+}
