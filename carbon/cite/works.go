@@ -35,22 +35,34 @@ var (
 		Title: "The role of plate tectonic-climate coupling and exposed land area in the development of habitable climates on rocky planets", Journal: "The Astrophysical Journal", Volume: "812", Pages: "36"}
 	FoleySmye2018 = &Work{Key: "foley2018", Authors: []string{"Foley, B. J.", "Smye, A. J."}, Year: 2018,
 		Title: "Carbon cycling and habitability of Earth-sized stagnant lid planets", Journal: "Astrobiology", Volume: "18", Pages: "873-896"}
+	Goldblatt2013 = &Work{Key: "goldblatt2013", Authors: []string{"Goldblatt, C.", "Robinson, T. D.", "Zahnle, K. J.", "Crisp, D."}, Year: 2013,
+		Title: "Low simulated radiation limit for runaway greenhouse climates", Journal: "Nature Geoscience", Volume: "6", Pages: "661-667"}
 	Gough1981 = &Work{Key: "gough1981", Authors: []string{"Gough, D. O."}, Year: 1981,
 		Title: "Solar interior structure and luminosity variations", Journal: "Solar Physics", Volume: "74", Pages: "21-34"}
 	GrahamPierrehumbert2020 = &Work{Key: "graham2020", Authors: []string{"Graham, R. J.", "Pierrehumbert, R."}, Year: 2020,
 		Title: "Thermodynamic and energetic limits on continental silicate weathering strongly impact the climate and habitability of wet, rocky worlds", Journal: "The Astrophysical Journal", Volume: "896", Pages: "115"}
 	HaqqMisra2016 = &Work{Key: "haqqmisra2016", Authors: []string{"Haqq-Misra, J.", "Kopparapu, R. K.", "Batalha, N. E.", "Harman, C. E.", "Kasting, J. F."}, Year: 2016,
 		Title: "Limit cycles can reduce the width of the habitable zone", Journal: "The Astrophysical Journal", Volume: "827", Pages: "120"}
+	Herzberg2010 = &Work{Key: "herzberg2010", Authors: []string{"Herzberg, C.", "Condie, K.", "Korenaga, J."}, Year: 2010,
+		Title: "Thermal history of the Earth and its petrological expression", Journal: "Earth and Planetary Science Letters", Volume: "292", Pages: "79-88"}
+	Hunten1973 = &Work{Key: "hunten1973", Authors: []string{"Hunten, D. M."}, Year: 1973,
+		Title: "The escape of light gases from planetary atmospheres", Journal: "Journal of the Atmospheric Sciences", Volume: "30", Pages: "1481-1494"}
 	Hurley2000 = &Work{Key: "hurley2000", Authors: []string{"Hurley, J. R.", "Pols, O. R.", "Tout, C. A."}, Year: 2000,
 		Title: "Comprehensive analytic formulae for stellar evolution as a function of mass and metallicity", Journal: "Monthly Notices of the Royal Astronomical Society", Volume: "315", Pages: "543-569"}
 	IAPWSIF97 = &Work{Key: "if97", Authors: []string{"Wagner, W.", "Cooper, J. R.", "Dittmann, A."}, Year: 2000,
 		Title: "The IAPWS Industrial Formulation 1997 for the thermodynamic properties of water and steam", Journal: "Journal of Engineering for Gas Turbines and Power", Volume: "122", Pages: "150-182"}
+	Jaupart2007 = &Work{Key: "jaupart2007", Authors: []string{"Jaupart, C.", "Labrosse, S.", "Mareschal, J.-C."}, Year: 2007,
+		Title: "Temperatures, heat and energy in the mantle of the Earth", Journal: "Treatise on Geophysics", Volume: "7", Pages: "253-303"}
 	KadoyaTajika2019 = &Work{Key: "kadoya2019", Authors: []string{"Kadoya, S.", "Tajika, E."}, Year: 2019,
 		Title: "Outer limits of the habitable zones in terms of climate mode and climate evolution of Earth-like planets", Journal: "The Astrophysical Journal", Volume: "875", Pages: "7"}
+	Kasting1988 = &Work{Key: "kasting1988", Authors: []string{"Kasting, J. F."}, Year: 1988,
+		Title: "Runaway and moist greenhouse atmospheres and the evolution of Earth and Venus", Journal: "Icarus", Volume: "74", Pages: "472-494"}
 	Kasting1993 = &Work{Key: "kasting1993", Authors: []string{"Kasting, J. F.", "Whitmire, D. P.", "Reynolds, R. T."}, Year: 1993,
 		Title: "Habitable zones around main sequence stars", Journal: "Icarus", Volume: "101", Pages: "108-128"}
 	Kasting1991 = &Work{Key: "kasting1991", Authors: []string{"Kasting, J. F."}, Year: 1991,
 		Title: "CO2 condensation and the climate of early Mars", Journal: "Icarus", Volume: "94", Pages: "1-13"}
+	KastingCatling2003 = &Work{Key: "kasting2003", Authors: []string{"Kasting, J. F.", "Catling, D."}, Year: 2003,
+		Title: "Evolution of a habitable planet", Journal: "Annual Review of Astronomy and Astrophysics", Volume: "41", Pages: "429-463"}
 	Kopparapu2013 = &Work{Key: "kopparapu2013", Authors: []string{"Kopparapu, R. K.", "Ramirez, R.", "Kasting, J. F.", "Eymet, V.", "Robinson, T. D.", "Mahadevan, S.", "Terrien, R. C.", "Domagal-Goldman, S.", "Meadows, V.", "Deshpande, R."}, Year: 2013,
 		Title: "Habitable zones around main-sequence stars: new estimates", Journal: "The Astrophysical Journal", Volume: "765", Pages: "131"}
 	Kopparapu2014 = &Work{Key: "kopparapu2014", Authors: []string{"Kopparapu, R. K.", "Ramirez, R. M.", "SchottelKotte, J.", "Kasting, J. F.", "Domagal-Goldman, S.", "Eymet, V."}, Year: 2014,
@@ -63,6 +75,8 @@ var (
 		Title: "Constraining climate sensitivity and continental versus seafloor weathering using an inverse geological carbon cycle model", Journal: "Nature Communications", Volume: "8", Pages: "15423"}
 	KrissansenTotton2018 = &Work{Key: "krissansentotton2018", Authors: []string{"Krissansen-Totton, J.", "Arney, G. N.", "Catling, D. C."}, Year: 2018,
 		Title: "Constraining the climate and ocean pH of the early Earth with a geological carbon cycle model", Journal: "Proceedings of the National Academy of Sciences", Volume: "115", Pages: "4105-4110"}
+	Leconte2013 = &Work{Key: "leconte2013", Authors: []string{"Leconte, J.", "Forget, F.", "Charnay, B.", "Wordsworth, R.", "Pottier, A."}, Year: 2013,
+		Title: "Increased insolation threshold for runaway greenhouse processes on Earth-like planets", Journal: "Nature", Volume: "504", Pages: "268-271"}
 	Lehmer2020 = &Work{Key: "lehmer2020", Authors: []string{"Lehmer, O. R.", "Catling, D. C.", "Krissansen-Totton, J."}, Year: 2020,
 		Title: "Carbonate-silicate cycle predictions of Earth-like planetary climates and testing the habitable zone concept", Journal: "Nature Communications", Volume: "11", Pages: "6153"}
 	Lueker2000 = &Work{Key: "lueker2000", Authors: []string{"Lueker, T. J.", "Dickson, A. G.", "Keeling, C. D."}, Year: 2000,
@@ -83,10 +97,16 @@ var (
 		Title: "Review of the vapour pressures of ice and supercooled water for atmospheric applications", Journal: "Quarterly Journal of the Royal Meteorological Society", Volume: "131", Pages: "1539-1565"}
 	Myhre1998 = &Work{Key: "myhre1998", Authors: []string{"Myhre, G.", "Highwood, E. J.", "Shine, K. P.", "Stordal, F."}, Year: 1998,
 		Title: "New estimates of radiative forcing due to well mixed greenhouse gases", Journal: "Geophysical Research Letters", Volume: "25", Pages: "2715-2718"}
+	Nakajima1992 = &Work{Key: "nakajima1992", Authors: []string{"Nakajima, S.", "Hayashi, Y.-Y.", "Abe, Y."}, Year: 1992,
+		Title: "A study on the \"runaway greenhouse effect\" with a one-dimensional radiative-convective equilibrium model", Journal: "Journal of the Atmospheric Sciences", Volume: "49", Pages: "2256-2266"}
 	North1975 = &Work{Key: "north1975", Authors: []string{"North, G. R."}, Year: 1975,
 		Title: "Theory of energy-balance climate models", Journal: "Journal of the Atmospheric Sciences", Volume: "32", Pages: "2033-2043"}
 	NorthCahalanCoakley1981 = &Work{Key: "north1981", Authors: []string{"North, G. R.", "Cahalan, R. F.", "Coakley, J. A."}, Year: 1981,
 		Title: "Energy balance climate models", Journal: "Reviews of Geophysics and Space Physics", Volume: "19", Pages: "91-121"}
+	IAU2015 = &Work{Key: "iau2015", Authors: []string{"Prša, A.", "Harmanec, P.", "Torres, G.", "Mamajek, E.", "Asplund, M.", "Capitaine, N.", "Christensen-Dalsgaard, J.", "Depagne, É.", "Haberreiter, M.", "Hekker, S.", "Hilton, J.", "Kopp, G.", "Kostov, V.", "Kurtz, D. W.", "Laskar, J.", "Mason, B. D.", "Milone, E. F.", "Montgomery, M.", "Richards, M.", "Schmutz, W.", "Schou, J.", "Stewart, S. G."}, Year: 2016,
+		Title: "Nominal values for selected solar and planetary quantities: IAU 2015 Resolution B3", Journal: "The Astronomical Journal", Volume: "152", Pages: "41"}
+	Pozzo2012 = &Work{Key: "pozzo2012", Authors: []string{"Pozzo, M.", "Davies, C.", "Gubbins, D.", "Alfè, D."}, Year: 2012,
+		Title: "Thermal and electrical conductivity of iron at Earth's core conditions", Journal: "Nature", Volume: "485", Pages: "355-358"}
 	RileyTongudai1967 = &Work{Key: "riley1967", Authors: []string{"Riley, J. P.", "Tongudai, M."}, Year: 1967,
 		Title: "The major cation/chlorinity ratios in sea water", Journal: "Chemical Geology", Volume: "2", Pages: "263-269"}
 	Rowley2002 = &Work{Key: "rowley2002", Authors: []string{"Rowley, D. B."}, Year: 2002,
@@ -103,6 +123,8 @@ var (
 		Title: "Zero-age main-sequence radii and luminosities as analytic functions of mass and metallicity", Journal: "Monthly Notices of the Royal Astronomical Society", Volume: "281", Pages: "257-262"}
 	TurcotteSchubert2002 = &Work{Key: "turcotte2002", Authors: []string{"Turcotte, D. L.", "Schubert, G."}, Year: 2002,
 		Title: "Geodynamics", Journal: "Cambridge University Press", Kind: "book"}
+	Uppstrom1974 = &Work{Key: "uppstrom1974", Authors: []string{"Uppström, L. R."}, Year: 1974,
+		Title: "The boron/chlorinity ratio of deep-sea water from the Pacific Ocean", Journal: "Deep-Sea Research", Volume: "21", Pages: "161-162"}
 	WagnerPruss2002 = &Work{Key: "wagner2002", Authors: []string{"Wagner, W.", "Pruß, A."}, Year: 2002,
 		Title: "The IAPWS Formulation 1995 for the thermodynamic properties of ordinary water substance for general and scientific use", Journal: "Journal of Physical and Chemical Reference Data", Volume: "31", Pages: "387-535"}
 	Walker1981 = &Work{Key: "walker1981", Authors: []string{"Walker, J. C. G.", "Hays, P. B.", "Kasting, J. F."}, Year: 1981,

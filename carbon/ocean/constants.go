@@ -1,0 +1,187 @@
+package ocean
+
+import (
+	"math"
+
+	"cycle/carbon/cite"
+	"cycle/carbon/units"
+)
+
+// Constants are the equilibrium constants of seawater at one temperature, in
+// mol/kg and on the total pH scale.
+type Constants struct {
+	K0      float64 // [CO₂]/pCO₂, mol/kg/atm
+	K1      float64 // [H⁺][HCO₃⁻]/[CO₂]
+	K2      float64 // [H⁺][CO₃²⁻]/[HCO₃⁻]
+	KB      float64 // [H⁺][B(OH)₄⁻]/[B(OH)₃]
+	KW      float64 // [H⁺][OH⁻], mol²/kg²
+	Calcite float64 // [Ca²⁺][CO₃²⁻] at saturation, mol²/kg²
+}
+
+// Seawater is the composition of the ocean apart from carbon.
+type Seawater struct {
+	Salinity float64 // practical salinity
+	Calcium  float64 // [Ca²⁺], mol/kg
+	Boron    float64 // total boron, mol/kg
+
+	root, three, square float64 // S^½, S^(3/2), S²
+}
+
+// newSeawater is today's mean seawater.
+func newSeawater() Seawater { return Seawater{Salinity: 35, Calcium: Calcium(35), Boron: Boron(35)} }
+
+// Calcium returns today's calcium at salinity S (Riley & Tongudai 1967), mol/kg:
+//
+//	[Ca] = (0.02128/40.087)(S/1.80655)
+func Calcium(s float64) float64 { return 0.02128 / 40.087 * (s / 1.80655) }
+
+// Boron returns today's total boron at salinity S (Uppström 1974), mol/kg:
+//
+//	B_T = (0.000232/10.811)(S/1.80655)
+func Boron(s float64) float64 { return 0.000232 / 10.811 * (s / 1.80655) }
+
+// BoronLee returns total boron at salinity S after Lee et al. (2010), 4 % more
+// than Uppström (1974), mol/kg.
+func BoronLee(s float64) float64 { return 0.0002414 / 10.811 * (s / 1.80655) }
+
+// Measured is the range in which all constants were measured: 5 °C from the
+// solubility products (Mucci 1983, 5-40 °C), 35 °C from K1 and K2 (Lueker et
+// al. 2000, 2-35 °C). KB covers 0-45 °C (Dickson 1990).
+var Measured = units.Range{Lo: 278.15, Hi: 308.15}
+
+// The constants are extrapolated to the freezing point of seawater and to the
+// hottest ocean of the climate laws, and held outside.
+const (
+	coldest, coldBlend = 271, 4  // K
+	hottest, hotBlend  = 340, 10 // K
+)
+
+// Held returns the temperature at which the constants are evaluated: t itself
+// from 273 to 335 K, 271 K below 269 K, 340 K above 345 K, twice continuously
+// differentiable between.
+func Held(t float64) float64 {
+	if t < coldest+coldBlend/2 {
+		return coldest + coldBlend*ramp((t-coldest)/coldBlend+0.5)
+	}
+	if t > hottest-hotBlend/2 {
+		return hottest - hotBlend*ramp((hottest-t)/hotBlend+0.5)
+	}
+	return t
+}
+
+// ramp is 0 below x = 0 and x − ½ above 1; between, its slope rises as 3x² − 2x³.
+func ramp(x float64) float64 {
+	switch {
+	case x <= 0:
+		return 0
+	case x >= 1:
+		return x - 0.5
+	}
+	return x * x * x * (1 - 0.5*x)
+}
+
+// Bind prepares the powers of the salinity.
+func (w *Seawater) Bind() {
+	w.root = math.Sqrt(w.Salinity)
+	w.three = w.Salinity * w.root
+	w.square = w.Salinity * w.Salinity
+}
+
+// At evaluates all constants at a surface temperature in K, held by Held.
+func (w *Seawater) At(t float64) Constants {
+	t = Held(t)
+	lnT, inv := math.Log(t), 1/t
+	return Constants{
+		K0:      math.Exp(w.lnK0(t, lnT, inv)),
+		K1:      math.Exp(-math.Ln10 * w.pK1(lnT, inv)),
+		K2:      math.Exp(-math.Ln10 * w.pK2(lnT, inv)),
+		KB:      math.Exp(w.lnKB(t, lnT, inv)),
+		KW:      math.Exp(w.lnKW(lnT, inv)),
+		Calcite: math.Exp(math.Ln10 * w.logCalcite(t, lnT, inv)),
+	}
+}
+
+// Aragonite returns the solubility product of aragonite in mol²/kg².
+func (w *Seawater) Aragonite(t float64) float64 {
+	t = Held(t)
+	return math.Exp(math.Ln10 * w.logAragonite(t, math.Log(t), 1/t))
+}
+
+const ln100 = 2 * math.Ln10
+
+// lnK0 is the solubility of CO₂ (Weiss 1974), K0 in mol/kg/atm:
+//
+//	ln K0 = 93.4517 (100/T) − 60.2409 + 23.3585 ln(T/100) + S [0.023517 − 0.023656 (T/100) + 0.0047036 (T/100)²]
+func (w *Seawater) lnK0(t, lnT, inv float64) float64 {
+	h := t / 100
+	return 9345.17*inv - 60.2409 + 23.3585*(lnT-ln100) + w.Salinity*(0.023517+h*(-0.023656+h*0.0047036))
+}
+
+// pK1 is the first dissociation of carbonic acid (Lueker, Dickson & Keeling 2000):
+//
+//	pK1 = 3633.86/T − 61.2172 + 9.67770 ln T − 0.011555 S + 0.0001152 S²
+func (w *Seawater) pK1(lnT, inv float64) float64 {
+	return 3633.86*inv - 61.2172 + 9.67770*lnT - 0.011555*w.Salinity + 0.0001152*w.square
+}
+
+// pK2 is the second dissociation of carbonic acid (Lueker, Dickson & Keeling 2000):
+//
+//	pK2 = 471.78/T + 25.9290 − 3.16967 ln T − 0.01781 S + 0.0001122 S²
+func (w *Seawater) pK2(lnT, inv float64) float64 {
+	return 471.78*inv + 25.9290 - 3.16967*lnT - 0.01781*w.Salinity + 0.0001122*w.square
+}
+
+// lnKB is the dissociation of boric acid (Dickson 1990):
+//
+//	ln KB = (−8966.90 − 2890.53 S^½ − 77.942 S + 1.728 S^(3/2) − 0.0996 S²)/T
+//	        + 148.0248 + 137.1942 S^½ + 1.62142 S
+//	        + (−24.4344 − 25.085 S^½ − 0.2474 S) ln T + 0.053105 S^½ T
+func (w *Seawater) lnKB(t, lnT, inv float64) float64 {
+	s, r := w.Salinity, w.root
+	return (-8966.90-2890.53*r-77.942*s+1.728*w.three-0.0996*w.square)*inv +
+		148.0248 + 137.1942*r + 1.62142*s +
+		(-24.4344-25.085*r-0.2474*s)*lnT + 0.053105*r*t
+}
+
+// lnKW is the ion product of water (Millero 1995):
+//
+//	ln KW = −13847.26/T + 148.9652 − 23.6521 ln T + (118.67/T − 5.977 + 1.0495 ln T) S^½ − 0.01615 S
+func (w *Seawater) lnKW(lnT, inv float64) float64 {
+	return -13847.26*inv + 148.9652 - 23.6521*lnT + (118.67*inv-5.977+1.0495*lnT)*w.root - 0.01615*w.Salinity
+}
+
+// logCalcite is the solubility product of calcite (Mucci 1983); the logarithm
+// is to base 10:
+//
+//	log Ksp = −171.9065 − 0.077993 T + 2839.319/T + 71.595 log T
+//	          + (−0.77712 + 0.0028426 T + 178.34/T) S^½ − 0.07711 S + 0.0041249 S^(3/2)
+func (w *Seawater) logCalcite(t, lnT, inv float64) float64 {
+	return -171.9065 - 0.077993*t + 2839.319*inv + 71.595/math.Ln10*lnT +
+		(-0.77712+0.0028426*t+178.34*inv)*w.root - 0.07711*w.Salinity + 0.0041249*w.three
+}
+
+// logAragonite is the solubility product of aragonite (Mucci 1983), base 10:
+//
+//	log Ksp = −171.945 − 0.077993 T + 2903.293/T + 71.595 log T
+//	          + (−0.068393 + 0.0017276 T + 88.135/T) S^½ − 0.10018 S + 0.0059415 S^(3/2)
+func (w *Seawater) logAragonite(t, lnT, inv float64) float64 {
+	return -171.945 - 0.077993*t + 2903.293*inv + 71.595/math.Ln10*lnT +
+		(-0.068393+0.0017276*t+88.135*inv)*w.root - 0.10018*w.Salinity + 0.0059415*w.three
+}
+
+// Sources of the constants, for the tables of laws.
+var constantSources = []cite.Ref{
+	{Work: cite.Weiss1974, Note: "K0", Trust: cite.Checked},
+	{Work: cite.Lueker2000, Note: "K1, K2", Trust: cite.Checked},
+	{Work: cite.Dickson1990, Note: "KB", Trust: cite.Checked},
+	{Work: cite.Millero1995, Note: "KW", Trust: cite.Checked},
+	{Work: cite.Mucci1983, Note: "Ksp", Trust: cite.Checked},
+}
+
+func (w *Seawater) fields() []units.Field {
+	return []units.Field{
+		{Key: "salinity", Min: 1, Max: 50, Published: units.Range{Lo: 19, Hi: 43}, Doc: "practical salinity of the ocean", Source: cite.Ref{Work: cite.Dickson2007, Note: "reference seawater", Trust: cite.Memory}, Value: &w.Salinity},
+		{Key: "calcium", Kind: units.Conc, Unit: "mmol/kg", Min: 1e-4, Max: 1, Doc: "dissolved calcium", Source: cite.Ref{Work: cite.RileyTongudai1967, Note: "at salinity 35", Trust: cite.Memory}, Value: &w.Calcium},
+		{Key: "boron", Kind: units.Conc, Unit: "mmol/kg", Min: 0, Max: 0.1, Published: units.Range{Lo: Boron(35), Hi: BoronLee(35)}, Doc: "total dissolved boron", Source: cite.Ref{Work: cite.Uppstrom1974, Note: "at salinity 35; Lee et al. 2010 have 0.4326 mmol/kg", Trust: cite.Memory}, Value: &w.Boron},
+	}
+}
