@@ -1,0 +1,677 @@
+package ode
+
+import (
+	"math"
+	"slices"
+)
+
+// blockState is what the guard knows of one block at one end of a step.
+type blockState struct {
+	count  int     // significantly growing eigenvalues
+	re, im float64 // the fastest growing one
+	sig    float64 // smallest growth rate that counts
+}
+
+type guardState struct {
+	on     bool
+	known  bool // cur belongs to the present state
+	blocks [][]int
+	cur    []blockState // at the start of the step
+	end    []blockState // at the end of the attempted step
+	locate float64
+	noise  float64 // relative uncertainty of Jacobian entries
+
+	a, b   []float64
+	wr, wi []float64
+	ca     []complex128
+	cv, cw []complex128
+	cx     []complex128
+	cpiv   []int
+	scale  []float64
+
+	hMax     float64 // longest step that resolves the growth at the end
+	hRetry   float64
+	hAfter   float64 // bound for the step after a located loss
+	logErr   float64
+	efolds   float64
+	refRate  float64
+	released bool
+
+	losses []Loss
+	fresh  int
+}
+
+// After so many e-foldings nothing that a floating-point number can hold is
+// too small to have grown: a solution that has not left an unstable state by
+// then rests in it exactly.
+const maxEFolds = 750
+
+func (s *Solver) initGuard(g *Guard) error {
+	s.gd.on = !g.Off
+	s.gd.locate = g.Locate
+	if g.Locate == 0 {
+		s.gd.locate = 0.01 * s.rtol
+	}
+	if !s.gd.on {
+		return nil
+	}
+	s.gd.noise = 1e-7
+	if s.p.Jac != nil {
+		s.gd.noise = 1e-12
+	}
+	m := 0
+	if g.Blocks == nil {
+		all := make([]int, s.n)
+		for i := range all {
+			all[i] = i
+		}
+		s.gd.blocks = [][]int{all}
+	}
+	for k, b := range g.Blocks {
+		if len(b) == 0 {
+			return badInput("guard block %d is empty", k)
+		}
+		b = slices.Clone(b)
+		slices.Sort(b)
+		for j, i := range b {
+			if i < 0 || i >= s.n || j > 0 && b[j-1] == i {
+				return badInput("guard block %d: index %d", k, i)
+			}
+		}
+		s.gd.blocks = append(s.gd.blocks, b)
+	}
+	for _, b := range s.gd.blocks {
+		m = max(m, len(b))
+	}
+	gd := &s.gd
+	gd.cur = make([]blockState, len(gd.blocks))
+	gd.end = make([]blockState, len(gd.blocks))
+	gd.a, gd.b = make([]float64, m*m), make([]float64, m*m)
+	gd.wr, gd.wi = make([]float64, m), make([]float64, m)
+	gd.ca = make([]complex128, m*m)
+	gd.cv, gd.cw, gd.cx = make([]complex128, m), make([]complex128, m), make([]complex128, m)
+	gd.cpiv = make([]int, m)
+	gd.scale = make([]float64, m)
+	return nil
+}
+
+func (s *Solver) startGuard() {
+	s.gd.known = false
+	s.gd.losses = s.gd.losses[:0]
+	s.gd.fresh = 0
+	s.gd.efolds, s.gd.refRate, s.gd.released = 0, 0, false
+	for i := range s.gd.cur {
+		s.gd.cur[i] = blockState{}
+	}
+}
+
+// significance is the smallest growth rate that counts: one that multiplies a
+// perturbation by 1.001 over the whole run.
+func (s *Solver) significance() float64 { return 1e-3 / math.Abs(s.t1-s.t0) }
+
+// extract copies block b of jac, in the direction of the run, to gd.a.
+func (s *Solver) extract(jac []float64, b []int) {
+	m, n := len(b), s.n
+	a := s.gd.a
+	if m == n {
+		if s.dir > 0 {
+			copy(a, jac)
+		} else {
+			for i, v := range jac {
+				a[i] = -v
+			}
+		}
+		return
+	}
+	for i, bi := range b {
+		row := jac[bi*n : bi*n+n]
+		for j, bj := range b {
+			a[i*m+j] = s.dir * row[bj]
+		}
+	}
+}
+
+// guardAll tests every block of jac.
+func (s *Solver) guardAll(dst []blockState, jac []float64, t float64, y []float64) {
+	sig := s.significance()
+	for k, b := range s.gd.blocks {
+		m := len(b)
+		if m == 1 {
+			v := s.dir * jac[b[0]*s.n+b[0]]
+			st := blockState{re: v, sig: sig}
+			if v > sig {
+				st.count = 1
+			}
+			dst[k] = st
+			continue
+		}
+		s.extract(jac, b)
+		if certainlyStable(s.gd.a[:m*m], m, s.gd.noise) {
+			dst[k] = blockState{sig: sig}
+			continue
+		}
+		dst[k], _ = s.spectrum(m, sig, -1, dst[k])
+	}
+}
+
+// spectrum computes the eigenvalues of the block in gd.a and judges which of
+// them grow. If c0 ≥ 0 it also returns the excess over significance of the
+// eigenvalue of rank c0 by growth rate. If the eigenvalues cannot be computed
+// it returns old.
+func (s *Solver) spectrum(m int, sig float64, c0 int, old blockState) (blockState, float64) {
+	g := &s.gd
+	s.stats.EigenEvals++
+	copy(g.b, g.a[:m*m])
+	if !eigenvalues(g.b[:m*m], m, g.wr, g.wi) {
+		return old, -1
+	}
+	wr, wi := g.wr[:m], g.wi[:m]
+	// By falling real part.
+	for i := 1; i < m; i++ {
+		for j := i; j > 0 && wr[j] > wr[j-1]; j-- {
+			wr[j], wr[j-1] = wr[j-1], wr[j]
+			wi[j], wi[j-1] = wi[j-1], wi[j]
+		}
+	}
+	st := blockState{sig: sig, re: wr[0], im: math.Abs(wi[0])}
+	excess := math.Inf(-1)
+	biggest := 0.0
+	for i := range wr {
+		biggest = max(biggest, math.Abs(wr[i])+math.Abs(wi[i]))
+	}
+	count := 0
+	for i := 0; i < m; i++ {
+		lim := sig
+		if wr[i] > sig || i == c0 {
+			lim += min(s.eigenNoise(m, complex(wr[i], wi[i])), math.Sqrt(g.noise)*biggest)
+		}
+		if i == c0 {
+			excess = wr[i] - lim
+		}
+		if wr[i] > lim {
+			if count == 0 {
+				st.re, st.im = wr[i], math.Abs(wi[i])
+			}
+			count++
+		} else if i >= c0 && wr[i] <= 0 {
+			break
+		}
+	}
+	st.count = count
+	return st, excess
+}
+
+// eigenNoise bounds, to first order, what the uncertainty of the entries of
+// the block does to its eigenvalue lam: noise·|w|ᵀ|A||v| / |wᵀv|. It leaves
+// the right eigenvector in gd.cv.
+func (s *Solver) eigenNoise(m int, lam complex128) float64 {
+	g := &s.gd
+	if !s.eigenvector(m, lam, false) {
+		return 0
+	}
+	copy(g.cx[:m], g.cv[:m])
+	if !s.eigenvector(m, lam, true) {
+		return 0
+	}
+	copy(g.cw[:m], g.cv[:m])
+	copy(g.cv[:m], g.cx[:m])
+	num := 0.0
+	var den complex128
+	for i := range m {
+		sum := 0.0
+		for j := range m {
+			sum += math.Abs(g.a[i*m+j]) * cabs(g.cv[j])
+		}
+		num += cabs(g.cw[i]) * sum
+		den += g.cw[i] * g.cv[i]
+	}
+	if d := cabs(den); d > 0 {
+		return g.noise * num / d
+	}
+	return math.Inf(1)
+}
+
+func cabs(z complex128) float64 { return math.Hypot(real(z), imag(z)) }
+
+// eigenvector finds the right (or left) eigenvector of the block for lam by
+// inverse iteration and leaves it in gd.cv.
+func (s *Solver) eigenvector(m int, lam complex128, left bool) bool {
+	g := &s.gd
+	ca, cv, cx := g.ca[:m*m], g.cv[:m], g.cw[:m]
+	size := 0.0
+	for i := range m {
+		for j := range m {
+			v := g.a[i*m+j]
+			if left {
+				v = g.a[j*m+i]
+			}
+			ca[i*m+j] = complex(v, 0)
+			size = max(size, math.Abs(v))
+		}
+	}
+	// Row scaling keeps the choice of pivots independent of units.
+	rs := g.scale[:m]
+	for i := range m {
+		r := 0.0
+		for j := range m {
+			r = max(r, abs1(ca[i*m+j]))
+		}
+		rs[i] = 1
+		if r > 0 {
+			rs[i] = 1 / r
+		}
+	}
+	for i := range m {
+		d := lam
+		d += complex(1e-10*cabs(lam)+0x1p-1000, 0)
+		ca[i*m+i] -= d
+	}
+	identity(g.cpiv[:m])
+	if !cluFactor(ca, g.cpiv[:m], rs, m) {
+		return false
+	}
+	for i := range cv {
+		cv[i] = complex(1/rs[i], 0)
+	}
+	for range 3 {
+		cluSolve(ca, g.cpiv[:m], m, cx, cv)
+		big := 0.0
+		for _, v := range cx {
+			big = max(big, abs1(v))
+		}
+		if !(big > 0 && big <= math.MaxFloat64) {
+			return false
+		}
+		r := complex(1/big, 0)
+		for i := range cv {
+			cv[i] = cx[i] * r
+		}
+	}
+	return true
+}
+
+
+// logR returns ln|R(z)| for the stability function of the method.
+func (s *Solver) logR(z complex128) float64 { return rodasLogR(z) }
+
+// resolve returns the longest step not above h that resolves the growth in
+// st: the factor by which the method multiplies the mode is at least the
+// square root of the true one, and real growth is below exp(2) a step. Modes
+// that cannot grow by e before the end of the run do not matter.
+func (s *Solver) resolve(st []blockState, h float64) float64 {
+	if s.gd.released {
+		return h
+	}
+	left := math.Abs(s.t1 - s.t)
+	for i := range st {
+		b := &st[i]
+		if b.count == 0 || b.re*left < 1 {
+			continue
+		}
+		if h*b.re > 2 {
+			h = 2 / b.re
+		}
+		if b.im == 0 {
+			continue
+		}
+		for range 200 {
+			if s.logR(complex(h*b.re, h*b.im)) >= 0.5*h*b.re {
+				break
+			}
+			h *= 0.8
+		}
+	}
+	return h
+}
+
+// guardAccept tests the end of an attempted step of length h. It reports
+// whether the step resolved what grows there.
+func (s *Solver) guardAccept(h float64) bool {
+	s.guardAll(s.gd.end, s.jac1, s.t, s.y1)
+	hm := s.resolve(s.gd.end, h)
+	if hm < h*(1-1e-9) {
+		s.gd.hMax = hm
+		return false
+	}
+	return true
+}
+
+// stabilityExcess returns how far a state with Jacobian jac and block states st
+// lies beyond a change, since the start of the step, in the number of growing
+// modes: positive beyond, negative before.
+func (s *Solver) stabilityExcess(jac []float64, st []blockState) float64 {
+	g := &s.gd
+	sig := s.significance()
+	worst := math.Inf(-1)
+	for k, b := range g.blocks {
+		m := len(b)
+		c0 := g.cur[k].count
+		v := math.Inf(-1)
+		if m == 1 {
+			v = s.dir*jac[b[0]*s.n+b[0]] - sig
+			if c0 == 1 {
+				v = -v
+			}
+		} else {
+			s.extract(jac, b)
+			if c0 < m {
+				_, v = s.spectrum(m, sig, c0, st[k])
+			}
+			if c0 > 0 {
+				_, down := s.spectrum(m, sig, c0-1, st[k])
+				v = max(v, -down)
+			}
+		}
+		// Noise may make the two judgements differ; the count decides.
+		if (st[k].count != c0) != (v > 0) {
+			v = -v
+		}
+		worst = max(worst, v)
+	}
+	return worst
+}
+
+func (s *Solver) stabilityChanged() bool {
+	for k := range s.gd.cur {
+		if s.gd.cur[k].count != s.gd.end[k].count {
+			return true
+		}
+	}
+	return false
+}
+
+// retake takes the step from the same start again with length h > 0.
+func (s *Solver) retake(h float64) bool {
+	s.stats.Retaken++
+	s.clip = false
+	s.ev.stale = true
+	tEnd := s.t + s.dir*h
+	o := s.attempt(s.dir*h, tEnd)
+	if o != outcomeOK {
+		return false
+	}
+	s.project()
+	if !s.finish(tEnd) {
+		s.lastOutcome = outcomeNonFinite
+		return false
+	}
+	if s.gd.on {
+		s.guardAll(s.gd.end, s.jac1, tEnd, s.y1)
+	}
+	return true
+}
+
+// locateLoss shortens the attempted step, of length h, to end just after the
+// first change in the number of growing modes. It returns the new length.
+func (s *Solver) locateLoss(h float64) (float64, outcome) {
+	t1 := s.t + s.dir*h
+	tol := max(s.gd.locate*max(math.Abs(t1), math.Abs(t1-s.t0)), 2*s.spacing(t1))
+	s.gd.hAfter = math.Inf(1)
+	if h <= tol {
+		return h, outcomeOK
+	}
+	fa, fb := s.stabilityExcess(s.jac, s.gd.cur), s.stabilityExcess(s.jac1, s.gd.end)
+	grows, rate := 0, 0.0
+	for k := range s.gd.cur {
+		if s.gd.end[k].count > s.gd.cur[k].count {
+			grows++
+			rate = max(rate, s.gd.end[k].re)
+		}
+	}
+	br := newBracket(0, h, fa, fb, 0.5*tol)
+	at := h
+	for !br.done() {
+		x := br.next()
+		if !s.retake(x) {
+			s.gd.hRetry = 0.5 * x
+			return 0, s.lastOutcome
+		}
+		at = x
+		f := s.stabilityExcess(s.jac1, s.gd.end)
+		changed := s.stabilityChanged()
+		br.update(x, f, changed)
+	}
+	if at != br.b {
+		if !s.retake(br.b) {
+			s.gd.hRetry = 0.5 * br.b
+			return 0, s.lastOutcome
+		}
+	}
+	if grows > 0 && h > br.b {
+		slope := rate / (h - br.b)
+		s.gd.hAfter = 1 / math.Sqrt(slope)
+	}
+	return br.b, outcomeOK
+}
+
+// guardCommit makes the states at the end of the accepted step the current
+// ones and records losses and returns of stability.
+func (s *Solver) guardCommit(h float64) {
+	g := &s.gd
+	grew := 0.0
+	for k := range g.cur {
+		if g.end[k].count > 0 {
+			grew = max(grew, g.end[k].re)
+		}
+		s.recordChange(k, g.cur[k], g.end[k])
+	}
+	g.cur, g.end = g.end, g.cur
+	switch {
+	case grew == 0:
+		g.efolds, g.refRate, g.released = 0, 0, false
+	default:
+		if g.refRate == 0 || grew > 4*g.refRate {
+			g.efolds, g.refRate, g.released = 0, grew, false
+		}
+		g.efolds += grew * h
+		g.released = g.efolds > maxEFolds
+	}
+}
+
+// guardJump re-examines stability after the state jumped.
+func (s *Solver) guardJump() {
+	g := &s.gd
+	s.guardAll(g.end, s.jac, s.t, s.y)
+	for k := range g.cur {
+		s.recordChange(k, g.cur[k], g.end[k])
+	}
+	g.cur, g.end = g.end, g.cur
+	g.efolds, g.refRate, g.released = 0, 0, false
+	g.known = true
+}
+
+// recordChange appends a Loss if the number of growing modes of block k rose
+// from that in a to that in b or fell to zero. The Jacobian at the state is in
+// s.jac.
+func (s *Solver) recordChange(k int, a, b blockState) {
+	if b.count <= a.count && !(b.count == 0 && a.count > 0) {
+		return
+	}
+	g := &s.gd
+	if len(g.losses) < cap(g.losses) {
+		g.losses = g.losses[:len(g.losses)+1]
+	} else {
+		g.losses = append(g.losses, Loss{})
+	}
+	l := &g.losses[len(g.losses)-1]
+	mode := l.Mode
+	if len(mode) != s.n {
+		mode = make([]float64, s.n)
+	}
+	clear(mode)
+	*l = Loss{T: s.t, Block: k, Growing: b.count, Regained: b.count == 0, Mode: mode}
+	bl := g.blocks[k]
+	m := len(bl)
+	if m == 1 {
+		l.Rate = s.jac[bl[0]*s.n+bl[0]]
+		mode[bl[0]] = s.atol[bl[0]] + s.rtol*math.Abs(s.y[bl[0]])
+		return
+	}
+	// The mode that just crossed: the one of lowest growth among the growing
+	// ones, or the fastest of the stable ones after a return.
+	s.extract(s.jac, bl)
+	copy(g.b, g.a[:m*m])
+	if !eigenvalues(g.b[:m*m], m, g.wr, g.wi) {
+		return
+	}
+	rank := max(b.count-1, 0)
+	wr, wi := g.wr[:m], g.wi[:m]
+	for i := 1; i < m; i++ {
+		for j := i; j > 0 && wr[j] > wr[j-1]; j-- {
+			wr[j], wr[j-1] = wr[j-1], wr[j]
+			wi[j], wi[j-1] = wi[j-1], wi[j]
+		}
+	}
+	l.Rate = s.dir * wr[rank]
+	l.Frequency = math.Abs(wi[rank])
+	if !s.eigenvector(m, complex(wr[rank], math.Abs(wi[rank])), false) {
+		return
+	}
+	// Turn the vector so that its largest scaled component is real.
+	var big complex128
+	for i, v := range g.cv[:m] {
+		sc := s.atol[bl[i]] + s.rtol*math.Abs(s.y[bl[i]])
+		if z := v / complex(sc, 0); cabs(z) > cabs(big) {
+			big = z
+		}
+	}
+	if big == 0 {
+		return
+	}
+	turn := complex(real(big), -imag(big)) / complex(cabs(big), 0)
+	sum := 0.0
+	for i, v := range g.cv[:m] {
+		sc := s.atol[bl[i]] + s.rtol*math.Abs(s.y[bl[i]])
+		mode[bl[i]] = real(v * turn)
+		sum += sq(mode[bl[i]] / sc)
+	}
+	sum = math.Sqrt(sum)
+	for _, i := range bl {
+		mode[i] /= sum
+	}
+}
+
+// certainlyStable reports whether no eigenvalue of the m×m matrix a can have a
+// positive real part, apart from zero eigenvalues indistinguishable from
+// rounding, if the entries of a are uncertain by the relative amount noise. It
+// is sufficient, not necessary, and cheap.
+func certainlyStable(a []float64, m int, noise float64) bool {
+	var c, b [5]float64
+	switch m {
+	case 2:
+		c[1], b[1] = -(a[0] + a[3]), math.Abs(a[0])+math.Abs(a[3])
+		p, q := a[0]*a[3], a[1]*a[2]
+		c[2], b[2] = p-q, math.Abs(p)+math.Abs(q)
+	case 3:
+		minors3((*[9]float64)(a), &c, &b)
+	case 4:
+		minors4((*[16]float64)(a), &c, &b)
+	default:
+		return rowsStable(a, m)
+	}
+	return hurwitz(&c, &b, m, 8*noise)
+}
+
+// hurwitz applies the Routh–Hurwitz criterion to λ^m + c1 λ^(m−1) + … + cm,
+// where c_k is uncertain by tol·b_k. Trailing coefficients that are zero
+// within their uncertainty belong to neutral modes and are dropped.
+func hurwitz(c, b *[5]float64, m int, tol float64) bool {
+	for m > 0 {
+		if !(b[m] > 0x1p-900 || b[m] == 0) || !(b[m] <= 0x1p900) {
+			return false
+		}
+		if math.Abs(c[m]) > tol*b[m] {
+			break
+		}
+		m--
+	}
+	var lo, hi [5]float64
+	for k := 1; k <= m; k++ {
+		lo[k], hi[k] = c[k]-tol*b[k], c[k]+tol*b[k]
+		if !(lo[k] > 0) {
+			return false
+		}
+	}
+	switch m {
+	case 0, 1, 2:
+		return true
+	case 3:
+		return lo[1]*lo[2] > hi[3]
+	}
+	d := lo[1]*lo[2] - hi[3]
+	return d > 0 && d*lo[3] > hi[1]*hi[1]*hi[4]
+}
+
+// minors3 computes the coefficients of det(λI − A) from principal minors and
+// the sums of the absolute values of their terms.
+func minors3(a *[9]float64, c, b *[5]float64) {
+	abs := math.Abs
+	c[1] = -(a[0] + a[4] + a[8])
+	b[1] = abs(a[0]) + abs(a[4]) + abs(a[8])
+	p01, q01 := a[0]*a[4], a[1]*a[3]
+	p02, q02 := a[0]*a[8], a[2]*a[6]
+	p12, q12 := a[4]*a[8], a[5]*a[7]
+	c[2] = (p01 - q01) + (p02 - q02) + (p12 - q12)
+	b[2] = abs(p01) + abs(q01) + abs(p02) + abs(q02) + abs(p12) + abs(q12)
+	p10, q10 := a[3]*a[8], a[5]*a[6]
+	p11, q11 := a[3]*a[7], a[4]*a[6]
+	c[3] = -(a[0]*(p12-q12) - a[1]*(p10-q10) + a[2]*(p11-q11))
+	b[3] = abs(a[0])*(abs(p12)+abs(q12)) + abs(a[1])*(abs(p10)+abs(q10)) + abs(a[2])*(abs(p11)+abs(q11))
+}
+
+func minors4(a *[16]float64, c, b *[5]float64) {
+	abs := math.Abs
+	c[1] = -(a[0] + a[5] + a[10] + a[15])
+	b[1] = abs(a[0]) + abs(a[5]) + abs(a[10]) + abs(a[15])
+	// 2×2 minors of rows (2, 3) for all column pairs, of rows (0, 1) likewise.
+	type mn struct{ v, m float64 }
+	d := func(p, q float64) mn { return mn{p - q, abs(p) + abs(q)} }
+	h01 := d(a[0]*a[5], a[1]*a[4])
+	h02 := d(a[0]*a[6], a[2]*a[4])
+	h03 := d(a[0]*a[7], a[3]*a[4])
+	h12 := d(a[1]*a[6], a[2]*a[5])
+	h13 := d(a[1]*a[7], a[3]*a[5])
+	h23 := d(a[2]*a[7], a[3]*a[6])
+	l01 := d(a[8]*a[13], a[9]*a[12])
+	l02 := d(a[8]*a[14], a[10]*a[12])
+	l03 := d(a[8]*a[15], a[11]*a[12])
+	l12 := d(a[9]*a[14], a[10]*a[13])
+	l13 := d(a[9]*a[15], a[11]*a[13])
+	l23 := d(a[10]*a[15], a[11]*a[14])
+	m02 := d(a[0]*a[10], a[2]*a[8])
+	m03 := d(a[0]*a[15], a[3]*a[12])
+	m12 := d(a[5]*a[10], a[6]*a[9])
+	m13 := d(a[5]*a[15], a[7]*a[13])
+	c[2] = h01.v + l23.v + m02.v + m03.v + m12.v + m13.v
+	b[2] = h01.m + l23.m + m02.m + m03.m + m12.m + m13.m
+	// Principal 3×3 minors: {0,1,2} and {0,1,3} by rows 2 and 3 against rows
+	// (0,1); {0,2,3} and {1,2,3} by rows 0 and 1 against rows (2,3).
+	c[3] = -(a[8]*h12.v - a[9]*h02.v + a[10]*h01.v +
+		a[12]*h13.v - a[13]*h03.v + a[15]*h01.v +
+		a[0]*l23.v - a[2]*l03.v + a[3]*l02.v +
+		a[5]*l23.v - a[6]*l13.v + a[7]*l12.v)
+	b[3] = abs(a[8])*h12.m + abs(a[9])*h02.m + abs(a[10])*h01.m +
+		abs(a[12])*h13.m + abs(a[13])*h03.m + abs(a[15])*h01.m +
+		abs(a[0])*l23.m + abs(a[2])*l03.m + abs(a[3])*l02.m +
+		abs(a[5])*l23.m + abs(a[6])*l13.m + abs(a[7])*l12.m
+	c[4] = h01.v*l23.v - h02.v*l13.v + h03.v*l12.v + h12.v*l03.v - h13.v*l02.v + h23.v*l01.v
+	b[4] = h01.m*l23.m + h02.m*l13.m + h03.m*l12.m + h12.m*l03.m + h13.m*l02.m + h23.m*l01.m
+}
+
+// rowsStable applies Gershgorin's theorem to rows and to columns.
+func rowsStable(a []float64, m int) bool {
+	rows, cols := true, true
+	for i := 0; i < m && (rows || cols); i++ {
+		d := a[i*m+i]
+		r, c := d, d
+		for j := range m {
+			if j != i {
+				r += math.Abs(a[i*m+j])
+				c += math.Abs(a[j*m+i])
+			}
+		}
+		rows = rows && r <= 0
+		cols = cols && c <= 0
+	}
+	return rows || cols
+}
