@@ -11,8 +11,16 @@ var (
 		Title: "Solar models: current epoch and time dependences, neutrinos, and helioseismological properties", Journal: "The Astrophysical Journal", Volume: "555", Pages: "990-1012"}
 	Berner1994 = &Work{Key: "berner1994", Authors: []string{"Berner, R. A."}, Year: 1994,
 		Title: "GEOCARB II: a revised model of atmospheric CO2 over Phanerozoic time", Journal: "American Journal of Science", Volume: "294", Pages: "56-91"}
+	BernerKothavala2001 = &Work{Key: "berner2001", Authors: []string{"Berner, R. A.", "Kothavala, Z."}, Year: 2001,
+		Title: "GEOCARB III: a revised model of atmospheric CO2 over Phanerozoic time", Journal: "American Journal of Science", Volume: "301", Pages: "182-204"}
+	Brady1991 = &Work{Key: "brady1991", Authors: []string{"Brady, P. V."}, Year: 1991,
+		Title: "The effect of silicate weathering on global temperature and atmospheric CO2", Journal: "Journal of Geophysical Research", Volume: "96", Pages: "18101-18106"}
+	BradyCarroll1994 = &Work{Key: "brady1994", Authors: []string{"Brady, P. V.", "Carroll, S. A."}, Year: 1994,
+		Title: "Direct effects of CO2 and temperature on silicate weathering: possible implications for climate control", Journal: "Geochimica et Cosmochimica Acta", Volume: "58", Pages: "1853-1856"}
 	BradyGislason1997 = &Work{Key: "brady1997", Authors: []string{"Brady, P. V.", "Gislason, S. R."}, Year: 1997,
 		Title: "Seafloor weathering controls on atmospheric CO2 and global climate", Journal: "Geochimica et Cosmochimica Acta", Volume: "61", Pages: "965-973"}
+	Brantley2023 = &Work{Key: "brantley2023", Authors: []string{"Brantley, S. L.", "Shaughnessy, A.", "Lebedeva, M. I.", "Balashov, V. N."}, Year: 2023,
+		Title: "How temperature-dependent silicate weathering acts as Earth's geological thermostat", Journal: "Science", Volume: "379", Pages: "382-389"}
 	Budyko1969 = &Work{Key: "budyko1969", Authors: []string{"Budyko, M. I."}, Year: 1969,
 		Title: "The effect of solar radiation variations on the climate of the Earth", Journal: "Tellus", Volume: "21", Pages: "611-619"}
 	ByrneGoldblatt2014 = &Work{Key: "byrne2014", Authors: []string{"Byrne, B.", "Goldblatt, C."}, Year: 2014,
@@ -27,6 +35,8 @@ var (
 		Title: "Alteration of ocean crust provides a strong temperature dependent feedback on the geological carbon cycle and is a primary driver of the Sr-isotopic composition of seawater", Journal: "Earth and Planetary Science Letters", Volume: "415", Pages: "38-46"}
 	DaviesDavies2010 = &Work{Key: "davies2010", Authors: []string{"Davies, J. H.", "Davies, D. R."}, Year: 2010,
 		Title: "Earth's surface heat flux", Journal: "Solid Earth", Volume: "1", Pages: "5-24"}
+	Dessert2001 = &Work{Key: "dessert2001", Authors: []string{"Dessert, C.", "Dupré, B.", "François, L. M.", "Schott, J.", "Gaillardet, J.", "Chakrapani, G.", "Bajpai, S."}, Year: 2001,
+		Title: "Erosion of Deccan Traps determined by river geochemistry: impact on the global climate and the 87Sr/86Sr ratio of seawater", Journal: "Earth and Planetary Science Letters", Volume: "188", Pages: "459-474"}
 	Dickson2007 = &Work{Key: "dickson2007", Authors: []string{"Dickson, A. G.", "Sabine, C. L.", "Christian, J. R."}, Year: 2007,
 		Title: "Guide to best practices for ocean CO2 measurements", Journal: "PICES Special Publication 3", Kind: "book"}
 	Dickson1990 = &Work{Key: "dickson1990", Authors: []string{"Dickson, A. G."}, Year: 1990,
@@ -123,6 +133,8 @@ var (
 		Title: "Zero-age main-sequence radii and luminosities as analytic functions of mass and metallicity", Journal: "Monthly Notices of the Royal Astronomical Society", Volume: "281", Pages: "257-262"}
 	TurcotteSchubert2002 = &Work{Key: "turcotte2002", Authors: []string{"Turcotte, D. L.", "Schubert, G."}, Year: 2002,
 		Title: "Geodynamics", Journal: "Cambridge University Press", Kind: "book"}
+	Velbel1993 = &Work{Key: "velbel1993", Authors: []string{"Velbel, M. A."}, Year: 1993,
+		Title: "Temperature dependence of silicate weathering in nature: how strong a negative feedback on long-term accumulation of atmospheric CO2 and global greenhouse warming?", Journal: "Geology", Volume: "21", Pages: "1059-1062"}
 	Uppstrom1974 = &Work{Key: "uppstrom1974", Authors: []string{"Uppström, L. R."}, Year: 1974,
 		Title: "The boron/chlorinity ratio of deep-sea water from the Pacific Ocean", Journal: "Deep-Sea Research", Volume: "21", Pages: "161-162"}
 	WagnerPruss2002 = &Work{Key: "wagner2002", Authors: []string{"Wagner, W.", "Pruß, A."}, Year: 2002,
@@ -131,8 +143,12 @@ var (
 		Title: "A negative feedback mechanism for the long-term stabilization of Earth's surface temperature", Journal: "Journal of Geophysical Research", Volume: "86", Pages: "9776-9782"}
 	Weiss1974 = &Work{Key: "weiss1974", Authors: []string{"Weiss, R. F."}, Year: 1974,
 		Title: "Carbon dioxide in water and seawater: the solubility of a non-ideal gas", Journal: "Marine Chemistry", Volume: "2", Pages: "203-215"}
+	WestGalyBickle2005 = &Work{Key: "west2005", Authors: []string{"West, A. J.", "Galy, A.", "Bickle, M."}, Year: 2005,
+		Title: "Tectonic and climatic controls on silicate weathering", Journal: "Earth and Planetary Science Letters", Volume: "235", Pages: "211-228"}
 	West2012 = &Work{Key: "west2012", Authors: []string{"West, A. J."}, Year: 2012,
 		Title: "Thickness of the chemical weathering zone and implications for erosional and climatic drivers of weathering and for carbon-cycle feedbacks", Journal: "Geology", Volume: "40", Pages: "811-814"}
+	WhiteBlum1995 = &Work{Key: "white1995", Authors: []string{"White, A. F.", "Blum, A. E."}, Year: 1995,
+		Title: "Effects of climate on chemical weathering in watersheds", Journal: "Geochimica et Cosmochimica Acta", Volume: "59", Pages: "1729-1747"}
 	WilliamsKasting1997 = &Work{Key: "williams1997", Authors: []string{"Williams, D. M.", "Kasting, J. F."}, Year: 1997,
 		Title: "Habitable planets with high obliquities", Journal: "Icarus", Volume: "129", Pages: "254-267"}
 	Zeng2016 = &Work{Key: "zeng2016", Authors: []string{"Zeng, L.", "Sasselov, D. D.", "Jacobsen, S. B."}, Year: 2016,

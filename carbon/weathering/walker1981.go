@@ -11,10 +11,9 @@ import (
 //
 //	W/W₀ = (p/p₀)^β · exp((T − T₀)/Tₑ)
 //
-// W is the global silicate weathering flux, p the CO₂ partial pressure, T the
-// global mean surface temperature; subscript 0 is the reference state. The
-// paper has β = 0.3, Tₑ = 13.7 K and T₀ = 285 K; here T₀ is that of the
-// scenario. It knows no runoff and no supply limit.
+// The paper has β = 0.3, Tₑ = 13.7 K and T₀ = 285 K; shifting T₀ changes W/W₀ by
+// a constant factor only, which the reference state takes up. No runoff, no
+// supply limit, no meaning under ice.
 type Walker1981 struct {
 	Beta float64 // β
 	Te   float64 // Tₑ, K
@@ -32,8 +31,8 @@ func (l *Walker1981) Relative(e *Env) float64 {
 func (l *Walker1981) Fields() []units.Field {
 	ref := cite.Ref{Work: cite.Walker1981, Trust: cite.Checked}
 	return []units.Field{
-		{Key: "exponent", Min: 0, Max: 2, Published: units.Range{Lo: 0.1, Hi: 0.5}, Doc: "exponent β of the CO2 pressure", Source: ref, Value: &l.Beta},
-		{Key: "efold", Kind: units.Interval, Unit: "K", Min: 2, Max: 200, Published: units.Range{Lo: 10, Hi: 40}, Doc: "warming Tₑ that multiplies weathering by e", Source: ref, Value: &l.Te},
+		exponentField("exponent", units.Range{Lo: 0.1, Hi: 0.5}, "exponent β of the CO2 pressure", ref, &l.Beta),
+		efoldField(units.Range{Lo: 10, Hi: 40}, "warming Tₑ that multiplies weathering by e", ref, &l.Te),
 	}
 }
 

@@ -1,0 +1,54 @@
+package weathering
+
+import "math"
+
+// least is the part of its reference value below which a runoff bracket leaves
+// the published straight line. Own choice: the papers stop at a few tens of
+// kelvin, long before the bracket gets this small.
+const least = 0.1
+
+var lnLeast = math.Log(least)
+
+// bracket returns x where x ≥ least, and least·exp(x/least − 1) below: positive,
+// increasing and continuously differentiable.
+func bracket(x float64) float64 {
+	if x >= least {
+		return x
+	}
+	return least * math.Exp(x/least-1)
+}
+
+// lnBracket returns the logarithm of bracket without an exponential.
+func lnBracket(x float64) float64 {
+	if x >= least {
+		return math.Log(x)
+	}
+	return lnLeast + x/least - 1
+}
+
+// above returns x where x ≥ lo + w and tends to lo below, with continuous slope.
+func above(x, lo, w float64) float64 {
+	if x >= lo+w {
+		return x
+	}
+	return lo + w*math.Exp((x-lo)/w-1)
+}
+
+// below returns x where x ≤ hi − w and tends to hi above, with continuous slope.
+func below(x, hi, w float64) float64 {
+	if x <= hi-w {
+		return x
+	}
+	return hi - w*math.Exp((hi-x)/w-1)
+}
+
+// power returns s^ν; s is the crust production, ν mostly 1.
+func power(s, nu float64) float64 {
+	switch nu {
+	case 1:
+		return s
+	case 0:
+		return 1
+	}
+	return math.Exp(nu * math.Log(s))
+}
