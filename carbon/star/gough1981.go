@@ -15,8 +15,8 @@ func sqrt(x float64) float64 { return math.Sqrt(x) }
 //	L/L☉ = 1/[1 + (2/5)(1 − t/t☉)]
 //
 // with t since the zero-age main sequence and t☉ the Sun's present age. Good
-// from 0.2 to about 6.5 Gyr (against the solar model of Bahcall et al. 2001),
-// singular at 3.5 t☉.
+// from 0.2 to about 6.5 Gyr (against the solar model of Bahcall et al. 2001, which
+// it overtakes by 0.02 at 6.6 Gyr and 0.06 at 7.8 Gyr), singular at 3.5 t☉.
 type Gough1981 struct {
 	Age  float64 // t☉, yr
 	Last float64 // end of the main sequence, yr
@@ -24,11 +24,13 @@ type Gough1981 struct {
 
 func newGough1981() Law { return &Gough1981{Age: 4.57 * units.Gyr, Last: 10 * units.Gyr} }
 
-// Luminosity returns L/L☉.
-func (l *Gough1981) Luminosity(age float64) float64 { return 1 / (1 + 0.4*(1-age/l.Age)) }
+// Luminosity returns L/L☉, held at the end of the main sequence.
+func (l *Gough1981) Luminosity(age float64) float64 {
+	return 1 / (1 + 0.4*(1-math.Min(age, l.Last)/l.Age))
+}
 
-// Temperature returns today's effective temperature of the Sun, 5772 K (IAU 2015).
-func (l *Gough1981) Temperature(float64) float64 { return 5772 }
+// Temperature returns today's effective temperature of the Sun.
+func (l *Gough1981) Temperature(float64) float64 { return SunTemperature }
 
 // End returns the end of the main sequence.
 func (l *Gough1981) End() float64 { return l.Last }

@@ -12,6 +12,7 @@ const (
 	RecentVenus       = "recent Venus"
 	RunawayGreenhouse = "runaway greenhouse"
 	MoistGreenhouse   = "moist greenhouse"
+	FirstCondensation = "first CO2 condensation"
 	MaximumGreenhouse = "maximum greenhouse"
 	EarlyMars         = "early Mars"
 )
@@ -43,11 +44,14 @@ type ZoneLaw struct {
 // Zones lists the published limits; the first is the default.
 var Zones = []ZoneLaw{
 	{"kopparapu2014", "one-dimensional, cloud-free climate model; the runaway limit depends on the planet's mass", []cite.Ref{{Work: cite.Kopparapu2014, Trust: cite.Checked}, cite.Own("interpolation in ln M between the published masses")}, kopparapu2014},
+	{"kopparapu2013", "one-dimensional, cloud-free climate model with a moist greenhouse limit, as corrected by the erratum", []cite.Ref{{Work: cite.Kopparapu2013, Where: "table 3, erratum", Trust: cite.Checked}}, kopparapu2013},
+	{"kasting1993", "the classical limits, built in for the Sun only", []cite.Ref{{Work: cite.Kasting1993, Trust: cite.Checked}}, kasting1993},
 }
 
 // InZone reports whether a planet at a relative flux is between the inner and
-// the outer edge of the conservative or the optimistic zone. Where a law gives
-// two inner edges of a kind, the one that counts is the farther from the star.
+// the outer edge of the conservative or the optimistic zone, edges included.
+// Where a law gives two edges of a kind, the one that makes the zone narrower
+// counts.
 func InZone(limits []Limit, relativeFlux float64, conservative bool) bool {
 	inner, outer := math.Inf(1), 0.0
 	for _, l := range limits {
