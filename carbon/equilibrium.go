@@ -1,0 +1,366 @@
+package carbon
+
+import (
+	"math"
+
+	"gonum.org/v1/gonum/diff/fd"
+
+	"cycle/carbon/outgas"
+	"cycle/carbon/record"
+	"cycle/carbon/units"
+)
+
+// pressures returns the CO₂ pressures, bar, between which the energy balance
+// is inverted: the box of the radiation law, or a wide range when it states none.
+func (m *Model) pressures() (lo, hi float64) {
+	b := m.set.radiation.law.Box().P
+	if !b.Stated() {
+		return 1e-8, 100
+	}
+	return b.Lo, b.Hi
+}
+
+// imbalance returns (S/4)(1 − A) − F in W/m² for mean sunlight sun = S/4.
+func (m *Model) imbalance(sun, t, p float64) float64 {
+	return sun*(1-m.set.albedo.law.Planetary(t, p)) - m.set.radiation.law.Outgoing(t, p, math.Log(p))
+}
+
+// balance inverts the energy balance: the lowest CO₂ pressure in bar at which
+// temperature t is in balance with mean sunlight sun. low tells that even the
+// least CO₂ is too warm, high that no CO₂ pressure is warm enough.
+func (m *Model) balance(sun, t float64) (p float64, low, high bool) {
+	lo, hi := m.pressures()
+	x0, x1 := math.Log(lo), math.Log(hi)
+	g := func(x float64) float64 { return m.imbalance(sun, t, math.Exp(x)) }
+	const parts = 16
+	a, ga := x0, g(x0)
+	if ga > 0 {
+		return lo, true, false
+	}
+	for i := 1; i <= parts; i++ {
+		b := x0 + (x1-x0)*float64(i)/parts
+		gb := g(b)
+		if gb > 0 {
+			return math.Exp(bracketed(g, a, b, ga, gb, 1e-13)), false, false
+		}
+		a, ga = b, gb
+	}
+	return hi, false, true
+}
+
+// bracketed finds a root of f between a and b, where it has opposite signs, by
+// the ITP method of Oliveira & Takahashi (2021), to |b − a| ≤ tol·max(1, |x|).
+func bracketed(f func(float64) float64, a, b, fa, fb, tol float64) float64 {
+	if fa == 0 {
+		return a
+	}
+	if fb == 0 {
+		return b
+	}
+	span := b - a
+	k1 := 0.2 / math.Abs(span)
+	eps := 0.5 * tol * math.Max(1, math.Max(math.Abs(a), math.Abs(b)))
+	budget := math.Ceil(math.Log2(math.Abs(span)/(2*eps))) + 1
+	for j := 0.0; math.Abs(b-a) > 2*eps && j <= budget; j++ {
+		mid := 0.5 * (a + b)
+		r := eps*math.Exp2(budget-j) - 0.5*math.Abs(b-a)
+		delta := k1 * (b - a) * (b - a)
+		xf := (fb*a - fa*b) / (fb - fa)
+		sigma := math.Copysign(1, mid-xf)
+		xt := mid
+		if math.Abs(delta) <= math.Abs(mid-xf) {
+			xt = xf + sigma*math.Abs(delta)
+		}
+		x := mid - sigma*r
+		if math.Abs(xt-mid) <= r {
+			x = xt
+		}
+		fx := f(x)
+		if fx == 0 {
+			return x
+		}
+		if (fx > 0) == (fb > 0) {
+			b, fb = x, fx
+		} else {
+			a, fa = x, fx
+		}
+	}
+	return 0.5 * (a + b)
+}
+
+// growth returns ∂(dT/dt)/∂T in W m⁻² K⁻¹ at fixed surface carbon: positive
+// where the climate runs away from the state. Carbon is held, not CO₂: as the
+// ocean warms it gives off CO₂, which moves the fold towards the warm side.
+func (m *Model) growth(sun, t, p float64) float64 {
+	c, alk := m.set.ocean.law.Carbon(p, t)
+	return fd.Derivative(func(x float64) float64 {
+		return m.imbalance(sun, x, m.set.ocean.law.Solve(c, alk, x).P)
+	}, t, &fd.Settings{Formula: fd.Central, Step: 1e-3})
+}
+
+// steady is a state in energy balance at one age, with the sinks there.
+type steady struct {
+	row  record.Row // T, p, albedo, ice, sinks, surface carbon
+	grow float64    // W m⁻² K⁻¹ at fixed carbon
+}
+
+// steadyAt returns the state in balance at temperature t.
+func (m *Model) steadyAt(d *memo, t float64) (s steady, low, high bool) {
+	p, low, high := m.balance(d.sun, t)
+	if low || high {
+		return s, low, high
+	}
+	r := &s.row
+	r.Age, r.Temperature, r.PCO2 = d.age, t, p
+	r.Sunlight, r.LandFraction, r.Biology, r.Crust = 4*d.sun, d.land, d.biology, d.flow.Crust
+	r.Albedo = m.set.albedo.law.Planetary(t, p)
+	r.Ice = m.set.albedo.law.IceFraction(t)
+	c, alk := m.set.ocean.law.Carbon(p, t)
+	r.Surface = c
+	m.weather(r, m.set.ocean.law.Solve(c, alk, t).H)
+	s.grow = m.growth(d.sun, t, p)
+	return s, false, false
+}
+
+// coldFold returns the temperature in K, at or below t, at which the warm branch
+// ends: growth turns positive. ok is false when the branch does not end where
+// CO₂ is inside the box of the radiation law.
+func (m *Model) coldFold(d *memo, t float64) (fold float64, ok bool) {
+	const stride = 1.5
+	grow := func(x float64) (float64, bool) {
+		p, low, high := m.balance(d.sun, x)
+		if low || high {
+			return 0, false
+		}
+		return m.growth(d.sun, x, p), true
+	}
+	a := t
+	ga, ok := grow(a)
+	if !ok {
+		return 0, false
+	}
+	if ga > 0 {
+		return a, true
+	}
+	for a > m.set.FrozenBelow {
+		b := a - stride
+		gb, ok := grow(b)
+		if !ok {
+			return 0, false
+		}
+		if gb > 0 {
+			return bracketed(func(x float64) float64 { g, _ := grow(x); return g }, a, b, ga, gb, 1e-9), true
+		}
+		a, ga = b, gb
+	}
+	return 0, false
+}
+
+// radiationLimit returns the most sunlight S in W/m² that can be shed at CO₂
+// pressure p by a surface not colder than t: the maximum of 4 F/(1 − A) over
+// temperature inside the radiation law's box.
+func (m *Model) radiationLimit(t, p float64) float64 {
+	top := m.top()
+	lnp := math.Log(p)
+	at := func(x float64) float64 {
+		return 4 * m.set.radiation.law.Outgoing(x, p, lnp) / (1 - m.set.albedo.law.Planetary(x, p))
+	}
+	const parts = 24
+	best, bx := at(t), t
+	for i := 1; i <= parts; i++ {
+		x := t + (top-t)*float64(i)/parts
+		if v := at(x); v > best {
+			best, bx = v, x
+		}
+	}
+	// A parabola through the best point and its neighbours.
+	if h := (top - t) / parts; h > 0 && bx > t && bx < top {
+		l, r := at(bx-h), at(bx+h)
+		if den := l - 2*best + r; den < 0 {
+			if v := at(bx + 0.5*h*(l-r)/den); v > best {
+				best = v
+			}
+		}
+	}
+	return best
+}
+
+// top returns the temperature in K at which a hot history ends.
+func (m *Model) top() float64 {
+	if b := m.set.radiation.law.Box().T; b.Stated() {
+		return b.Hi
+	}
+	return 380
+}
+
+// start finds the equilibrium a history starts from: at the start age
+// everything but the interior is steady (surface, seafloor and continental
+// carbon; the mantle holds the rest). It is reached from the warm side: of all
+// such states the warmest stable one, or from the cold side the coldest.
+// words says what was found.
+func (m *Model) start() (y State, words string) {
+	s := m.set
+	y.MantleT, y.CoreT = s.interior.law.Start(s.Start)
+	d := m.drive(s.Start, y.MantleT, y.CoreT)
+	total := m.content * s.Mass
+
+	// fill completes a state in energy balance by the steady reservoirs and
+	// returns the imbalance of the surface, mol/yr.
+	fill := func(st *steady) (State, float64) {
+		z := y
+		z.T, z.Surface = st.row.Temperature, st.row.Surface
+		in := outgas.Input{Age: s.Start, Crust: d.flow.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale}
+		probe := in
+		probe.Seafloor, probe.Continental = 1e20, 1e20
+		f := s.sources.law.Fluxes(&probe)
+		deposit := m.deposited * st.row.Land
+		ksub := f.Subducted / 1e20
+		kcont := (f.Metamorphic + f.Foundered) / 1e20
+		share := func(flux, k float64) float64 {
+			if k <= 0 {
+				return 0 // nothing leaves the reservoir: it starts empty
+			}
+			return flux / k
+		}
+		z.Seafloor = share(st.row.Seafloor+deposit, ksub)
+		z.Continental = share(st.row.Land-deposit, kcont)
+		z.Mantle = total - z.Surface - z.Seafloor - z.Continental
+		in.Mantle, in.Seafloor, in.Continental = z.Mantle, z.Seafloor, z.Continental
+		g := s.sources.law.Fluxes(&in)
+		return z, g.Ridge + g.Arc + g.Metamorphic - st.row.Land - st.row.Seafloor
+	}
+
+	lo, hi := s.FrozenBelow-40, m.top()-1
+	const step = 0.5
+	at := func(t float64) (State, float64, float64, bool) {
+		st, low, high := m.steadyAt(d, t)
+		if low || high {
+			return State{}, 0, 0, false
+		}
+		z, r := fill(&st)
+		return z, r, st.grow, true
+	}
+	// scan walks from one temperature to another and returns the first steady
+	// stable state; failing that, the last stable state before the branch ends.
+	scan := func(from, to float64, good func(t float64) bool) (best State, found, any bool) {
+		h := math.Copysign(step, to-from)
+		var pt, pr float64
+		have := false
+		for t := from; (to-t)*h >= 0; t += h {
+			if !good(t) {
+				have = false
+				continue
+			}
+			z, r, grow, ok := at(t)
+			if !ok || grow >= 0 {
+				have = false
+				if any && h < 0 {
+					return best, false, true // end of the warm branch
+				}
+				continue
+			}
+			if have && (pr < 0) != (r < 0) && pr*h > 0 {
+				x := bracketed(func(x float64) float64 { _, r, _, _ := at(x); return r }, pt, t, pr, r, 1e-10)
+				if z, _, grow, ok := at(x); ok && grow < 0 && z.Mantle > 0 {
+					return z, true, true
+				}
+			}
+			if z.Mantle > 0 {
+				best, any = z, true
+			}
+			pt, pr, have = t, r, true
+		}
+		return best, false, any
+	}
+	warm := func(t float64) bool { return t >= s.FrozenBelow }
+	all := func(float64) bool { return true }
+	if s.StartSide == "cold" {
+		if z, found, any := scan(lo, hi, all); found {
+			return z, "an equilibrium reached from the cold side"
+		} else if any {
+			return z, "no equilibrium at the start age: the coldest stable climate"
+		}
+	}
+	z, found, any := scan(hi, lo, warm)
+	switch {
+	case found:
+		return z, "an equilibrium reached from the warm side"
+	case any:
+		// No steady carbon cycle on the warm branch: start at its cold end,
+		// where weathering is as weak as it gets, if sources are still weaker.
+		return z, "no warm equilibrium at the start age: the end of the warm branch"
+	}
+	z, found, any = scan(s.FrozenBelow, lo, all)
+	if found || any {
+		return z, "no warm climate at the start age: the planet is born frozen"
+	}
+	return m.bare(y, d, total), "no climate in balance at the start age inside the radiation law's range"
+}
+
+// bare returns a state at the middle of the radiation law's CO₂ box, for a
+// planet that no CO₂ pressure can bring into balance.
+func (m *Model) bare(y State, d *memo, total float64) State {
+	lo, hi := m.pressures()
+	p := math.Sqrt(lo * hi)
+	t := m.set.RefT
+	if m.imbalance(d.sun, t, p) < 0 {
+		p = hi
+	} else {
+		p = lo
+	}
+	for i := 0; i < 200; i++ { // a few years of plain relaxation
+		t += m.imbalance(d.sun, t, p) / 4
+		t = math.Min(math.Max(t, 100), m.top())
+	}
+	y.T = t
+	y.Surface, _ = m.set.ocean.law.Carbon(p, t)
+	y.Mantle = total - y.Surface
+	return y
+}
+
+// strength holds how strongly the thermostat acts at a state.
+type strength struct {
+	gain     float64 // d ln W/d ln p along the energy balance
+	response float64 // e-folding time of surface carbon, yr
+}
+
+// strength differentiates the right-hand side at a state: T follows carbon,
+//
+//	λ = ∂Ċ/∂C − (∂Ċ/∂T)(∂Ṫ/∂C)/(∂Ṫ/∂T),  response = −1/λ
+//
+// and the gain takes W = W_land + W_sea along the same line.
+func (m *Model) strength(age float64, y State) strength {
+	eval := func(t, c float64) (heat, carbon, lnw, lnp float64) {
+		z := y
+		z.T, z.Surface = t, c
+		var r record.Row
+		m.diagnose(&r, age, &z)
+		return r.Absorbed - r.Outgoing, r.Imbalance, math.Log(r.Land + r.Seafloor), math.Log(r.PCO2)
+	}
+	set := &fd.Settings{Formula: fd.Central, Step: 1e-4}
+	part := func(pick int, byT bool) float64 {
+		return fd.Derivative(func(x float64) float64 {
+			var h, c, w, p float64
+			if byT {
+				h, c, w, p = eval(y.T+x, y.Surface)
+			} else {
+				h, c, w, p = eval(y.T, y.Surface*(1+x))
+			}
+			return [...]float64{h, c, w, p}[pick]
+		}, 0, set)
+	}
+	slope := -part(0, false) / part(0, true) // dT/d ln C along the energy balance
+	along := func(pick int) float64 { return part(pick, false) + part(pick, true)*slope }
+	return strength{gain: along(2) / along(3), response: -y.Surface / along(1)}
+}
+
+// sensitivityK returns the warming per doubling of CO₂ at the reference state, K.
+func (m *Model) sensitivityK() float64 {
+	s := m.set
+	sun := s.RefSun / 4
+	lam := fd.Derivative(func(t float64) float64 { return m.imbalance(sun, t, s.RefP) }, s.RefT, &fd.Settings{Formula: fd.Central, Step: 1e-3})
+	return (m.imbalance(sun, s.RefT, 2*s.RefP) - m.imbalance(sun, s.RefT, s.RefP)) / -lam
+}
+
+// gyr converts years for messages.
+func gyr(age float64) float64 { return age / units.Gyr }

@@ -1,0 +1,390 @@
+package carbon
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"math"
+
+	"cycle/carbon/record"
+	"cycle/carbon/units"
+	"cycle/ode"
+)
+
+// Reasons for which a history ends.
+const (
+	endTime     = "reached the end of the history"
+	endStar     = "the star left the main sequence"
+	endHot      = "the surface left the radiation law's range on the hot side"
+	endCold     = "the surface left the radiation law's range on the cold side"
+	endDense    = "CO2 left the radiation law's range"
+	endCondense = "CO2 condenses at the coldest place"
+	endFreezes  = "the largest number of freezes was reached"
+	endSolver   = "the solver could not go on"
+)
+
+// moistLasting is how long the stratosphere must stay moist to count as a
+// lasting failure, yr. A thaw overshoots for less than a million years.
+const moistLasting = 10 * units.Myr
+
+// span is one stay in the frozen or the moist state.
+type span struct {
+	lost       float64 // loss of the branch that led to it, NaN when none was located
+	start, end float64 // threshold crossings; end is NaN while it lasts
+}
+
+// begun returns the date of the failure: the loss of the branch, which does not
+// depend on a threshold, or else the crossing.
+func (s span) begun() float64 {
+	if math.IsNaN(s.lost) {
+		return s.start
+	}
+	return s.lost
+}
+
+// regainLasting is how long a regained stability must last for the loss before
+// it to be another matter, yr.
+const regainLasting = 10 * units.Myr
+
+type mark struct {
+	name string
+	t    float64
+}
+
+// history is what one integration leaves behind.
+type history struct {
+	rows   []record.Row
+	marks  []mark
+	frozen []span
+	moist  []span
+	end    float64
+	reason string
+	cause  error // of endSolver
+	stats  ode.Stats
+	drift  float64 // largest |change of total carbon|/total
+	first  State
+	atRef  State
+	hasRef bool
+	words  string // where it started
+}
+
+// atol returns the noise floor of every component at a relative tolerance.
+func (m *Model) atol(rtol float64) []float64 {
+	a := make([]float64, m.lay.n)
+	a[0] = rtol * 1 // K
+	a[m.lay.surface] = rtol * 1e15
+	a[m.lay.seafloor] = rtol * 1e17
+	a[m.lay.continental] = rtol * 1e18
+	a[m.lay.mantle] = rtol * 1e20
+	a[m.lay.mantleT] = rtol * 1
+	if m.lay.coreT >= 0 {
+		a[m.lay.coreT] = rtol * 1
+	}
+	return a
+}
+
+// events of the integration, in this order.
+const (
+	evFreeze = iota
+	evThaw
+	evC3
+	evC4
+	evMoist
+	evHot
+	evCold
+	evDense
+	evCondense
+	evCount
+)
+
+// lookup gives the CO₂ pressure of a state vector, once per state.
+type lookup struct {
+	m       *Model
+	t, c, p float64
+}
+
+func (l *lookup) pressure(y []float64) float64 {
+	t, c := y[0], y[l.m.lay.surface]
+	if t != l.t || c != l.c {
+		l.t, l.c = t, c
+		l.p = l.m.set.ocean.law.Solve(c, 0, t).P
+	}
+	return l.p
+}
+
+// integrate runs the history from its start to an age in yr. With full, a row
+// is kept wherever something happens; without, only the state at the reference
+// age. It fails only when ctx ends.
+func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (*history, error) {
+	s := m.set
+	h := &history{reason: endTime}
+	m.memo.valid = false
+	st, words := m.start()
+	h.first, h.words = st, words
+	y := make([]float64, m.lay.n)
+	m.lay.pack(y, &st)
+	total := st.Carbon()
+
+	end := until
+	if e := s.star.law.End(); e <= end {
+		end, h.reason = e, endStar
+	}
+	box := s.radiation.law.Box()
+	look := &lookup{m: m, t: math.NaN()}
+	limit := func(target float64, stated bool) func(float64, []float64) float64 {
+		if !stated {
+			return func(float64, []float64) float64 { return -1 }
+		}
+		return func(_ float64, y []float64) float64 { return math.Log(look.pressure(y) / target) }
+	}
+	below := func(x float64, stated bool) func(float64, []float64) float64 {
+		if !stated {
+			return func(float64, []float64) float64 { return 1 }
+		}
+		return func(_ float64, y []float64) float64 { return y[0] - x }
+	}
+	temp := func(x float64) func(float64, []float64) float64 {
+		return func(_ float64, y []float64) float64 { return y[0] - x }
+	}
+	events := make([]ode.Event, evCount)
+	events[evFreeze] = ode.Event{Name: record.MarkFroze, Func: temp(s.FrozenBelow), Direction: ode.Falling}
+	events[evThaw] = ode.Event{Name: record.MarkThawed, Func: temp(s.ThawedAbove), Direction: ode.Rising}
+	events[evC3] = ode.Event{Name: record.MarkC3, Func: limit(150e-6, true), Direction: ode.Falling}
+	events[evC4] = ode.Event{Name: record.MarkC4, Func: limit(10e-6, true), Direction: ode.Falling}
+	events[evMoist] = ode.Event{Name: record.MarkMoist, Func: temp(s.MoistFrom)}
+	events[evHot] = ode.Event{Name: "hot edge", Func: temp(m.top()), Direction: ode.Rising, Terminal: 1}
+	events[evCold] = ode.Event{Name: "cold edge", Func: below(box.T.Lo, box.T.Stated()), Direction: ode.Falling, Terminal: 1}
+	events[evDense] = ode.Event{Name: "dense edge", Func: limit(box.P.Hi, box.P.Stated()), Direction: ode.Rising, Terminal: 1}
+	events[evCondense] = ode.Event{Name: record.MarkCondensation, Direction: ode.Rising, Terminal: 1, Func: func(_ float64, y []float64) float64 {
+		return math.Log(look.pressure(y) / co2sat(y[0]-s.ColdContrast))
+	}}
+
+	stops := []float64{}
+	if s.RefAge > s.Start && s.RefAge < end {
+		stops = append(stops, s.RefAge)
+	}
+	problem := &ode.Problem{Dim: m.lay.n, Func: func(dy []float64, t float64, y []float64) { m.derivative(dy, t, y) }, Events: events, StopTimes: stops}
+	settings := &ode.Settings{RelTol: rtol, AbsTol: m.atol(rtol), MaxStep: s.MaxStep, InitialStep: 1, MaxSteps: 400000,
+		Guard: ode.Guard{Off: !s.Guard, Blocks: [][]int{bands(m.lay.bands)}}}
+	solver, err := ode.NewSolver(problem, settings)
+	if err != nil {
+		return nil, fmt.Errorf("carbon: %w", err)
+	}
+
+	keep := func(t float64, y []float64, force bool) {
+		if !full {
+			return
+		}
+		var z State
+		m.lay.unpack(&z, y)
+		var r record.Row
+		chem := m.diagnose(&r, t, &z)
+		r.PH = -math.Log10(chem.H)
+		if n := len(h.rows); n > 0 && !force {
+			l := &h.rows[n-1]
+			if math.Abs(r.Temperature-l.Temperature) < 0.05 && math.Abs(math.Log(r.PCO2/l.PCO2)) < 0.01 && t-l.Age < 10*units.Myr {
+				return
+			}
+		}
+		h.rows = append(h.rows, r)
+	}
+	drift := func(y []float64) {
+		var z State
+		m.lay.unpack(&z, y)
+		h.drift = math.Max(h.drift, math.Abs(z.Carbon()-total)/total)
+	}
+
+	// The state of the climate, with hysteresis.
+	isFrozen := y[0] < s.FrozenBelow
+	isMoist := y[0] > s.MoistFrom
+	nan := math.NaN()
+	if isFrozen {
+		h.frozen = append(h.frozen, span{lost: nan, start: s.Start, end: nan})
+	}
+	if isMoist {
+		h.moist = append(h.moist, span{lost: nan, start: s.Start, end: nan})
+	}
+	// lost is the located loss of the present branch that is not yet followed
+	// by a jump. Close to the fold the state winds around it and stability
+	// comes and goes; the first loss of such a row counts.
+	lost, regained := nan, nan
+	seen := map[string]bool{}
+	once := func(name string, t float64) {
+		if !seen[name] {
+			seen[name] = true
+			h.marks = append(h.marks, mark{name, t})
+		}
+	}
+
+	keep(s.Start, y, true)
+	err = solver.Init(s.Start, end, y)
+	done := false
+	for n := 0; err == nil && !done; n++ {
+		if n&255 == 0 && ctx.Err() != nil {
+			return nil, ctx.Err()
+		}
+		done, err = solver.Step()
+		if err != nil {
+			break
+		}
+		t, y := solver.T(), solver.Y()
+		force := done
+		for _, l := range solver.Losses() {
+			force = true
+			if l.Regained {
+				regained = l.T
+				continue
+			}
+			if !math.IsNaN(lost) && l.T-regained < regainLasting {
+				continue
+			}
+			lost = l.T
+			if !isFrozen && !isMoist {
+				h.marks = append(h.marks, mark{record.MarkBranchLost, l.T})
+			}
+		}
+		if t-regained >= regainLasting {
+			lost, regained = nan, nan
+		}
+		for _, e := range solver.Fired() {
+			force = true
+			switch e.Index {
+			case evFreeze:
+				if !isFrozen {
+					isFrozen = true
+					h.frozen = append(h.frozen, span{lost: lost, start: e.T, end: nan})
+					h.marks = append(h.marks, mark{record.MarkFroze, e.T})
+					lost, regained = nan, nan
+				}
+			case evThaw:
+				if isFrozen {
+					isFrozen = false
+					h.frozen[len(h.frozen)-1].end = e.T
+					h.marks = append(h.marks, mark{record.MarkThawed, e.T})
+					lost, regained = nan, nan
+				}
+			case evC3, evC4:
+				if !isFrozen {
+					once(e.Name, e.T)
+				}
+			case evMoist:
+				if e.Rising && !isMoist {
+					isMoist = true
+					h.moist = append(h.moist, span{lost: lost, start: e.T, end: nan})
+					once(record.MarkMoist, e.T)
+				} else if !e.Rising && isMoist {
+					isMoist = false
+					h.moist[len(h.moist)-1].end = e.T
+				}
+				lost, regained = nan, nan
+			case evHot:
+				h.reason = endHot
+			case evCold:
+				h.reason = endCold
+			case evDense:
+				h.reason = endDense
+			case evCondense:
+				h.reason = endCondense
+				once(record.MarkCondensation, e.T)
+			}
+		}
+		if t == s.RefAge {
+			m.lay.unpack(&h.atRef, y)
+			h.hasRef = true
+			force = true
+		}
+		drift(y)
+		keep(t, y, force)
+		if len(h.frozen) >= int(s.MaxFreezes) && isFrozen && !done {
+			h.reason = endFreezes
+			break
+		}
+	}
+	h.stats = solver.Stats()
+	h.end = solver.T()
+	if err != nil {
+		var se *ode.StepError
+		if !errors.As(err, &se) {
+			return nil, fmt.Errorf("carbon: %w", err)
+		}
+		h.reason, h.cause = endSolver, err
+	}
+	return h, nil
+}
+
+func bands(n int) []int {
+	out := make([]int, n)
+	for i := range out {
+		out[i] = i
+	}
+	return out
+}
+
+// anchor solves for total carbon, or for the scale of outgassing, so that the
+// history passes through the reference CO₂ at the reference age. It returns the
+// residual ln(p/p₀) and what was found.
+func (m *Model) anchor(ctx context.Context, rtol float64) (residual float64, err error) {
+	s := m.set
+	knob := &m.content
+	if s.Solve == "outgassing" {
+		knob = &m.scale
+	}
+	x0 := *knob
+	const far = 50
+	shoot := func(x float64) (float64, error) {
+		*knob = x0 * math.Exp(x)
+		h, err := m.integrate(ctx, math.Min(s.End, s.RefAge*(1+1e-9)), rtol, false)
+		switch {
+		case err != nil:
+			return 0, err
+		case h.hasRef && h.atRef.T > s.FrozenBelow:
+			return math.Log(s.ocean.law.Solve(h.atRef.Surface, 0, h.atRef.T).P / s.RefP), nil
+		case h.hasRef || h.reason == endCondense || h.reason == endCold:
+			return -far, nil // frozen: too little
+		case h.reason == endSolver:
+			return 0, fmt.Errorf("carbon: while solving for %s: %w", s.Solve, h.cause)
+		}
+		return far, nil // too hot or too dense: too much
+	}
+	tol := math.Max(1e-8, 0.3*rtol)
+	// March out from the start value until the sign changes, then close in.
+	a := 0.0
+	fa, err := shoot(a)
+	if err != nil || math.Abs(fa) < tol {
+		return fa, err
+	}
+	step := 0.25
+	if math.Abs(fa) < 5 {
+		step = math.Min(0.25, math.Max(0.02, math.Abs(fa)))
+	}
+	b, fb := a, fa
+	for fa*fb > 0 {
+		a, fa = b, fb
+		b -= math.Copysign(step, fa)
+		if math.Abs(b) > math.Log(300) {
+			return fb, &SetupError{key: "carbon.solve", Reason: fmt.Sprintf("no value within a factor of 300 of the start brings the history through %s at %s; at the last one tried it misses by ln(p/p0) = %.2g", units.Pressure.Format(s.RefP, "ppm"), units.Time.Format(s.RefAge, "Gyr"), fb)}
+		}
+		if fb, err = shoot(b); err != nil {
+			return 0, err
+		}
+		step *= 1.6
+	}
+	for i := 0; i < 60 && math.Abs(fb) > tol && math.Abs(b-a) > 1e-13; i++ {
+		// Illinois variant of regula falsi: b is the newest point.
+		x := b - fb*(b-a)/(fb-fa)
+		if math.Abs(fa) >= far || math.Abs(fb) >= far {
+			x = 0.5 * (a + b)
+		}
+		fx, err := shoot(x)
+		if err != nil {
+			return 0, err
+		}
+		if fx*fb < 0 {
+			a, fa = b, fb
+		} else {
+			fa *= 0.5
+		}
+		b, fb = x, fx
+	}
+	return fb, nil
+}

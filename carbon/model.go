@@ -1,0 +1,278 @@
+package carbon
+
+import (
+	"fmt"
+	"math"
+
+	"cycle/carbon/climate"
+	"cycle/carbon/interior"
+	"cycle/carbon/ocean"
+	"cycle/carbon/outgas"
+	"cycle/carbon/record"
+	"cycle/carbon/star"
+	"cycle/carbon/units"
+	"cycle/carbon/weathering"
+)
+
+// A SetupError names the key whose value cannot stand.
+type SetupError struct {
+	key    string
+	Reason string // what was found and what is allowed
+}
+
+func (e *SetupError) Error() string { return e.key + ": " + e.Reason }
+
+// Key returns the dotted key.
+func (e *SetupError) Key() string { return e.key }
+
+// Model is a planet ready to be integrated: laws bound, albedo solved. It is
+// not safe for use by several goroutines.
+type Model struct {
+	set    *Setup
+	planet interior.Planet
+	lay    layout
+
+	area      float64 // relative to the Earth's
+	dilution  float64 // area/mantle mass relative to the Earth's
+	content   float64 // carbon per planet mass, mol/kg
+	scale     float64 // of the sources
+	ref       outgas.Reference
+	deposited float64 // fraction of land carbonate laid down on the seafloor
+
+	lnP0, lnH0      float64 // reference state
+	p150, p10       float64 // bar
+	iceNorm         [2]float64
+	limNorm         float64
+	freeName        string
+	free            float64
+	balanceResidual float64 // W/m²
+
+	memo memo
+}
+
+// memo keeps what depends on age and mantle alone: within one column sweep of
+// the Jacobian it does not change.
+type memo struct {
+	age, mantleT, coreT float64
+	flow                interior.Flow
+	sun                 float64 // S/4, W/m²
+	land, biology       float64
+	valid               bool
+}
+
+// metamorphic returns what is left of the total outgassing, mol/yr.
+func (s *Setup) metamorphic() float64 { return s.OutgassingRef - s.RidgeRef - s.ArcRef }
+
+// seafloorRef returns the reference flux of the seafloor, 0 when there is no law.
+func (s *Setup) seafloorRef() float64 {
+	if s.seafloor.name == "none" {
+		return 0
+	}
+	return s.SeafloorRef
+}
+
+// Check tells whether the numbers fit together; the error has a Key method.
+func (s *Setup) Check() error {
+	fail := func(key, format string, args ...any) error {
+		return &SetupError{key: key, Reason: fmt.Sprintf(format, args...)}
+	}
+	gyr := func(x float64) string { return units.Time.Format(x, "Gyr") }
+	tmol := func(x float64) string { return units.Flux.Format(x, "Tmol/yr") }
+	switch {
+	case s.End <= s.Start:
+		return fail("time.end", "found %s, allowed is more than time.start, %s", gyr(s.End), gyr(s.Start))
+	case s.Solve != "nothing" && (s.RefAge <= s.Start || s.RefAge >= s.End):
+		return fail("reference.age", "found %s, allowed is between time.start, %s, and time.end, %s, when carbon.solve is %q", gyr(s.RefAge), gyr(s.Start), gyr(s.End), s.Solve)
+	case s.metamorphic() < 0:
+		return fail("sources.outgassing", "found %s, allowed is at least sources.ridge + sources.arc, %s", tmol(s.OutgassingRef), tmol(s.RidgeRef+s.ArcRef))
+	case s.seafloorRef() >= s.OutgassingRef:
+		return fail("weathering.seafloor.modern", "found %s, allowed is less than sources.outgassing, %s", tmol(s.SeafloorRef), tmol(s.OutgassingRef))
+	}
+	return nil
+}
+
+// Reference state of an Earth-sized planet.
+func (s *Setup) reference() outgas.Reference {
+	return outgas.Reference{
+		Age: s.RefAge, Ridge: s.RidgeRef, Arc: s.ArcRef, Metamorphic: s.metamorphic(),
+		Land: s.OutgassingRef - s.seafloorRef(), Seafloor: s.seafloorRef(),
+		Continental: s.ContinentalRef, Mantle: s.MantleRef,
+	}
+}
+
+// NewModel binds the laws of a setup and solves the free albedo at the
+// reference state. The laws stay those of the setup: one model at a time may
+// use a setup.
+func NewModel(s *Setup) (*Model, error) {
+	if err := s.Check(); err != nil {
+		return nil, err
+	}
+	bind := func(section string, err error) error {
+		if err == nil {
+			return nil
+		}
+		return &SetupError{key: section, Reason: err.Error()}
+	}
+	m := &Model{set: s, scale: s.OutgassingScale, content: s.Content}
+	m.planet = interior.NewPlanet(s.Mass/units.EarthMass, s.CoreFraction)
+	earth := interior.NewPlanet(1, earthCore)
+	m.area = m.planet.Area / earth.Area
+	m.dilution = m.area / (m.planet.MantleMass / earth.MantleMass)
+	m.lay = newLayout(s.interior.law.HasCore())
+
+	m.ref = s.reference()
+	m.deposited = m.ref.Deposited()
+	m.lnP0 = math.Log(s.RefP)
+	sun := s.RefSun / 4
+
+	cref := climate.Reference{T: s.RefT, P: s.RefP, Sun: sun}
+	if err := bind("star", s.star.law.Bind()); err != nil {
+		return nil, err
+	}
+	if err := bind("radiation", s.radiation.law.Bind(cref)); err != nil {
+		return nil, err
+	}
+	if err := bind("albedo", s.albedo.law.Bind(cref)); err != nil {
+		return nil, err
+	}
+	res, err := climate.SolveFree(s.radiation.law, s.albedo.law, cref)
+	if err != nil {
+		return nil, bind("albedo", err)
+	}
+	m.balanceResidual = res
+	if name, _, v := s.albedo.law.Free(); v != nil {
+		m.freeName, m.free = name, *v
+	}
+	if err := bind("interior", s.interior.law.Bind(m.planet, s.RefAge)); err != nil {
+		return nil, err
+	}
+	if err := bind("sources", s.sources.law.Bind(m.ref)); err != nil {
+		return nil, err
+	}
+	if err := bind("ocean", s.ocean.law.Bind(ocean.Planet{Area: m.planet.Area, Gravity: m.planet.Gravity, Mass: s.OceanFraction * s.Mass})); err != nil {
+		return nil, err
+	}
+	alb := s.albedo.law.Planetary(s.RefT, s.RefP)
+	wref := weathering.Reference{T: s.RefT, P: s.RefP, Sun: sun, Alb: alb, Flux: m.ref.Land, Land: 0.3 * units.EarthArea}
+	if err := bind("weathering.land", s.land.law.Bind(wref)); err != nil {
+		return nil, err
+	}
+	wref.Flux = m.ref.Seafloor
+	if err := bind("weathering.seafloor", s.seafloor.law.Bind(wref)); err != nil {
+		return nil, err
+	}
+	ice := s.albedo.law.IceFraction(s.RefT)
+	m.iceNorm = [2]float64{1 / (1 - (1-s.LandIce)*ice), 1 / (1 - (1-s.SeafloorIce)*ice)}
+	m.limNorm = (s.RefP + s.Limiter) / s.RefP
+	c, alk := s.ocean.law.Carbon(s.RefP, s.RefT)
+	m.lnH0 = math.Log(s.ocean.law.Solve(c, alk, s.RefT).H)
+	return m, nil
+}
+
+// earthCore is the core mass fraction at which reference fluxes hold.
+const earthCore = 0.33
+
+// at returns x(t) of a smooth step.
+func (p *Step) at(age float64) float64 {
+	if p.Before == p.After {
+		return p.After
+	}
+	// ½(1 + tanh x) = 1/(1 + e^(−2x))
+	return p.Before + (p.After-p.Before)/(1+math.Exp(-2*(age-p.Middle)/p.Width))
+}
+
+// drive fills the memo for an age and the interior's temperatures.
+func (m *Model) drive(age, mantleT, coreT float64) *memo {
+	d := &m.memo
+	if d.valid && d.age == age && d.mantleT == mantleT && d.coreT == coreT {
+		return d
+	}
+	s := m.set
+	if !d.valid || d.age != age {
+		d.sun = star.Sunlight(s.star.law.Luminosity(age), s.Distance, s.Eccentricity) / 4
+		d.land = s.Land.at(age)
+		d.biology = s.Biology.at(age)
+	}
+	d.flow = s.interior.law.Flow(age, mantleT, coreT)
+	d.age, d.mantleT, d.coreT, d.valid = age, mantleT, coreT, true
+	return d
+}
+
+// weather fills the fluxes of both sinks at temperature t (K) and CO₂ pressure
+// p (bar) into a row that already has sunlight, albedo, land, biology and crust.
+//
+//	W_land = W₀ (A/A_E) f_land f_bio i_land ℓ(p) w_land(T, p)
+//	W_sea  = W₀ (A/A_E) i_sea ℓ(p) w_sea(T, p)
+//	ℓ(p)   = p/(p + p_ℓ), i = 1 − (1 − σ)·ice, both relative to the reference state
+//
+// σ is the strength under ice.
+func (m *Model) weather(r *record.Row, h float64) {
+	s := m.set
+	env := weathering.Env{Age: r.Age, T: r.Temperature, P: r.PCO2, LnP: math.Log(r.PCO2) - m.lnP0, Sun: r.Sunlight / 4, Alb: r.Albedo, Crust: r.Crust, LnH: math.Log(h) - m.lnH0}
+	lim := m.limNorm * r.PCO2 / (r.PCO2 + s.Limiter)
+	r.Land = m.ref.Land * m.area * r.LandFraction * r.Biology * m.iceNorm[0] * (1 - (1-s.LandIce)*r.Ice) * lim * s.land.law.Relative(&env)
+	r.Seafloor = 0
+	if m.ref.Seafloor > 0 {
+		r.Seafloor = m.ref.Seafloor * m.area * m.iceNorm[1] * (1 - (1-s.SeafloorIce)*r.Ice) * lim * s.seafloor.law.Relative(&env)
+	}
+}
+
+// diagnose evaluates every law once: what it puts into the row is what the
+// derivative sums and what the tables print. It returns the chemistry.
+func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
+	s := m.set
+	d := m.drive(age, y.MantleT, y.CoreT)
+	r.Age = age
+	r.Temperature = y.T
+	r.Sunlight = 4 * d.sun
+	r.LandFraction, r.Biology = d.land, d.biology
+	r.MantleTemperature, r.CoreTemperature = y.MantleT, y.CoreT
+	r.HeatFlow, r.Radiogenic, r.Crust = d.flow.Heat, d.flow.Radiogenic, d.flow.Crust
+	r.Surface, r.SeafloorCarbon, r.Continental, r.Mantle = y.Surface, y.Seafloor, y.Continental, y.Mantle
+	r.Total = y.Carbon()
+
+	chem := s.ocean.law.Solve(y.Surface, 0, y.T)
+	r.PCO2, r.DIC, r.Alk, r.Omega = chem.P, chem.DIC, chem.Alk, chem.Omega
+	lnp := math.Log(chem.P)
+	r.Albedo = s.albedo.law.Planetary(y.T, chem.P)
+	r.Ice = s.albedo.law.IceFraction(y.T)
+	r.Absorbed = d.sun * (1 - r.Albedo)
+	r.Outgoing = s.radiation.law.Outgoing(y.T, chem.P, lnp)
+	m.weather(r, chem.H)
+
+	in := outgas.Input{Age: age, Crust: r.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale, Mantle: y.Mantle, Seafloor: y.Seafloor, Continental: y.Continental}
+	f := s.sources.law.Fluxes(&in)
+	r.Ridge, r.Arc, r.Metamorphic = f.Ridge, f.Arc, f.Metamorphic
+	r.Outgassing = f.Ridge + f.Arc + f.Metamorphic + r.Pulse
+	r.Imbalance = r.Outgassing - r.Land - r.Seafloor
+	r.Deposited = m.deposited * r.Land
+	r.Subducted = f.Subducted
+	r.Foundered = f.Foundered
+	return chem
+}
+
+// derivative is the right-hand side: it calls diagnose and sums its fluxes.
+//
+//	c dT/dt           = (S/4)(1 − A) − F
+//	dC_surface/dt     = ridge + arc + metamorphic − W_land − W_sea
+//	dC_seafloor/dt    = W_sea + δ W_land − subducted
+//	dC_continental/dt = (1 − δ) W_land − metamorphic − foundered
+//	dC_mantle/dt      = subducted − arc + foundered − ridge
+//	dT_mantle/dt      from the interior
+func (m *Model) derivative(dydt []float64, age float64, y []float64) {
+	var st State
+	var r record.Row
+	m.lay.unpack(&st, y)
+	m.diagnose(&r, age, &st)
+	flow := &m.memo.flow
+	rate := State{
+		T:           (r.Absorbed - r.Outgoing) * units.Year / m.set.HeatCapacity,
+		Surface:     r.Imbalance,
+		Seafloor:    r.Seafloor + r.Deposited - r.Subducted,
+		Continental: r.Land - r.Deposited - r.Metamorphic - r.Foundered,
+		Mantle:      r.Subducted - r.Arc + r.Foundered - r.Ridge,
+		MantleT:     flow.MantleRate,
+		CoreT:       flow.CoreRate,
+	}
+	m.lay.pack(dydt, &rate)
+}

@@ -1,0 +1,171 @@
+package carbon
+
+import (
+	"fmt"
+	"math"
+
+	"cycle/carbon/record"
+)
+
+// outcome words the verdict: what, when and with what numerical error, and the
+// process that brought it about at a glance.
+func (b *builder) outcome(check *history) {
+	o, h, s := &b.run.Outcome, b.h, b.m.set
+	when := date(o.TimeGyr, o.ErrorGyr)
+	liquid := gyr(b.fail.t - s.Start)
+	cold := b.fail.span
+	switch b.fail.kind {
+	case record.Temperate:
+		o.Sentence = fmt.Sprintf("Surface water stays liquid from %.3g Gyr to the end of the history at %.4g Gyr.", gyr(s.Start), o.TimeGyr)
+		if n := len(h.frozen); n > 0 {
+			o.Sentence = fmt.Sprintf("No lasting failure up to %.4g Gyr; the planet froze %s on the way and recovered.", o.TimeGyr, times(n))
+		}
+	case record.Snowball:
+		o.Sentence = fmt.Sprintf("The planet freezes over at %s, after %.3g Gyr of liquid water, and %s.", when, liquid, staysFrozen(cold, h))
+		if liquid < 1e-3 {
+			o.Sentence = fmt.Sprintf("The planet has no warm climate at its start, %.3g Gyr, freezes over at once and %s.", gyr(s.Start), staysFrozen(cold, h))
+		}
+	case record.LimitCycles:
+		o.Sentence = fmt.Sprintf("From %s on the climate cycles between snowball and warm: %d freezes by %.3g Gyr, %.0f %% of the history under ice.", when, len(h.frozen), gyr(h.end), 100*b.run.FrozenShare)
+	case record.MoistGreen:
+		o.Sentence = fmt.Sprintf("Surface water is safe for %.3g Gyr; at %s the stratosphere turns moist and the planet begins to lose its water.", liquid, when)
+	case record.RunawayGreen:
+		o.Sentence = fmt.Sprintf("Surface water stays liquid for %.3g Gyr; at %s sunlight exceeds what the planet can radiate: runaway greenhouse.", liquid, when)
+	case record.Condensation:
+		o.Sentence = fmt.Sprintf("At %s, CO2 condenses at the coldest place before the greenhouse can act.", date(gyr(h.end), o.ErrorGyr))
+		if cold.start > 0 {
+			o.Sentence = fmt.Sprintf("The planet freezes over at %s and cannot thaw: CO2 condenses at the coldest place at %.4g Gyr.", when, gyr(h.end))
+		}
+	case record.StarLeft:
+		o.Sentence = fmt.Sprintf("Surface water stays liquid until the star leaves the main sequence at %.4g Gyr.", o.TimeGyr)
+		if n := len(h.frozen); n > 0 {
+			o.Sentence = fmt.Sprintf("No lasting failure until the star leaves the main sequence at %.4g Gyr; the planet froze %s on the way and recovered.", o.TimeGyr, times(n))
+		}
+	case record.BeyondRange:
+		o.Sentence = fmt.Sprintf("At %s the climate leaves the range of the radiation law (%s): what follows is not known to this model.", when, beyond(h.reason))
+	case record.Undecided:
+		o.Sentence = fmt.Sprintf("Undecided: the solver could not go on at %.4g Gyr.", gyr(h.end))
+	}
+	o.Why = b.why()
+}
+
+// date words a date with its numerical error.
+func date(t, e float64) string {
+	switch {
+	case e == 0 || math.IsNaN(e):
+		return fmt.Sprintf("%.4f Gyr", t)
+	case e >= 1e-3:
+		return fmt.Sprintf("%.3f ± %.1g Gyr", t, e)
+	case e >= 1e-4:
+		return fmt.Sprintf("%.4f ± %.1g Gyr", t, e)
+	}
+	return fmt.Sprintf("%.4f Gyr (± %s)", t, span1(e))
+}
+
+// span1 words a short span in the unit that suits it.
+func span1(g float64) string {
+	yr := g * 1e9
+	switch {
+	case yr >= 1e6:
+		return fmt.Sprintf("%.1g Myr", yr/1e6)
+	case yr >= 1e3:
+		return fmt.Sprintf("%.0f kyr", yr/1e3)
+	case yr >= 1:
+		return fmt.Sprintf("%.0f yr", yr)
+	}
+	return "below 1 yr"
+}
+
+func times(n int) string {
+	switch n {
+	case 1:
+		return "once"
+	case 2:
+		return "twice"
+	}
+	return fmt.Sprintf("%d times", n)
+}
+
+func staysFrozen(f span, h *history) string {
+	if math.IsNaN(f.end) {
+		where := ""
+		if h.reason != endTime {
+			where = ", where " + h.reason
+		}
+		return fmt.Sprintf("is still frozen at %.4g Gyr%s", gyr(h.end), where)
+	}
+	return fmt.Sprintf("thaws only at %.4g Gyr", gyr(f.end))
+}
+
+func beyond(reason string) string {
+	switch reason {
+	case endCold:
+		return "too cold"
+	case endDense:
+		return "too much CO2"
+	}
+	return "too hot"
+}
+
+// why names what changed between the start and the failure, in numbers.
+func (b *builder) why() string {
+	rows := b.h.rows
+	at := func(t float64) *record.Row {
+		best := &rows[0]
+		for i := range rows {
+			if rows[i].Age <= t {
+				best = &rows[i]
+			}
+		}
+		return best
+	}
+	r0, r := &rows[0], at(b.fail.t)
+	switch b.fail.kind {
+	case record.Snowball, record.LimitCycles, record.Condensation:
+		if b.fail.t <= r0.Age {
+			return fmt.Sprintf("at the start sunlight is %.0f %% of the Earth's today and outgassing %.3g Tmol/yr", 100*r0.Flux, r0.Outgassing/1e12)
+		}
+		needs := ""
+		if !math.IsNaN(r.WarmNeeds) {
+			needs = fmt.Sprintf("; the warm state needs %.3g Tmol/yr", r.WarmNeeds/1e12)
+		}
+		return fmt.Sprintf("outgassing went from %.3g to %.3g Tmol/yr while sunlight went from %.0f to %.0f %% of the Earth's today and weatherable land from %.2g to %.2g%s",
+			r0.Outgassing/1e12, r.Outgassing/1e12, 100*r0.Flux, 100*r.Flux, r0.LandFraction*r0.Biology, r.LandFraction*r.Biology, needs)
+	case record.MoistGreen, record.RunawayGreen:
+		return fmt.Sprintf("sunlight rose from %.0f to %.0f %% of the Earth's today; CO2 had fallen to %s, so weathering had no more warming to give back", 100*r0.Flux, 100*r.Flux, pressure(r.PCO2))
+	case record.BeyondRange:
+		return fmt.Sprintf("%.4g K and %s of CO2 at %.0f %% of the Earth's sunlight", r.Temperature, pressure(r.PCO2), 100*r.Flux)
+	case record.Undecided:
+		if b.h.cause != nil {
+			return b.h.cause.Error()
+		}
+	}
+	return fmt.Sprintf("weathering kept CO2 between %s and %s as sunlight went from %.0f to %.0f %% of the Earth's today", pressure(least(rows)), pressure(most(rows)), 100*r0.Flux, 100*r.Flux)
+}
+
+// pressure words a CO₂ pressure in ppm or bar.
+func pressure(p float64) string {
+	if p < 1e-2 {
+		if p < 9.995e-4 {
+			return fmt.Sprintf("%.3g ppm", p*1e6)
+		}
+		return fmt.Sprintf("%.0f ppm", p*1e6)
+	}
+	return fmt.Sprintf("%.2g bar", p)
+}
+
+func least(rows []record.Row) float64 {
+	p := math.Inf(1)
+	for i := range rows {
+		p = math.Min(p, rows[i].PCO2)
+	}
+	return p
+}
+
+func most(rows []record.Row) float64 {
+	p := 0.0
+	for i := range rows {
+		p = math.Max(p, rows[i].PCO2)
+	}
+	return p
+}
