@@ -6,8 +6,6 @@
 package climate
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
 )
@@ -75,62 +73,18 @@ type AlbedoEntry struct {
 // add a law, write its file and add its row.
 var Radiations = []RadiationEntry{
 	{"kadoya2019", "fit to a radiative-convective model, 150-350 K and up to 10 bar of CO2", "F = −3.1 + X B Yᵀ,  X = [1, ξ, …, ξ⁶],  Y = [1, y, …, y⁴],  ξ = 0.01 (T − 250),  y = 0.2 log₁₀ p (p < 1 bar), log₁₀ p (p ≥ 1 bar)", []cite.Ref{{Work: cite.KadoyaTajika2019, Where: "appendix", Trust: cite.Checked}}, newKadoya2019},
-	{"williams1997", "fit to a radiative-convective model with weak CO2 forcing", "F = Σᵢⱼ cᵢⱼ φⁱ Tʲ,  φ = ln(p/3.3e-4 bar)", []cite.Ref{{Work: cite.WilliamsKasting1997, Where: "appendix", Trust: cite.Checked}}, newWilliams1997},
+	{"williams1997", "fit to a radiative-convective model; weak CO2 forcing near today's pressure", "F = Σᵢⱼ cᵢⱼ φⁱ Tʲ,  φ = ln(p/3.3e-4 bar)", []cite.Ref{{Work: cite.WilliamsKasting1997, Where: "appendix", Trust: cite.Checked}}, newWilliams1997},
+	{"caldeira1992", "straight line in temperature whose coefficients follow CO2, from the study of early glaciation", "F = A(φ) + B(φ) T,  φ = ln(p/300 ppm)", []cite.Ref{{Work: cite.CaldeiraKasting1992Ice, Trust: cite.Checked}, cite.Own("range of use")}, newCaldeira1992},
+	{"caldeira1992life", "greenhouse warming of the study of the biosphere's life span; warm climates only", "F = σ (T − ΔT)⁴,  ΔT(T, ψ),  ψ = log₁₀ p", []cite.Ref{caldeiraLifeSource}, newCaldeira1992Life},
+	{"linear_myhre1998", "straight line in temperature with logarithmic CO2 forcing under a radiation limit", "F = softmin(A + B (T − 273.15 K) − k ln(p/278 ppm), F∞)", []cite.Ref{{Work: cite.NorthCahalanCoakley1981, Trust: cite.Memory}, {Work: cite.Myhre1998, Trust: cite.Checked}, {Work: cite.Goldblatt2013, Note: "radiation limit", Trust: cite.Checked}, cite.Own("smooth minimum; range of use")}, newLinearMyhre},
+	{"linear_byrne2014", "straight line in temperature with CO2 forcing up to 10,000 ppm under a radiation limit", "F = softmin(A + B (T − 273.15 K) − k x − q x², F∞),  x = ln(p/278 ppm)", []cite.Ref{{Work: cite.NorthCahalanCoakley1981, Trust: cite.Memory}, {Work: cite.ByrneGoldblatt2014, Trust: cite.Memory}, {Work: cite.Goldblatt2013, Note: "radiation limit", Trust: cite.Checked}, cite.Own("smooth minimum; range of use")}, newLinearByrne},
+	{"walker1981", "greenhouse formula of the first paper on the weathering feedback", "F = σ [(T + 226.4 − 4.6 Pⁿ)/2]⁴,  P = p/280 ppm", []cite.Ref{{Work: cite.Walker1981, Note: "exponent unsure", Trust: cite.Memory}, cite.Own("range of use")}, newWalker1981},
 }
 
 // Albedos lists the albedo laws; the first is the default.
 var Albedos = []AlbedoEntry{
 	{"ramp", "smooth ice-albedo ramp under a Rayleigh layer that grows with CO2", "A = 1 − (1 − r)(1 − a)/(1 − r a),  a = a_w + (a_i − a_w)·½[1 − tanh((T − T_c)/w)],  r = ρp/(1 + ρp)", []cite.Ref{{Work: cite.North1975, Note: "albedo over ice", Trust: cite.Memory}, cite.Own("shape of the ramp")}, newRamp},
-}
-
-// Ramp is a smooth ice-albedo ramp under a conservative scattering layer:
-//
-//	a = a_w + (a_i − a_w)·½[1 − tanh((T − T_c)/w)]       surface and clouds
-//	r = ρ p/(1 + ρ p)                                    Rayleigh layer
-//	A = 1 − (1 − r)(1 − a)/(1 − r a)                     one layer above a Lambert surface
-//
-// a_w, the albedo without ice, is solved at the reference state. a_i = 0.62
-// is the complement of the co-albedo 0.38 over ice of North (1975); T_c, w and
-// ρ are own choices, checked against the planetary albedo of Williams &
-// Kasting (1997).
-type Ramp struct {
-	Warm, Ice     float64 // a_w, a_i
-	Centre, Width float64 // T_c, w; K
-	Rayleigh      float64 // ρ, bar⁻¹
-}
-
-func newRamp() Albedo { return &Ramp{Warm: 0.3, Ice: 0.62, Centre: 263, Width: 10, Rayleigh: 0.10} }
-
-// IceFraction returns ½[1 − tanh((T − T_c)/w)].
-func (l *Ramp) IceFraction(t float64) float64 {
-	// ½(1 − tanh x) = 1/(1 + e^2x)
-	return 1 / (1 + math.Exp(2*(t-l.Centre)/l.Width))
-}
-
-// Planetary returns A.
-func (l *Ramp) Planetary(t, p float64) float64 {
-	b := 1 - l.Warm - (l.Ice-l.Warm)*l.IceFraction(t) // 1 − a
-	// (1 − r)(1 − a)/(1 − r a) with r = x/(1 + x), x = ρp
-	return 1 - b/(1+l.Rayleigh*p*b)
-}
-
-// Free is the albedo without ice.
-func (l *Ramp) Free() (string, units.Range, *float64) {
-	return "albedo without ice", units.Range{Lo: 0, Hi: 0.6}, &l.Warm
-}
-
-// Box is not stated.
-func (l *Ramp) Box() Box { return Box{} }
-
-// Bind needs nothing.
-func (l *Ramp) Bind(Reference) error { return nil }
-
-// Fields lists the ramp and the layer.
-func (l *Ramp) Fields() []units.Field {
-	return []units.Field{
-		{Key: "ice", Min: 0.4, Max: 0.85, Published: units.Range{Lo: 0.5, Hi: 0.7}, Doc: "planetary albedo over ice", Source: cite.Ref{Work: cite.North1975, Trust: cite.Memory}, Value: &l.Ice},
-		{Key: "centre", Kind: units.Temperature, Unit: "K", Min: 240, Max: 280, Doc: "global mean temperature at which half the surface is under ice", Source: cite.Own("a scan of ramps: keeps today's climate away from the fold"), Value: &l.Centre},
-		{Key: "width", Kind: units.Interval, Unit: "K", Min: 3, Max: 40, Doc: "half-width of the ramp", Source: cite.Own("below 3 K the ice edge becomes a step"), Value: &l.Width},
-		{Key: "rayleigh", Min: 0, Max: 1, Doc: "scattering of CO2, per bar", Source: cite.Own("of the size of the Williams & Kasting 1997 planetary albedo"), Value: &l.Rayleigh},
-	}
+	{"williams1997", "fit to a radiative-convective model over a surface with an ice ramp", "A(T, p, µ, a_s), a quadratic on either side of 280 K,  a_s = a_w + (a_i − a_w)·½[1 − tanh((T − T_c)/w)]", []cite.Ref{{Work: cite.WilliamsKasting1997, Where: "appendix", Trust: cite.Checked}, cite.Own("blend of the branches over 275-285 K; ice ramp of the surface")}, newWilliamsAlbedo},
+	{"caldeira1992", "planetary albedo of the study of the biosphere's life span; no ice", "A = a₀ + 1.4891 − 0.0065979 T + 8.567e-6 T²", []cite.Ref{caldeiraLifeSource, cite.Own("offset a₀")}, newCaldeiraAlbedo},
+	{"constant", "the same albedo always; no ice", "A = const", []cite.Ref{cite.Own("for experiments without ice-albedo feedback")}, newConstant},
 }

@@ -13,7 +13,8 @@ import (
 //	X = [1, ξ, ξ², …, ξ⁶],  ξ = 0.01 (T − 250)
 //	Y = [1, y, y², y³, y⁴], y = 0.2 log₁₀ p below 1 bar, log₁₀ p above
 //
-// T in K, p the CO₂ partial pressure in bar, 150-350 K and 1e-5 to 10 bar.
+// T in K, p the CO₂ partial pressure in bar, 150-350 K and 1e-5 to 10 bar; at
+// 1 bar F is continuous, its slope is not.
 // Near 340 K and below 1e-3 bar F levels off at about 268 W/m², the radiation
 // limit of a moist atmosphere.
 type Kadoya2019 struct{}
