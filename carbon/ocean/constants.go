@@ -24,7 +24,7 @@ type Seawater struct {
 	Calcium  float64 // [Ca²⁺], mol/kg
 	Boron    float64 // total boron, mol/kg
 
-	root, three, square float64 // S^½, S^(3/2), S²
+	lnK0, lnK1, lnK2, lnKB, lnKW, lnCalcite, lnAragonite series // set by Bind
 }
 
 // newSeawater is today's mean seawater.
@@ -80,55 +80,76 @@ func ramp(x float64) float64 {
 	return x * x * x * (1 - 0.5*x)
 }
 
-// Bind prepares the powers of the salinity.
+// series is the logarithm of a constant as all of them are published,
+//
+//	a + b/T + c ln T + d T + e T²
+//
+// with the salinity already in the coefficients.
+type series struct{ one, inv, log, lin, sq float64 }
+
+// at evaluates the series with the shared 1/T and ln T.
+func (s *series) at(t, inv, lnT float64) float64 {
+	return s.one + s.inv*inv + s.log*lnT + t*(s.lin+t*s.sq)
+}
+
+// plus returns s + f q.
+func (s series) plus(f float64, q series) series {
+	return series{s.one + f*q.one, s.inv + f*q.inv, s.log + f*q.log, s.lin + f*q.lin, s.sq + f*q.sq}
+}
+
+// times returns f s.
+func (s series) times(f float64) series { return series{}.plus(f, s) }
+
+// Bind evaluates what depends on salinity.
 func (w *Seawater) Bind() {
-	w.root = math.Sqrt(w.Salinity)
-	w.three = w.Salinity * w.root
-	w.square = w.Salinity * w.Salinity
+	s := w.Salinity
+	w.lnK0 = lnK0(s)
+	w.lnK1, w.lnK2 = pK1(s).times(-math.Ln10), pK2(s).times(-math.Ln10)
+	w.lnKB, w.lnKW = lnKB(s), lnKW(s)
+	w.lnCalcite, w.lnAragonite = logCalcite(s).times(math.Ln10), logAragonite(s).times(math.Ln10)
 }
 
 // At evaluates all constants at a surface temperature in K, held by Held.
 func (w *Seawater) At(t float64) Constants {
 	t = Held(t)
-	lnT, inv := math.Log(t), 1/t
+	inv, lnT := 1/t, math.Log(t)
 	return Constants{
-		K0:      math.Exp(w.lnK0(t, lnT, inv)),
-		K1:      math.Exp(-math.Ln10 * w.pK1(lnT, inv)),
-		K2:      math.Exp(-math.Ln10 * w.pK2(lnT, inv)),
-		KB:      math.Exp(w.lnKB(t, lnT, inv)),
-		KW:      math.Exp(w.lnKW(lnT, inv)),
-		Calcite: math.Exp(math.Ln10 * w.logCalcite(t, lnT, inv)),
+		K0:      math.Exp(w.lnK0.at(t, inv, lnT)),
+		K1:      math.Exp(w.lnK1.at(t, inv, lnT)),
+		K2:      math.Exp(w.lnK2.at(t, inv, lnT)),
+		KB:      math.Exp(w.lnKB.at(t, inv, lnT)),
+		KW:      math.Exp(w.lnKW.at(t, inv, lnT)),
+		Calcite: math.Exp(w.lnCalcite.at(t, inv, lnT)),
 	}
 }
 
 // Aragonite returns the solubility product of aragonite in mol²/kg².
 func (w *Seawater) Aragonite(t float64) float64 {
 	t = Held(t)
-	return math.Exp(math.Ln10 * w.logAragonite(t, math.Log(t), 1/t))
+	return math.Exp(w.lnAragonite.at(t, 1/t, math.Log(t)))
 }
-
-const ln100 = 2 * math.Ln10
 
 // lnK0 is the solubility of CO₂ (Weiss 1974), K0 in mol/kg/atm:
 //
 //	ln K0 = 93.4517 (100/T) − 60.2409 + 23.3585 ln(T/100) + S [0.023517 − 0.023656 (T/100) + 0.0047036 (T/100)²]
-func (w *Seawater) lnK0(t, lnT, inv float64) float64 {
-	h := t / 100
-	return 9345.17*inv - 60.2409 + 23.3585*(lnT-ln100) + w.Salinity*(0.023517+h*(-0.023656+h*0.0047036))
+func lnK0(s float64) series {
+	const ln100 = 2 * math.Ln10
+	return series{one: -60.2409 - 23.3585*ln100 + s*0.023517, inv: 93.4517 * 100, log: 23.3585,
+		lin: -s * 0.023656 / 100, sq: s * 0.0047036 / 1e4}
 }
 
 // pK1 is the first dissociation of carbonic acid (Lueker, Dickson & Keeling 2000):
 //
 //	pK1 = 3633.86/T − 61.2172 + 9.67770 ln T − 0.011555 S + 0.0001152 S²
-func (w *Seawater) pK1(lnT, inv float64) float64 {
-	return 3633.86*inv - 61.2172 + 9.67770*lnT - 0.011555*w.Salinity + 0.0001152*w.square
+func pK1(s float64) series {
+	return series{one: -61.2172 - 0.011555*s + 0.0001152*s*s, inv: 3633.86, log: 9.67770}
 }
 
 // pK2 is the second dissociation of carbonic acid (Lueker, Dickson & Keeling 2000):
 //
 //	pK2 = 471.78/T + 25.9290 − 3.16967 ln T − 0.01781 S + 0.0001122 S²
-func (w *Seawater) pK2(lnT, inv float64) float64 {
-	return 471.78*inv + 25.9290 - 3.16967*lnT - 0.01781*w.Salinity + 0.0001122*w.square
+func pK2(s float64) series {
+	return series{one: 25.9290 - 0.01781*s + 0.0001122*s*s, inv: 471.78, log: -3.16967}
 }
 
 // lnKB is the dissociation of boric acid (Dickson 1990):
@@ -136,18 +157,20 @@ func (w *Seawater) pK2(lnT, inv float64) float64 {
 //	ln KB = (−8966.90 − 2890.53 S^½ − 77.942 S + 1.728 S^(3/2) − 0.0996 S²)/T
 //	        + 148.0248 + 137.1942 S^½ + 1.62142 S
 //	        + (−24.4344 − 25.085 S^½ − 0.2474 S) ln T + 0.053105 S^½ T
-func (w *Seawater) lnKB(t, lnT, inv float64) float64 {
-	s, r := w.Salinity, w.root
-	return (-8966.90-2890.53*r-77.942*s+1.728*w.three-0.0996*w.square)*inv +
-		148.0248 + 137.1942*r + 1.62142*s +
-		(-24.4344-25.085*r-0.2474*s)*lnT + 0.053105*r*t
+func lnKB(s float64) series {
+	r := math.Sqrt(s)
+	return series{
+		inv: -8966.90 - 2890.53*r - 77.942*s + 1.728*s*r - 0.0996*s*s,
+		one: 148.0248 + 137.1942*r + 1.62142*s,
+		log: -24.4344 - 25.085*r - 0.2474*s, lin: 0.053105 * r}
 }
 
 // lnKW is the ion product of water (Millero 1995):
 //
 //	ln KW = −13847.26/T + 148.9652 − 23.6521 ln T + (118.67/T − 5.977 + 1.0495 ln T) S^½ − 0.01615 S
-func (w *Seawater) lnKW(lnT, inv float64) float64 {
-	return -13847.26*inv + 148.9652 - 23.6521*lnT + (118.67*inv-5.977+1.0495*lnT)*w.root - 0.01615*w.Salinity
+func lnKW(s float64) series {
+	return series{inv: -13847.26, one: 148.9652 - 0.01615*s, log: -23.6521}.
+		plus(math.Sqrt(s), series{inv: 118.67, one: -5.977, log: 1.0495})
 }
 
 // logCalcite is the solubility product of calcite (Mucci 1983); the logarithm
@@ -155,18 +178,20 @@ func (w *Seawater) lnKW(lnT, inv float64) float64 {
 //
 //	log Ksp = −171.9065 − 0.077993 T + 2839.319/T + 71.595 log T
 //	          + (−0.77712 + 0.0028426 T + 178.34/T) S^½ − 0.07711 S + 0.0041249 S^(3/2)
-func (w *Seawater) logCalcite(t, lnT, inv float64) float64 {
-	return -171.9065 - 0.077993*t + 2839.319*inv + 71.595/math.Ln10*lnT +
-		(-0.77712+0.0028426*t+178.34*inv)*w.root - 0.07711*w.Salinity + 0.0041249*w.three
+func logCalcite(s float64) series {
+	r := math.Sqrt(s)
+	return series{one: -171.9065 - 0.07711*s + 0.0041249*s*r, lin: -0.077993, inv: 2839.319, log: 71.595 / math.Ln10}.
+		plus(r, series{one: -0.77712, lin: 0.0028426, inv: 178.34})
 }
 
 // logAragonite is the solubility product of aragonite (Mucci 1983), base 10:
 //
 //	log Ksp = −171.945 − 0.077993 T + 2903.293/T + 71.595 log T
 //	          + (−0.068393 + 0.0017276 T + 88.135/T) S^½ − 0.10018 S + 0.0059415 S^(3/2)
-func (w *Seawater) logAragonite(t, lnT, inv float64) float64 {
-	return -171.945 - 0.077993*t + 2903.293*inv + 71.595/math.Ln10*lnT +
-		(-0.068393+0.0017276*t+88.135*inv)*w.root - 0.10018*w.Salinity + 0.0059415*w.three
+func logAragonite(s float64) series {
+	r := math.Sqrt(s)
+	return series{one: -171.945 - 0.10018*s + 0.0059415*s*r, lin: -0.077993, inv: 2903.293, log: 71.595 / math.Ln10}.
+		plus(r, series{one: -0.068393, lin: 0.0017276, inv: 88.135})
 }
 
 // Sources of the constants, for the tables of laws.

@@ -25,53 +25,61 @@ type Saturated struct {
 	Omega float64 // Ω
 
 	n, m float64 // mol/bar, kg
+
+	lnRoot, lnH, lnCO3 series // ln of [HCO₃⁻]/√p, h/√p and [CO₃²⁻], p in bar
 }
 
 func newSaturated() Law { return &Saturated{Seawater: newSeawater(), Omega: 5} }
 
-// coefficients returns K0 in mol/kg/bar, [CO₃²⁻], and the factor of √p in [HCO₃⁻].
-func (l *Saturated) coefficients(t float64) (k Constants, k0, co3, root float64) {
-	k = l.At(t)
-	k0 = k.K0 / units.BarPerAtm
-	co3 = l.Omega * k.Calcite / l.Calcium
-	return k, k0, co3, math.Sqrt(k0 * k.K1 * co3 / k.K2)
+// fixed is what saturation fixes at one temperature.
+type fixed struct{ k0, co3, root, h, kb, kw float64 }
+
+// at evaluates K0 in mol/kg/bar, [CO₃²⁻], [HCO₃⁻]/√p, h/√p, KB and KW.
+func (l *Saturated) at(t float64) fixed {
+	t = Held(t)
+	inv, lnT := 1/t, math.Log(t)
+	return fixed{
+		k0:   math.Exp(l.lnK0.at(t, inv, lnT)) / units.BarPerAtm,
+		co3:  math.Exp(l.lnCO3.at(t, inv, lnT)),
+		root: math.Exp(l.lnRoot.at(t, inv, lnT)),
+		h:    math.Exp(l.lnH.at(t, inv, lnT)),
+		kb:   math.Exp(l.lnKB.at(t, inv, lnT)),
+		kw:   math.Exp(l.lnKW.at(t, inv, lnT)),
+	}
 }
 
 // Solve returns the positive root of the quadratic; every field is NaN when
 // c ≤ M [CO₃²⁻].
 func (l *Saturated) Solve(c, _, t float64) State {
-	k, k0, co3, root := l.coefficients(t)
-	free := c - l.m*co3
+	k := l.at(t)
+	free := c - l.m*k.co3
 	if !(free > 0) {
 		return none()
 	}
-	a, b := l.n+l.m*k0, l.m*root
-	x := 2 * free / (b + math.Sqrt(b*b+4*a*free)) // √p
-	return l.state(&k, k0, co3, root, x)
+	a, b := l.n+l.m*k.k0, l.m*k.root
+	return l.state(&k, 2*free/(b+math.Sqrt(b*b+4*a*free)))
 }
 
-// state fills in the chemistry at √p = x.
-func (l *Saturated) state(k *Constants, k0, co3, root, x float64) State {
-	return l.speciate(k, x*x, k0*x*x, root*x*k.K2/co3)
+// state fills in the chemistry at x = √p.
+func (l *Saturated) state(k *fixed, x float64) State {
+	s := State{P: x * x, H: k.h * x, CO2: k.k0 * x * x, HCO3: k.root * x, CO3: k.co3, Omega: l.Omega}
+	s.DIC = s.CO2 + s.HCO3 + s.CO3
+	s.Alk = s.HCO3 + 2*s.CO3 + l.Boron*k.kb/(k.kb+s.H) + k.kw/s.H - s.H
+	return s
 }
 
 // Carbon returns C(p, T) and the alkalinity.
 func (l *Saturated) Carbon(p, t float64) (c, alk float64) {
-	k, k0, co3, root := l.coefficients(t)
-	x := math.Sqrt(p)
-	c = l.n*p + l.m*(k0*p+root*x+co3)
-	if l.m == 0 {
-		return c, 0
-	}
-	s := l.state(&k, k0, co3, root, x)
-	return c, l.m * s.Alk
+	k := l.at(t)
+	s := l.state(&k, math.Sqrt(p))
+	return l.n*p + l.m*s.DIC, l.m * s.Alk
 }
 
 // Slope returns d ln C/d ln p at constant temperature.
 func (l *Saturated) Slope(p, t float64) float64 {
-	_, k0, co3, root := l.coefficients(t)
-	linear, half := (l.n+l.m*k0)*p, l.m*root*math.Sqrt(p)
-	return (linear + 0.5*half) / (linear + half + l.m*co3)
+	k := l.at(t)
+	linear, half := (l.n+l.m*k.k0)*p, l.m*k.root*math.Sqrt(p)
+	return (linear + 0.5*half) / (linear + half + l.m*k.co3)
 }
 
 // Fields lists Ω and the composition of seawater.
@@ -88,6 +96,12 @@ func omegaField(v *float64) units.Field {
 func (l *Saturated) Bind(p Planet) error {
 	l.Seawater.Bind()
 	l.n, l.m = MolesPerBar(p), p.Mass
+	l.lnCO3 = l.lnCalcite
+	l.lnCO3.one += math.Log(l.Omega / l.Calcium)
+	k0 := l.lnK0
+	k0.one -= math.Log(units.BarPerAtm)
+	l.lnRoot = k0.plus(1, l.lnK1).plus(-1, l.lnK2).plus(1, l.lnCO3).times(0.5)
+	l.lnH = k0.plus(1, l.lnK1).plus(1, l.lnK2).plus(-1, l.lnCO3).times(0.5)
 	return check(p)
 }
 

@@ -1,0 +1,112 @@
+package ocean
+
+import (
+	"math"
+
+	"cycle/carbon/cite"
+	"cycle/carbon/units"
+)
+
+// Fraction divides surface carbon without chemistry: the atmosphere holds the
+// share φ at the reference pressure p₀, and the ocean's carbon goes with a root
+// of the pressure,
+//
+//	C = C₀ [φ p/p₀ + (1 − φ)(p/p₀)^(1/k)]   C₀ = n p₀/φ
+//
+// k = 1 is the fixed fraction φ. pH, alkalinity and saturation are what the
+// dissolved carbon and pCO₂ then imply; pH is not let below 3.
+type Fraction struct {
+	Seawater
+	Share float64 // φ
+	P0    float64 // p₀, bar
+	K     float64 // k
+
+	m, air, sea float64 // kg; C₀ φ and C₀ (1 − φ), mol
+}
+
+func newFraction() Law { return &Fraction{Seawater: newSeawater(), Share: 0.0103, P0: 280e-6, K: 1} }
+
+// Solve inverts C(p); every field is NaN when c ≤ 0.
+func (l *Fraction) Solve(c, _, t float64) State {
+	if !(c > 0) {
+		return none()
+	}
+	x := c / (l.air + l.sea) // p/p₀
+	if l.K != 1 {
+		x = l.invert(x)
+	}
+	return l.state(x, t)
+}
+
+// invert solves φ x + (1 − φ) x^(1/k) = y by Newton's method in ln x, where
+// ln of the left side is convex with a slope between 1/k and 1.
+func (l *Fraction) invert(y float64) float64 {
+	lnY, inv := math.Log(y), 1/l.K
+	u := lnY
+	if u < 0 {
+		u *= l.K
+	}
+	for range 100 {
+		a, b := l.Share*math.Exp(u), (1-l.Share)*math.Exp(u*inv)
+		step := (math.Log(a+b) - lnY) * (a + b) / (a + b*inv)
+		u -= step
+		if math.Abs(step) < 1e-9 {
+			break
+		}
+	}
+	return math.Exp(u)
+}
+
+// root returns x^(1/k).
+func (l *Fraction) root(x float64) float64 {
+	if l.K == 1 {
+		return x
+	}
+	return math.Exp(math.Log(x) / l.K)
+}
+
+// state returns the chemistry implied at x = p/p₀.
+func (l *Fraction) state(x, t float64) State {
+	k := l.At(t)
+	p := l.P0 * x
+	co2 := k.K0 / units.BarPerAtm * p
+	const sour = 1e-3 // mol/kg
+	h := sour
+	if l.m > 0 {
+		// K1 K2/h² + K1/h = DIC/[CO₂] − 1
+		if e := l.sea*l.root(x)/(l.m*co2) - 1; e > 0 {
+			h = math.Min(sour, k.K1*(1+math.Sqrt(1+4*e*k.K2/k.K1))/(2*e))
+		}
+	}
+	return l.speciate(&k, p, co2, h)
+}
+
+// Carbon returns C(p) and the alkalinity implied; T matters to the latter only.
+func (l *Fraction) Carbon(p, t float64) (c, alk float64) {
+	x := p / l.P0
+	return l.air*x + l.sea*l.root(x), l.m * l.state(x, t).Alk
+}
+
+// Fields lists φ, p₀, k and the composition of seawater.
+func (l *Fraction) Fields() []units.Field {
+	return append([]units.Field{
+		{Key: "share", Min: 1e-6, Max: 1, Doc: "the atmosphere's share of the surface carbon at the reference pressure", Source: cite.Ref{Note: "280 ppm over 38,000 Pg C in the ocean and 590 in the air, the air counted as pure CO2", Trust: cite.Derived}, Value: &l.Share},
+		{Key: "reference_pressure", Kind: units.Pressure, Unit: "ppm", Min: 1e-9, Max: 100, Doc: "CO2 pressure at which the share holds", Source: cite.Ref{Note: "pre-industrial", Trust: cite.Practice}, Value: &l.P0},
+		{Key: "power", Min: 1, Max: 4, Doc: "power k of pCO2 over the ocean's carbon", Source: cite.Own("1 is the fixed fraction, 2 the bicarbonate of a saturated ocean"), Value: &l.K},
+	}, l.fields()...)
+}
+
+// Bind fixes the reservoirs.
+func (l *Fraction) Bind(p Planet) error {
+	l.Seawater.Bind()
+	l.m = p.Mass
+	l.air = MolesPerBar(p) * l.P0
+	l.sea = l.air * (1 - l.Share) / l.Share
+	return check(p)
+}
+
+// HasAlkalinity is false.
+func (l *Fraction) HasAlkalinity() bool { return false }
+
+// Range returns Measured.
+func (l *Fraction) Range() units.Range { return Measured }
