@@ -232,6 +232,7 @@ type Row struct {
 	Imbalance               float64 // sources minus sinks
 	Deposited               float64 // land carbonate laid down on the seafloor
 	Subducted               float64 // seafloor carbonate leaving with the plates
+	Foundered               float64 // continental carbonate returned to the mantle
 
 	// reservoirs, mol
 	Surface, SeafloorCarbon, Continental, Mantle, Total float64
