@@ -27,7 +27,7 @@ type Berner1994 struct {
 	N          float64 // n
 	Fertilised float64 // φ
 	t0         float64 // T₀, K
-	ref        float64 // ln W at the reference state, 0 but for rounding
+	p0         float64 // p₀, bar
 }
 
 func newBerner1994() Law {
@@ -35,16 +35,13 @@ func newBerner1994() Law {
 }
 
 // Relative returns W/W₀.
-func (l *Berner1994) Relative(e *Env) float64 { return math.Exp(l.log(e) - l.ref) }
-
-func (l *Berner1994) log(e *Env) float64 {
+func (l *Berner1994) Relative(e *Env) float64 {
 	dt := e.T - l.t0
 	f := (1 - l.Plants) * l.N * e.LnP
 	if l.Plants > 0 {
-		// ln[2R/(1 + R)] = ln 2 − ln(1 + 1/R)
-		f += l.Plants * l.Fertilised * (math.Ln2 - math.Log1p(math.Exp(-e.LnP)))
+		f -= l.Plants * l.Fertilised * math.Log(0.5+0.5*l.p0/e.P) // 2R/(1 + R) = 1/(½ + ½/R)
 	}
-	return f + l.K*dt + l.A*lnBracket(1+l.Epsilon*dt)
+	return math.Exp(f + l.K*dt + l.A*lnBracket(1+l.Epsilon*dt))
 }
 
 // Runoff returns 1 + ε ΔT.
@@ -63,10 +60,9 @@ func (l *Berner1994) Fields() []units.Field {
 	}
 }
 
-// Bind fixes T₀.
+// Bind fixes T₀ and p₀.
 func (l *Berner1994) Bind(ref Reference) error {
-	l.t0 = ref.T
-	l.ref = l.log(&Env{T: ref.T})
+	l.t0, l.p0 = ref.T, ref.P
 	return nil
 }
 

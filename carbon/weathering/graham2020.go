@@ -78,7 +78,7 @@ func (l *Graham2020) alpha() float64 {
 	return l.Depth * l.Porosity * l.Density * l.Area * l.Reactive * l.Mu
 }
 
-// Fields lists all but C₀.
+// Fields lists all but C₀ and Γ = 0.2, which only C₀ takes up.
 func (l *Graham2020) Fields() []units.Field {
 	ref := cite.Ref{Work: cite.GrahamPierrehumbert2020, Trust: cite.Memory}
 	mc := cite.Ref{Work: cite.MaherChamberlain2014, Trust: cite.Memory}
@@ -97,7 +97,6 @@ func (l *Graham2020) Fields() []units.Field {
 		{Key: "soil_age", Kind: units.Time, Unit: "kyr", Min: 0, Max: 1e8, Doc: "age t_s of the soil", Source: ref, Value: &l.Age},
 		{Key: "precipitation", Kind: units.Speed, Unit: "m/yr", Min: 0.01, Max: 10, Doc: "precipitation P₀ at the reference state", Source: ref, Value: &l.Precip},
 		runoffField("precipitation_sensitivity", units.Range{Lo: 0.02, Hi: 0.1}, "growth ε of precipitation with temperature", ref, &l.Epsilon),
-		{Key: "runoff_fraction", Min: 0.01, Max: 1, Doc: "part Γ of precipitation that runs off", Source: ref, Value: &l.Gamma},
 	}
 }
 

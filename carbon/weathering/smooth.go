@@ -28,8 +28,11 @@ func lnBracket(x float64) float64 {
 
 // above returns x where x ≥ lo + w and tends to lo below, with continuous slope.
 func above(x, lo, w float64) float64 {
-	if x >= lo+w {
+	switch {
+	case x >= lo+w:
 		return x
+	case x < lo-40*w: // the tail is below the last bit
+		return lo
 	}
 	return lo + w*math.Exp((x-lo)/w-1)
 }
