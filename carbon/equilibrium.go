@@ -117,7 +117,7 @@ func (m *Model) steadyAt(d *memo, t float64) (s steady, low, high bool) {
 	r.Ice = m.set.albedo.law.IceFraction(t)
 	c, alk := m.set.ocean.law.Carbon(p, t)
 	r.Surface = c
-	m.weather(r, m.set.ocean.law.Solve(c, alk, t).H)
+	m.weather(r, math.Log(p), math.Log(m.set.ocean.law.Solve(c, alk, t).H))
 	s.grow = m.growth(d.sun, t, p)
 	return s, false, false
 }

@@ -107,7 +107,7 @@ func (l *lookup) pressure(y []float64) float64 {
 	t, c := y[0], y[l.m.lay.surface]
 	if t != l.t || c != l.c {
 		l.t, l.c = t, c
-		l.p = l.m.set.ocean.law.Solve(c, 0, t).P
+		l.p = l.m.breathe(t, c).chem.P
 	}
 	return l.p
 }
@@ -118,7 +118,7 @@ func (l *lookup) pressure(y []float64) float64 {
 func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (*history, error) {
 	s := m.set
 	h := &history{reason: endTime}
-	m.memo.valid = false
+	m.memo.valid, m.air.valid = false, false
 	st, words := m.start()
 	h.first, h.words = st, words
 	y := make([]float64, m.lay.n)

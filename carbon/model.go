@@ -47,7 +47,39 @@ type Model struct {
 	free            float64
 	balanceResidual float64 // W/m²
 
-	memo memo
+	memo   memo
+	air    air
+	row    record.Row     // scratch of the right-hand side
+	state  State          // likewise
+	env    weathering.Env // likewise
+	source outgas.Input   // likewise
+}
+
+// air keeps what depends on temperature and surface carbon alone: the columns
+// of the Jacobian for the deep reservoirs do not change it.
+type air struct {
+	t, c             float64
+	chem             ocean.State
+	lnp, lnh         float64
+	albedo, ice, out float64
+	valid            bool
+}
+
+// breathe fills the air for a temperature and surface carbon.
+func (m *Model) breathe(t, c float64) *air {
+	a := &m.air
+	if a.valid && a.t == t && a.c == c {
+		return a
+	}
+	s := m.set
+	a.t, a.c, a.valid = t, c, true
+	a.chem = s.ocean.law.Solve(c, 0, t)
+	p := a.chem.P
+	a.lnp, a.lnh = math.Log(p), math.Log(a.chem.H)
+	a.albedo = s.albedo.law.Planetary(t, p)
+	a.ice = s.albedo.law.IceFraction(t)
+	a.out = s.radiation.law.Outgoing(t, p, a.lnp)
+	return a
 }
 
 // memo keeps what depends on age and mantle alone: within one column sweep of
@@ -174,7 +206,7 @@ const earthCore = 0.33
 
 // at returns x(t) of a smooth step.
 func (p *Step) at(age float64) float64 {
-	if p.Before == p.After {
+	if p.Before == p.After || age-p.Middle > 25*p.Width {
 		return p.After
 	}
 	// ½(1 + tanh x) = 1/(1 + e^(−2x))
@@ -206,14 +238,14 @@ func (m *Model) drive(age, mantleT, coreT float64) *memo {
 //	ℓ(p)   = p/(p + p_ℓ), i = 1 − (1 − σ)·ice, both relative to the reference state
 //
 // σ is the strength under ice.
-func (m *Model) weather(r *record.Row, h float64) {
-	s := m.set
-	env := weathering.Env{Age: r.Age, T: r.Temperature, P: r.PCO2, LnP: math.Log(r.PCO2) - m.lnP0, Sun: r.Sunlight / 4, Alb: r.Albedo, Crust: r.Crust, LnH: math.Log(h) - m.lnH0}
+func (m *Model) weather(r *record.Row, lnp, lnh float64) {
+	s, env := m.set, &m.env
+	*env = weathering.Env{Age: r.Age, T: r.Temperature, P: r.PCO2, LnP: lnp - m.lnP0, Sun: r.Sunlight / 4, Alb: r.Albedo, Crust: r.Crust, LnH: lnh - m.lnH0}
 	lim := m.limNorm * r.PCO2 / (r.PCO2 + s.Limiter)
-	r.Land = m.ref.Land * m.area * r.LandFraction * r.Biology * m.iceNorm[0] * (1 - (1-s.LandIce)*r.Ice) * lim * s.land.law.Relative(&env)
+	r.Land = m.ref.Land * m.area * r.LandFraction * r.Biology * m.iceNorm[0] * (1 - (1-s.LandIce)*r.Ice) * lim * s.land.law.Relative(env)
 	r.Seafloor = 0
 	if m.ref.Seafloor > 0 {
-		r.Seafloor = m.ref.Seafloor * m.area * m.iceNorm[1] * (1 - (1-s.SeafloorIce)*r.Ice) * lim * s.seafloor.law.Relative(&env)
+		r.Seafloor = m.ref.Seafloor * m.area * m.iceNorm[1] * (1 - (1-s.SeafloorIce)*r.Ice) * lim * s.seafloor.law.Relative(env)
 	}
 }
 
@@ -231,17 +263,16 @@ func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
 	r.Surface, r.SeafloorCarbon, r.Continental, r.Mantle = y.Surface, y.Seafloor, y.Continental, y.Mantle
 	r.Total = y.Carbon()
 
-	chem := s.ocean.law.Solve(y.Surface, 0, y.T)
+	a := m.breathe(y.T, y.Surface)
+	chem := a.chem
 	r.PCO2, r.DIC, r.Alk, r.Omega = chem.P, chem.DIC, chem.Alk, chem.Omega
-	lnp := math.Log(chem.P)
-	r.Albedo = s.albedo.law.Planetary(y.T, chem.P)
-	r.Ice = s.albedo.law.IceFraction(y.T)
+	r.Albedo, r.Ice, r.Outgoing = a.albedo, a.ice, a.out
 	r.Absorbed = d.sun * (1 - r.Albedo)
-	r.Outgoing = s.radiation.law.Outgoing(y.T, chem.P, lnp)
-	m.weather(r, chem.H)
+	m.weather(r, a.lnp, a.lnh)
 
-	in := outgas.Input{Age: age, Crust: r.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale, Mantle: y.Mantle, Seafloor: y.Seafloor, Continental: y.Continental}
-	f := s.sources.law.Fluxes(&in)
+	in := &m.source
+	*in = outgas.Input{Age: age, Crust: r.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale, Mantle: y.Mantle, Seafloor: y.Seafloor, Continental: y.Continental}
+	f := s.sources.law.Fluxes(in)
 	r.Ridge, r.Arc, r.Metamorphic = f.Ridge, f.Arc, f.Metamorphic
 	r.Outgassing = f.Ridge + f.Arc + f.Metamorphic + r.Pulse
 	r.Imbalance = r.Outgassing - r.Land - r.Seafloor
@@ -260,10 +291,9 @@ func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
 //	dC_mantle/dt      = subducted − arc + foundered − ridge
 //	dT_mantle/dt      from the interior
 func (m *Model) derivative(dydt []float64, age float64, y []float64) {
-	var st State
-	var r record.Row
-	m.lay.unpack(&st, y)
-	m.diagnose(&r, age, &st)
+	st, r := &m.state, &m.row
+	m.lay.unpack(st, y)
+	m.diagnose(r, age, st)
 	flow := &m.memo.flow
 	rate := State{
 		T:           (r.Absorbed - r.Outgoing) * units.Year / m.set.HeatCapacity,

@@ -99,7 +99,7 @@ func TestSteadyStatesOfTheLogLinearWorld(t *testing.T) {
 		{0.3, ecs3, 1, 10, -1.1851030008, 4.8707733333},
 		{0.3, 4, 2, 0, 1.1709144727, 4.6836578908},
 		{0.3, 4, 1, -20, 2.4660912454, -10.1356350185},
-		{0, ecs3, 2, 0, 9.4961163737 / ecs3, 9.4961163737}, // without CO₂ dependence: τ ln v
+		{0, ecs3, 2, 0, 9.4961163737 / ecs3, 9.4961163737},                   // without CO₂ dependence: τ ln v
 		{0.5, ecs3, 2, 0, 41.1 / (6.85 + ecs3) / ecs3, 41.1 / (6.85 + ecs3)}, // τ ln 2·b/(a τ + b), where τ b ln 2 = 41.1
 	} {
 		w := newWorld(t, c.a, 13.7, c.b)
