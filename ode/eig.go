@@ -203,7 +203,7 @@ func hqr(a []float64, m int, wr, wi []float64) bool {
 			for ; k >= l; k-- {
 				z := *at(k, k)
 				rr, ss := x-z, y-z
-				p = (rr*ss-w)/(*at(k + 1, k)) + *at(k, k+1)
+				p = (rr*ss-w)/(*at(k+1, k)) + *at(k, k+1)
 				q = *at(k+1, k+1) - z - rr - ss
 				r = *at(k+2, k+1)
 				s := math.Abs(p) + math.Abs(q) + math.Abs(r)

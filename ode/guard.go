@@ -50,7 +50,7 @@ func (s *Solver) initGuard(g *Guard) error {
 	s.gd.on = !g.Off
 	s.gd.locate = g.Locate
 	if g.Locate == 0 {
-		s.gd.locate = 0.01 * s.rtol
+		s.gd.locate = 0.1 * s.rtol
 	}
 	if !s.gd.on {
 		return nil
@@ -109,10 +109,30 @@ func (s *Solver) startGuard() {
 // perturbation by 1.001 over the whole run.
 func (s *Solver) significance() float64 { return 1e-3 / math.Abs(s.t1-s.t0) }
 
+// entry returns ∂f_i/∂y_j from jac.
+func (s *Solver) entry(jac []float64, i, j int) float64 {
+	if s.band == nil {
+		return jac[i*s.n+j]
+	}
+	kl, ku := s.band.Lower, s.band.Upper
+	if j < i-kl || j > i+ku {
+		return 0
+	}
+	return jac[i*(kl+ku+1)+j-i+kl]
+}
+
 // extract copies block b of jac, in the direction of the run, to gd.a.
 func (s *Solver) extract(jac []float64, b []int) {
 	m, n := len(b), s.n
 	a := s.gd.a
+	if s.band != nil {
+		for i, bi := range b {
+			for j, bj := range b {
+				a[i*m+j] = s.dir * s.entry(jac, bi, bj)
+			}
+		}
+		return
+	}
 	if m == n {
 		if s.dir > 0 {
 			copy(a, jac)
@@ -137,7 +157,7 @@ func (s *Solver) guardAll(dst []blockState, jac []float64, t float64, y []float6
 	for k, b := range s.gd.blocks {
 		m := len(b)
 		if m == 1 {
-			v := s.dir * jac[b[0]*s.n+b[0]]
+			v := s.dir * s.entry(jac, b[0], b[0])
 			st := blockState{re: v, sig: sig}
 			if v > sig {
 				st.count = 1
@@ -290,9 +310,13 @@ func (s *Solver) eigenvector(m int, lam complex128, left bool) bool {
 	return true
 }
 
-
 // logR returns ln|R(z)| for the stability function of the method.
-func (s *Solver) logR(z complex128) float64 { return rodasLogR(z) }
+func (s *Solver) logR(z complex128) float64 {
+	if s.rad != nil {
+		return s.rad.logR(z)
+	}
+	return rodasLogR(z)
+}
 
 // resolve returns the longest step not above h that resolves the growth in
 // st: the factor by which the method multiplies the mode is at least the
@@ -308,8 +332,8 @@ func (s *Solver) resolve(st []blockState, h float64) float64 {
 		if b.count == 0 || b.re*left < 1 {
 			continue
 		}
-		if h*b.re > 2 {
-			h = 2 / b.re
+		if h*b.re > s.limit {
+			h = s.limit / b.re
 		}
 		if b.im == 0 {
 			continue
@@ -348,7 +372,7 @@ func (s *Solver) stabilityExcess(jac []float64, st []blockState) float64 {
 		c0 := g.cur[k].count
 		v := math.Inf(-1)
 		if m == 1 {
-			v = s.dir*jac[b[0]*s.n+b[0]] - sig
+			v = s.dir*s.entry(jac, b[0], b[0]) - sig
 			if c0 == 1 {
 				v = -v
 			}
@@ -420,6 +444,34 @@ func (s *Solver) locateLoss(h float64) (float64, outcome) {
 	}
 	br := newBracket(0, h, fa, fb, 0.5*tol)
 	at := h
+	if s.resolvedAll(h) {
+		// The dense output follows the modes: find the change on it first.
+		for !br.done() {
+			x := br.next()
+			s.interpTheta(s.interp, s.y, x/h)
+			t := s.t + s.dir*x
+			s.stats.FuncEvals++
+			s.f(s.f1, t, s.interp)
+			if !s.allFinite(s.f1) || !s.evalJac(s.jac1, s.dfdt1, t, s.interp, s.f1) {
+				break
+			}
+			s.guardAll(s.gd.end, s.jac1, t, s.interp)
+			br.update(x, s.stabilityExcess(s.jac1, s.gd.end), s.stabilityChanged())
+		}
+		at = br.b
+		if at < h {
+			at = min(at+tol, h)
+		}
+		if !s.retake(at) {
+			s.gd.hRetry = 0.5 * at
+			return 0, s.lastOutcome
+		}
+		if s.stabilityChanged() {
+			br = newBracket(at, at, 0, 0, 0.5*tol)
+		} else {
+			br = newBracket(at, h, s.stabilityExcess(s.jac1, s.gd.end), fb, 0.5*tol)
+		}
+	}
 	for !br.done() {
 		x := br.next()
 		if !s.retake(x) {
@@ -427,9 +479,7 @@ func (s *Solver) locateLoss(h float64) (float64, outcome) {
 			return 0, s.lastOutcome
 		}
 		at = x
-		f := s.stabilityExcess(s.jac1, s.gd.end)
-		changed := s.stabilityChanged()
-		br.update(x, f, changed)
+		br.update(x, s.stabilityExcess(s.jac1, s.gd.end), s.stabilityChanged())
 	}
 	if at != br.b {
 		if !s.retake(br.b) {
@@ -442,6 +492,19 @@ func (s *Solver) locateLoss(h float64) (float64, outcome) {
 		s.gd.hAfter = 1 / math.Sqrt(slope)
 	}
 	return br.b, outcomeOK
+}
+
+// resolvedAll reports whether a step of length h resolves the modes that grow
+// at its start or at its end, real and imaginary parts.
+func (s *Solver) resolvedAll(h float64) bool {
+	for k := range s.gd.cur {
+		for _, b := range [...]*blockState{&s.gd.cur[k], &s.gd.end[k]} {
+			if b.count > 0 && h*(math.Abs(b.re)+b.im) > 1 {
+				return false
+			}
+		}
+	}
+	return true
 }
 
 // guardCommit makes the states at the end of the accepted step the current
@@ -503,7 +566,7 @@ func (s *Solver) recordChange(k int, a, b blockState) {
 	bl := g.blocks[k]
 	m := len(bl)
 	if m == 1 {
-		l.Rate = s.jac[bl[0]*s.n+bl[0]]
+		l.Rate = s.entry(s.jac, bl[0], bl[0])
 		mode[bl[0]] = s.atol[bl[0]] + s.rtol*math.Abs(s.y[bl[0]])
 		return
 	}

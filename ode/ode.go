@@ -105,7 +105,7 @@ type Guard struct {
 	Blocks [][]int
 
 	// Locate is the precision, relative to max(|t|, |t−t0|), to which a loss
-	// of stability is located; 0 means RelTol/100.
+	// of stability is located; 0 means RelTol/10.
 	Locate float64
 }
 

@@ -72,7 +72,12 @@ type Solver struct {
 	haveF, haveJ   bool
 	rs             []float64 // row scales for pivoting
 	w              []float64
-	piv            []int
+	piv, ipiv      []int
+	rsFac, scaled  []float64
+	inc, rhsW      []float64
+	band           *Band
+	rad            *radau
+	limit          float64 // largest growth exponent of a step
 	arg, rhs, sol  []float64
 	fs             []float64
 	u, dense       []float64
@@ -178,9 +183,39 @@ func NewSolver(p *Problem, st *Settings) (*Solver, error) {
 	s.y, s.yPrev, s.y1, s.f0, s.f1 = vec(), vec(), vec(), vec(), vec()
 	s.errv, s.dfdt, s.dfdt1, s.rs = vec(), vec(), vec(), vec()
 	s.arg, s.rhs, s.sol, s.fs, s.interp = vec(), vec(), vec(), vec(), vec()
-	s.jac, s.jac1 = make([]float64, n*n), make([]float64, n*n)
-	s.w, s.piv = make([]float64, n*n), make([]int, n)
-	s.u, s.dense = make([]float64, 8*n), make([]float64, 3*n)
+	size, wsize := n*n, n*n
+	if b := p.Band; b != nil {
+		if b.Lower < 0 || b.Upper < 0 || b.Lower >= n || b.Upper >= n {
+			return nil, badInput("bandwidths %d and %d for %d components", b.Lower, b.Upper, n)
+		}
+		s.band = &Band{b.Lower, b.Upper}
+		size, wsize = n*(b.Lower+b.Upper+1), n*(2*b.Lower+b.Upper+1)
+	}
+	s.jac, s.jac1 = make([]float64, size), make([]float64, size)
+	s.w, s.piv, s.ipiv = make([]float64, wsize), make([]int, n), make([]int, n)
+	s.rsFac, s.scaled, s.inc, s.rhsW = vec(), vec(), vec(), vec()
+	s.limit = 2
+	stages := 0
+	switch st.Method {
+	case Rodas5P:
+		s.u, s.dense = make([]float64, 8*n), make([]float64, 3*n)
+	case RadauIIA3:
+		stages = 3
+	case RadauIIA5:
+		stages = 5
+	case RadauIIA7:
+		stages = 7
+	default:
+		return nil, badInput("unknown method %d", int(st.Method))
+	}
+	if stages > 0 {
+		s.rad = newRadau(stages, n)
+		for i := range s.rad.lin {
+			s.rad.lin[i].init(n, s.band)
+		}
+		s.q = float64(stages + 1)
+		s.limit = float64(stages) - 0.5
+	}
 	s.limiting = make([]int, n)
 	if err := s.initEvents(); err != nil {
 		return nil, err
@@ -239,6 +274,9 @@ func (s *Solver) Init(t0, t1 float64, y []float64) error {
 	s.clip = false
 	s.startEvents()
 	s.startGuard()
+	if s.rad != nil {
+		s.radauRestart()
+	}
 	if t0 == t1 {
 		s.status = Reached
 		return nil
@@ -316,16 +354,29 @@ func (s *Solver) InterpolateDerivative(dst []float64, t float64) {
 // interpTheta evaluates the dense output of the last attempted step from y0 to
 // s.y1 at fraction th.
 func (s *Solver) interpTheta(dst, y0 []float64, th float64) {
+	if s.rad != nil {
+		s.radauInterp(dst, y0, th)
+		return
+	}
 	s.rodasInterp(dst, y0, s.y1, th)
 }
 
 func (s *Solver) interpThetaDiff(dst, y0 []float64, th float64) {
+	if s.rad != nil {
+		s.radauInterpDiff(dst, th)
+		return
+	}
 	s.rodasInterpDiff(dst, y0, s.y1, th)
 }
 
 // attempt takes one trial step of length h from (t, y) to tEnd.
 func (s *Solver) attempt(h, tEnd float64) outcome {
-	o := s.rodasStep(h, tEnd)
+	var o outcome
+	if s.rad != nil {
+		o = s.radauStep(h, tEnd)
+	} else {
+		o = s.rodasStep(h, tEnd)
+	}
 	s.lastH = h
 	if o != outcomeOK {
 		s.errNorm, s.errComp = math.NaN(), -1
@@ -457,6 +508,9 @@ func (s *Solver) Step() (done bool, err error) {
 		}
 		s.haveJ = true
 		s.setRowScale(s.y)
+		if s.rad != nil {
+			s.rad.jacFresh, s.rad.haveFac = true, false
+		}
 	}
 	if s.gd.on && !s.gd.known {
 		s.guardAll(s.gd.cur, s.jac, s.t, s.y)
@@ -582,7 +636,11 @@ func (s *Solver) nextStop() (float64, bool) {
 // s.errNorm: the elementary controller and Gustafsson's predictive form
 // (Hairer & Wanner II, IV.8), whichever is shorter.
 func (s *Solver) propose(h float64) float64 {
-	const logSafety = -0.10536051565782628 // ln 0.9
+	logSafety := -0.10536051565782628 // ln 0.9
+	if s.rad != nil {
+		m := 7 + 2*(s.rad.s-3)
+		logSafety += math.Log(float64(2*m+1) / float64(2*m+s.rad.iters))
+	}
 	le := math.Log(max(s.errNorm, 1e-20))
 	lf := le/s.q - logSafety
 	if s.hOld > 0 {
@@ -595,6 +653,9 @@ func (s *Solver) propose(h float64) float64 {
 		fac = 1
 	}
 	s.gd.logErr = max(le, -4.605170185988091) // err_old at least 0.01
+	if s.rad != nil && fac <= 1 && fac > 1/1.2 && s.rad.theta < 0.03 {
+		return h // the factored matrices stay good
+	}
 	return h / fac
 }
 
@@ -659,7 +720,11 @@ func (s *Solver) accept(tEnd, hNew float64, crossed bool) {
 		s.setRowScale(s.y)
 		s.guardCommit(h)
 	} else {
-		s.haveJ = false
+		// Radau keeps a Jacobian that serves it well.
+		s.haveJ = s.rad != nil && (s.rad.theta < 1e-3 || s.rad.iters <= 2)
+	}
+	if s.rad != nil {
+		s.radauAccept()
 	}
 	if s.autoAtol {
 		grew := false
@@ -688,6 +753,9 @@ func (s *Solver) accept(tEnd, hNew float64, crossed bool) {
 // restart prepares a fresh start from (t, y) after a discontinuity.
 func (s *Solver) restart(changed bool) {
 	s.haveF, s.haveJ = false, false
+	if s.rad != nil {
+		s.radauRestart()
+	}
 	s.logErrOld, s.hOld = math.NaN(), 0
 	s.clip = false
 	s.h = 0
@@ -727,29 +795,6 @@ func (s *Solver) setRowScale(y []float64) {
 	}
 }
 
-// factorShifted forms and factors W = c·I − J.
-func (s *Solver) factorShifted(c float64) outcome {
-	n := s.n
-	w := s.w
-	for i, v := range s.jac {
-		w[i] = -v
-	}
-	for i := 0; i < len(w); i += n + 1 {
-		w[i] += c
-	}
-	identity(s.piv)
-	s.stats.Factorizations++
-	if !luFactor(w, s.piv, s.rs, n) {
-		return outcomeSingular
-	}
-	return outcomeOK
-}
-
-func (s *Solver) solve(x, b []float64) {
-	s.stats.Solves++
-	luSolve(s.w, s.piv, s.n, x, b)
-}
-
 // evalJac evaluates the Jacobian and the time derivative at (t, y), where f
 // has the value f. It reports whether they are finite.
 func (s *Solver) evalJac(jac, dfdt []float64, t float64, y, f []float64) bool {
@@ -763,15 +808,11 @@ func (s *Solver) evalJac(jac, dfdt []float64, t float64, y, f []float64) bool {
 	}
 	arg, fs := s.arg, s.fs
 	copy(arg, y)
+	if s.band != nil {
+		return s.bandJac(jac, t, y, f) && s.timeDeriv(dfdt, t, y, f)
+	}
 	for j := range n {
-		d := sqrtEps * max(math.Abs(y[j]), 1000*s.atol[j], 1e-3*math.Abs(s.h*f[j]))
-		if d < 0x1p-900 {
-			d = sqrtEps
-		}
-		// Outwards, unless that leaves the domain.
-		if y[j] < 0 {
-			d = -d
-		}
+		d := s.increment(j, y, f)
 		arg[j] = y[j] + d
 		d = arg[j] - y[j]
 		s.stats.FuncEvals++
@@ -791,6 +832,56 @@ func (s *Solver) evalJac(jac, dfdt []float64, t float64, y, f []float64) bool {
 		}
 		arg[j] = y[j]
 	}
+	return s.timeDeriv(dfdt, t, y, f)
+}
+
+// increment is the step of a difference in component j: outwards, so that a
+// sign is kept.
+func (s *Solver) increment(j int, y, f []float64) float64 {
+	d := sqrtEps * max(math.Abs(y[j]), 1000*s.atol[j], 1e-3*math.Abs(s.h*f[j]))
+	if d < 0x1p-900 {
+		d = sqrtEps
+	}
+	if y[j] < 0 {
+		d = -d
+	}
+	return d
+}
+
+// bandJac differences all columns together that do not share a row.
+func (s *Solver) bandJac(jac []float64, t float64, y, f []float64) bool {
+	n, kl, ku := s.n, s.band.Lower, s.band.Upper
+	jw := kl + ku + 1
+	arg, fs, inc := s.arg, s.fs, s.inc
+	for g := 0; g < min(jw, n); g++ {
+		sign := 1.0
+		for try := 0; ; try++ {
+			for j := g; j < n; j += jw {
+				arg[j] = y[j] + sign*s.increment(j, y, f)
+				inc[j] = 1 / (arg[j] - y[j])
+			}
+			s.stats.FuncEvals++
+			s.f(fs, t, arg)
+			if s.allFinite(fs) {
+				break
+			}
+			if try == 1 {
+				return false
+			}
+			sign = -1
+		}
+		for j := g; j < n; j += jw {
+			arg[j] = y[j]
+			for i := max(0, j-ku); i <= min(n-1, j+kl); i++ {
+				jac[i*jw+j-i+kl] = (fs[i] - f[i]) * inc[j]
+			}
+		}
+	}
+	return true
+}
+
+// timeDeriv differences f in t, on the side of t that the step at hand is on.
+func (s *Solver) timeDeriv(dfdt []float64, t float64, y, f []float64) bool {
 	if s.autonomous {
 		return true
 	}
@@ -803,6 +894,7 @@ func (s *Solver) evalJac(jac, dfdt []float64, t float64, y, f []float64) bool {
 		tt = t - d
 	}
 	d = tt - t
+	fs := s.fs
 	s.stats.FuncEvals++
 	s.f(fs, tt, y)
 	if !s.allFinite(fs) {
@@ -822,7 +914,7 @@ func (s *Solver) evalJac(jac, dfdt []float64, t float64, y, f []float64) bool {
 }
 
 // firstStep proposes the length of a first step from (t, y), where f has the
-// value f0, from the sizes of y, f and a difference for y'' (Hairer, Nørsett &
+// value f0, from the sizes of y, f and a difference for y” (Hairer, Nørsett &
 // Wanner, Solving ODEs I, II.4).
 func (s *Solver) firstStep() float64 {
 	span := math.Abs(s.t1 - s.t)
