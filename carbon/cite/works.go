@@ -9,6 +9,8 @@ var (
 		Title: "The uptake of carbon during alteration of ocean crust", Journal: "Geochimica et Cosmochimica Acta", Volume: "63", Pages: "1527-1535"}
 	Bahcall2001 = &Work{Key: "bahcall2001", Authors: []string{"Bahcall, J. N.", "Pinsonneault, M. H.", "Basu, S."}, Year: 2001,
 		Title: "Solar models: current epoch and time dependences, neutrinos, and helioseismological properties", Journal: "The Astrophysical Journal", Volume: "555", Pages: "990-1012"}
+	Baumeister2023 = &Work{Key: "baumeister2023", Authors: []string{"Baumeister, P.", "Tosi, N.", "Brachmann, C.", "Grenfell, J. L.", "Noack, L."}, Year: 2023,
+		Title: "Redox state and interior structure control on the long-term habitability of stagnant-lid Earths", Journal: "Astronomy & Astrophysics", Volume: "675", Pages: "A122"}
 	Berner1994 = &Work{Key: "berner1994", Authors: []string{"Berner, R. A."}, Year: 1994,
 		Title: "GEOCARB II: a revised model of atmospheric CO2 over Phanerozoic time", Journal: "American Journal of Science", Volume: "294", Pages: "56-91"}
 	BernerKothavala2001 = &Work{Key: "berner2001", Authors: []string{"Berner, R. A.", "Kothavala, Z."}, Year: 2001,
@@ -45,6 +47,8 @@ var (
 		Title: "The role of plate tectonic-climate coupling and exposed land area in the development of habitable climates on rocky planets", Journal: "The Astrophysical Journal", Volume: "812", Pages: "36"}
 	FoleySmye2018 = &Work{Key: "foley2018", Authors: []string{"Foley, B. J.", "Smye, A. J."}, Year: 2018,
 		Title: "Carbon cycling and habitability of Earth-sized stagnant lid planets", Journal: "Astrobiology", Volume: "18", Pages: "873-896"}
+	FritschButland1984 = &Work{Key: "fritsch1984", Authors: []string{"Fritsch, F. N.", "Butland, J."}, Year: 1984,
+		Title: "A method for constructing local monotone piecewise cubic interpolants", Journal: "SIAM Journal on Scientific and Statistical Computing", Volume: "5", Pages: "300-304"}
 	Goldblatt2013 = &Work{Key: "goldblatt2013", Authors: []string{"Goldblatt, C.", "Robinson, T. D.", "Zahnle, K. J.", "Crisp, D."}, Year: 2013,
 		Title: "Low simulated radiation limit for runaway greenhouse climates", Journal: "Nature Geoscience", Volume: "6", Pages: "661-667"}
 	Gough1981 = &Work{Key: "gough1981", Authors: []string{"Gough, D. O."}, Year: 1981,
@@ -73,6 +77,8 @@ var (
 		Title: "CO2 condensation and the climate of early Mars", Journal: "Icarus", Volume: "94", Pages: "1-13"}
 	KastingCatling2003 = &Work{Key: "kasting2003", Authors: []string{"Kasting, J. F.", "Catling, D."}, Year: 2003,
 		Title: "Evolution of a habitable planet", Journal: "Annual Review of Astronomy and Astrophysics", Volume: "41", Pages: "429-463"}
+	Katz2003 = &Work{Key: "katz2003", Authors: []string{"Katz, R. F.", "Spiegelman, M.", "Langmuir, C. H."}, Year: 2003,
+		Title: "A new parameterization of hydrous mantle melting", Journal: "Geochemistry, Geophysics, Geosystems", Volume: "4", Pages: "1073"}
 	Kopparapu2013 = &Work{Key: "kopparapu2013", Authors: []string{"Kopparapu, R. K.", "Ramirez, R.", "Kasting, J. F.", "Eymet, V.", "Robinson, T. D.", "Mahadevan, S.", "Terrien, R. C.", "Domagal-Goldman, S.", "Meadows, V.", "Deshpande, R."}, Year: 2013,
 		Title: "Habitable zones around main-sequence stars: new estimates", Journal: "The Astrophysical Journal", Volume: "765", Pages: "131"}
 	Kopparapu2014 = &Work{Key: "kopparapu2014", Authors: []string{"Kopparapu, R. K.", "Ramirez, R. M.", "SchottelKotte, J.", "Kasting, J. F.", "Domagal-Goldman, S.", "Eymet, V."}, Year: 2014,
@@ -127,6 +133,8 @@ var (
 		Title: "Whole planet cooling and the radiogenic heat source contents of the Earth and Moon", Journal: "Journal of Geophysical Research", Volume: "85", Pages: "2531-2538"}
 	SleepZahnle2001 = &Work{Key: "sleep2001", Authors: []string{"Sleep, N. H.", "Zahnle, K."}, Year: 2001,
 		Title: "Carbon dioxide cycling and implications for climate on ancient Earth", Journal: "Journal of Geophysical Research", Volume: "106", Pages: "1373-1399"}
+	Solomatov1995 = &Work{Key: "solomatov1995", Authors: []string{"Solomatov, V. S."}, Year: 1995,
+		Title: "Scaling of temperature- and stress-dependent viscosity convection", Journal: "Physics of Fluids", Volume: "7", Pages: "266-274"}
 	SpanWagner1996 = &Work{Key: "span1996", Authors: []string{"Span, R.", "Wagner, W."}, Year: 1996,
 		Title: "A new equation of state for carbon dioxide covering the fluid region from the triple-point temperature to 1100 K at pressures up to 800 MPa", Journal: "Journal of Physical and Chemical Reference Data", Volume: "25", Pages: "1509-1596"}
 	Tout1996 = &Work{Key: "tout1996", Authors: []string{"Tout, C. A.", "Pols, O. R.", "Eggleton, P. P.", "Han, Z."}, Year: 1996,
@@ -147,6 +155,8 @@ var (
 		Title: "Tectonic and climatic controls on silicate weathering", Journal: "Earth and Planetary Science Letters", Volume: "235", Pages: "211-228"}
 	West2012 = &Work{Key: "west2012", Authors: []string{"West, A. J."}, Year: 2012,
 		Title: "Thickness of the chemical weathering zone and implications for erosional and climatic drivers of weathering and for carbon-cycle feedbacks", Journal: "Geology", Volume: "40", Pages: "811-814"}
+	White1992 = &Work{Key: "white1992", Authors: []string{"White, R. S.", "McKenzie, D.", "O'Nions, R. K."}, Year: 1992,
+		Title: "Oceanic crustal thickness from seismic measurements and rare earth element inversions", Journal: "Journal of Geophysical Research", Volume: "97", Pages: "19683-19715"}
 	WhiteBlum1995 = &Work{Key: "white1995", Authors: []string{"White, A. F.", "Blum, A. E."}, Year: 1995,
 		Title: "Effects of climate on chemical weathering in watersheds", Journal: "Geochimica et Cosmochimica Acta", Volume: "59", Pages: "1729-1747"}
 	WilliamsKasting1997 = &Work{Key: "williams1997", Authors: []string{"Williams, D. M.", "Kasting, J. F."}, Year: 1997,

@@ -44,6 +44,9 @@ type Law interface {
 	// Flow evaluates the law at an age in yr and temperatures in K. It must
 	// be finite and smooth for temperatures from 500 to 6000 K.
 	Flow(age, mantle, core float64) Flow
+	// Range returns the ages in yr for which the source or the table holds;
+	// zero when not stated.
+	Range() units.Range
 }
 
 // Entry is one row of the table of laws.

@@ -127,3 +127,6 @@ func (l *Plates) Start(float64) (tm, tc float64) { return l.Begin, l.Begin + l.c
 
 // HasCore reports whether the core has a heat flow.
 func (l *Plates) HasCore() bool { return l.core.Flow != 0 }
+
+// Range is not stated.
+func (l *Plates) Range() units.Range { return units.Range{} }
