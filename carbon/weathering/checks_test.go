@@ -219,6 +219,7 @@ func partChecks(t testing.TB) (out []check) {
 	}
 	big, bigger := 1e3, 1e3*math.E // kg/m²/yr, outside the allowed range on purpose
 	add("west2012", "d ln W/d ln E under strong erosion", math.Log(flux(bigger)/flux(big)), 0.1, 1e-4, exact, "kinetic limit, 1 − σ")
+	add("west2012", "exponent of the bracket at T_w, q₀", -w.rate*math.Expm1(-w.wet), 0.2625883673, 1e-9, exact, "2.6e-4 · (1 − exp(−7.6e-5 · 198)) · (8.9e6/43)^0.9/0.9")
 	hot := at(earth, 380, earth.P)
 	add("west2012", "W/W₀ where hot", w.Relative(hot)*w.Saturation(e), w.Saturation(hot), 1e-14, exact, "same bracket in both")
 
@@ -229,6 +230,10 @@ func partChecks(t testing.TB) (out []check) {
 	add("graham2020", "1/k₀", 1/g.K0, 114942.53, 5e-3, exact, "1/8.7e-6")
 	add("graham2020", "m A t_s", g.MolMass*g.Area*g.Age, 2.7e6, 1e-6, exact, "0.27 · 100 · 1e5")
 	add("graham2020", "p_lim in m/yr", (&Graham2020{Precip: 100}).precipitation(at(earth, 288, 1)), 3.00649, 5e-6, exact, "0.7 · 340.25 W/m² · 1 yr/(2.5e9 J/m³)")
+	for _, r := range []struct{ rain, want float64 }{{0.89, 0.89}, {0.95, 1 - 0.1*math.Exp(-0.5)}, {1, 1 - 0.1*math.Exp(-1)}, {9, 1}} {
+		limit := (&Graham2020{Precip: 100}).precipitation(at(earth, 288, 1))
+		add("graham2020", fmt.Sprintf("rain of %g p_lim", r.rain), (&Graham2020{Precip: r.rain * limit}).precipitation(at(earth, 288, 1))/limit, r.want, 1e-14, exact, "rounded over the last tenth")
+	}
 	half := at(earth, 288, 1)
 	half.Sun /= 2
 	half.Alb = 0.65

@@ -30,26 +30,34 @@ type Supply struct {
 func NewSupply(law Law) *Supply { return &Supply{Law: law, Limit: 9.5625e15} }
 
 // Relative returns W/W₀.
-func (l *Supply) Relative(e *Env) float64 {
-	k := l.Law.Relative(e)
+func (l *Supply) Relative(e *Env) float64 { return l.Of(l.Law.Relative(e)) }
+
+// Saturation returns W/W_s, 0 without a limit.
+func (l *Supply) Saturation(e *Env) float64 { return l.Use(l.Law.Relative(e)) }
+
+// Of bounds a relative kinetic flux k: it returns W/W₀.
+func (l *Supply) Of(k float64) float64 {
 	if l.Limit == 0 {
 		return k
 	}
 	return math.Expm1(-l.kappa*k) / l.full
 }
 
-// Saturation returns W/W_s, 0 without a limit.
-func (l *Supply) Saturation(e *Env) float64 {
+// Use returns W/W_s at a relative kinetic flux k, 0 without a limit.
+func (l *Supply) Use(k float64) float64 {
 	if l.Limit == 0 {
 		return 0
 	}
-	return -math.Expm1(-l.kappa * l.Law.Relative(e))
+	return -math.Expm1(-l.kappa * k)
 }
 
 // Fields lists those of the law inside and W_s.
-func (l *Supply) Fields() []units.Field {
-	return append(l.Law.Fields(), units.Field{Key: "supply_limit", Kind: units.Flux, Unit: "Tmol/yr", Min: 0, Max: 1e20, Published: units.Range{Lo: 9.5625e14, Hi: 9.5625e15},
-		Doc: "largest flux the supply of fresh rock allows on an Earth-sized planet with its reference land; 0 sets no limit", Source: cite.Ref{Work: cite.Foley2015, Note: "erosion of 1 to 10 mm/yr", Trust: cite.Derived}, Value: &l.Limit})
+func (l *Supply) Fields() []units.Field { return append(l.Law.Fields(), l.LimitField()) }
+
+// LimitField is the field of W_s alone.
+func (l *Supply) LimitField() units.Field {
+	return units.Field{Key: "supply_limit", Kind: units.Flux, Unit: "Tmol/yr", Min: 0, Max: 1e20, Published: units.Range{Lo: 9.5625e14, Hi: 9.5625e15},
+		Doc: "largest flux the supply of fresh rock allows on an Earth-sized planet with its reference land; 0 sets no limit", Source: cite.Ref{Work: cite.Foley2015, Note: "erosion of 1 to 10 mm/yr", Trust: cite.Derived}, Off: true, Value: &l.Limit}
 }
 
 // Bind binds the law inside and solves κ.
