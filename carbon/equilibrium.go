@@ -91,8 +91,7 @@ func bracketed(f func(float64) float64, a, b, fa, fb, tol float64) float64 {
 // growth returns ∂(dT/dt)/∂T in W m⁻² K⁻¹ at fixed surface carbon: positive
 // where the climate runs away from the state. Carbon is held, not CO₂: as the
 // ocean warms it gives off CO₂, which moves the fold towards the warm side.
-func (m *Model) growth(sun, t, p float64) float64 {
-	c, alk := m.set.ocean.law.Carbon(p, t)
+func (m *Model) growth(sun, t, p, c, alk float64) float64 {
 	return fd.Derivative(func(x float64) float64 {
 		return m.imbalance(sun, x, m.set.ocean.law.Solve(c, alk, x).P)
 	}, t, &fd.Settings{Formula: fd.Central, Step: 1e-3})
@@ -101,7 +100,8 @@ func (m *Model) growth(sun, t, p float64) float64 {
 // steady is a state in energy balance at one age, with the sinks there.
 type steady struct {
 	row  record.Row // T, p, albedo, ice, sinks, surface carbon
-	grow float64    // W m⁻² K⁻¹ at fixed carbon
+	alk  float64    // mol
+	grow float64    // W m⁻² K⁻¹ at fixed carbon and alkalinity
 }
 
 // steadyAt returns the state in balance at temperature t.
@@ -115,11 +115,27 @@ func (m *Model) steadyAt(d *memo, t float64) (s steady, low, high bool) {
 	r.Sunlight, r.LandFraction, r.Biology, r.Crust = 4*d.sun, d.land, d.biology, d.flow.Crust
 	r.Albedo = m.set.albedo.law.Planetary(t, p)
 	r.Ice = m.set.albedo.law.IceFraction(t)
-	c, alk := m.set.ocean.law.Carbon(p, t)
-	r.Surface = c
+	c, alk := m.carbonAt(p, t, m.ref.Total()*m.area)
 	m.weather(r, math.Log(p), math.Log(m.set.ocean.law.Solve(c, alk, t).H))
-	s.grow = m.growth(d.sun, t, p)
+	if m.pair != nil {
+		c, alk = m.carbonAt(p, t, r.Land+r.Seafloor)
+		m.weather(r, math.Log(p), math.Log(m.set.ocean.law.Solve(c, alk, t).H))
+	}
+	r.Surface, s.alk = c, alk
+	s.grow = m.growth(d.sun, t, p, c, alk)
 	return s, false, false
+}
+
+// growthAlong returns growth at temperature t along the energy balance; ok is
+// false where no CO₂ inside the box balances.
+func (m *Model) growthAlong(d *memo, t float64) (grow float64, ok bool) {
+	p, low, high := m.balance(d.sun, t)
+	if low || high {
+		return 0, false
+	}
+	flux := m.ref.Total() * m.area
+	c, alk := m.carbonAt(p, t, flux)
+	return m.growth(d.sun, t, p, c, alk), true
 }
 
 // coldFold returns the temperature in K, at or below t, at which the warm branch
@@ -127,13 +143,7 @@ func (m *Model) steadyAt(d *memo, t float64) (s steady, low, high bool) {
 // CO₂ is inside the box of the radiation law.
 func (m *Model) coldFold(d *memo, t float64) (fold float64, ok bool) {
 	const stride = 1.5
-	grow := func(x float64) (float64, bool) {
-		p, low, high := m.balance(d.sun, x)
-		if low || high {
-			return 0, false
-		}
-		return m.growth(d.sun, x, p), true
-	}
+	grow := func(x float64) (float64, bool) { return m.growthAlong(d, x) }
 	a := t
 	ga, ok := grow(a)
 	if !ok {
@@ -201,6 +211,7 @@ func (m *Model) top() float64 {
 func (m *Model) start() (y State, words string) {
 	s := m.set
 	y.MantleT, y.CoreT = s.interior.law.Start(s.Start)
+	y.Water = s.OceanFraction * s.Mass
 	d := m.drive(s.Start, y.MantleT, y.CoreT)
 	total := m.content * s.Mass
 
@@ -208,7 +219,7 @@ func (m *Model) start() (y State, words string) {
 	// returns the imbalance of the surface, mol/yr.
 	fill := func(st *steady) (State, float64) {
 		z := y
-		z.T, z.Surface = st.row.Temperature, st.row.Surface
+		z.T, z.Surface, z.Alk = st.row.Temperature, st.row.Surface, st.alk
 		in := outgas.Input{Age: s.Start, Crust: d.flow.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale}
 		probe := in
 		probe.Seafloor, probe.Continental = 1e20, 1e20
@@ -313,7 +324,7 @@ func (m *Model) bare(y State, d *memo, total float64) State {
 		t = math.Min(math.Max(t, 100), m.top())
 	}
 	y.T = t
-	y.Surface, _ = m.set.ocean.law.Carbon(p, t)
+	y.Surface, y.Alk = m.carbonAt(p, t, m.ref.Total()*m.area)
 	y.Mantle = total - y.Surface
 	return y
 }

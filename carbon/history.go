@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"math"
 
+	"cycle/carbon/climate"
 	"cycle/carbon/record"
 	"cycle/carbon/units"
 	"cycle/ode"
@@ -18,6 +19,7 @@ const (
 	endHot      = "the surface left the radiation law's range on the hot side"
 	endCold     = "the surface left the radiation law's range on the cold side"
 	endDense    = "CO2 left the radiation law's range"
+	endDry      = "the water is lost"
 	endCondense = "CO2 condenses at the coldest place"
 	endFreezes  = "the largest number of freezes was reached"
 	endSolver   = "the solver could not go on"
@@ -41,6 +43,14 @@ func (s span) begun() float64 {
 	}
 	return s.lost
 }
+
+// supplyReached is the part of its supply limit at which land weathering counts
+// as having reached it, dry the part of its water at which a planet counts as
+// having lost it.
+const (
+	supplyReached = 0.9
+	dry           = 0.01
+)
 
 // regainLasting is how long a regained stability must last for the loss before
 // it to be another matter, yr.
@@ -77,8 +87,15 @@ func (m *Model) atol(rtol float64) []float64 {
 	a[m.lay.continental] = rtol * 1e18
 	a[m.lay.mantle] = rtol * 1e20
 	a[m.lay.mantleT] = rtol * 1
+	a[m.lay.water] = rtol * 1e-2 * m.set.OceanFraction * m.set.Mass
 	if m.lay.coreT >= 0 {
 		a[m.lay.coreT] = rtol * 1
+	}
+	if m.lay.alk >= 0 {
+		a[m.lay.alk] = rtol * 1e15
+	}
+	if m.lay.escaped >= 0 {
+		a[m.lay.escaped] = rtol * 1e18
 	}
 	return a
 }
@@ -94,22 +111,21 @@ const (
 	evCold
 	evDense
 	evCondense
+	evSupply
+	evDry
 	evCount
 )
 
-// lookup gives the CO₂ pressure of a state vector, once per state.
-type lookup struct {
-	m       *Model
-	t, c, p float64
-}
+// lookup gives the CO₂ pressure of a state vector.
+type lookup struct{ m *Model }
 
-func (l *lookup) pressure(y []float64) float64 {
-	t, c := y[0], y[l.m.lay.surface]
-	if t != l.t || c != l.c {
-		l.t, l.c = t, c
-		l.p = l.m.breathe(t, c).chem.P
+func (l lookup) pressure(y []float64) float64 {
+	lay := &l.m.lay
+	alk := 0.0
+	if lay.alk >= 0 {
+		alk = y[lay.alk]
 	}
-	return l.p
+	return l.m.breathe(y[0], y[lay.surface], alk).chem.P
 }
 
 // integrate runs the history from its start to an age in yr. With full, a row
@@ -130,7 +146,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 		end, h.reason = e, endStar
 	}
 	box := s.radiation.law.Box()
-	look := &lookup{m: m, t: math.NaN()}
+	look := lookup{m}
 	limit := func(target float64, stated bool) func(float64, []float64) float64 {
 		if !stated {
 			return func(float64, []float64) float64 { return -1 }
@@ -151,17 +167,36 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 	events[evThaw] = ode.Event{Name: record.MarkThawed, Func: temp(s.ThawedAbove), Direction: ode.Rising}
 	events[evC3] = ode.Event{Name: record.MarkC3, Func: limit(150e-6, true), Direction: ode.Falling}
 	events[evC4] = ode.Event{Name: record.MarkC4, Func: limit(10e-6, true), Direction: ode.Falling}
-	events[evMoist] = ode.Event{Name: record.MarkMoist, Func: temp(s.MoistFrom)}
+	events[evMoist] = ode.Event{Name: record.MarkMoist, Func: temp(s.Strato.T)}
 	events[evHot] = ode.Event{Name: "hot edge", Func: temp(m.top()), Direction: ode.Rising, Terminal: 1}
 	events[evCold] = ode.Event{Name: "cold edge", Func: below(box.T.Lo, box.T.Stated()), Direction: ode.Falling, Terminal: 1}
 	events[evDense] = ode.Event{Name: "dense edge", Func: limit(box.P.Hi, box.P.Stated()), Direction: ode.Rising, Terminal: 1}
 	events[evCondense] = ode.Event{Name: record.MarkCondensation, Direction: ode.Rising, Terminal: 1, Func: func(_ float64, y []float64) float64 {
-		return math.Log(look.pressure(y) / co2sat(y[0]-s.ColdContrast))
+		return math.Log(look.pressure(y) / climate.CO2Pressure(y[0]-s.ColdContrast))
+	}}
+
+	events[evSupply] = ode.Event{Name: record.MarkSupply, Direction: ode.Rising, Func: func(t float64, y []float64) float64 {
+		if s.supply.Limit == 0 && m.saturates == nil {
+			return -1
+		}
+		m.lay.unpack(&m.state, y)
+		m.diagnose(&m.row, t, &m.state)
+		return m.row.SupplyUse - supplyReached
+	}}
+	events[evDry] = ode.Event{Name: "dry", Direction: ode.Falling, Terminal: 1, Func: func(_ float64, y []float64) float64 {
+		return y[m.lay.water]/st.Water - dry
 	}}
 
 	stops := []float64{}
-	if s.RefAge > s.Start && s.RefAge < end {
-		stops = append(stops, s.RefAge)
+	stop := func(t float64) {
+		if t > s.Start && t < end {
+			stops = append(stops, t)
+		}
+	}
+	stop(s.RefAge)
+	for _, p := range s.Pulses {
+		stop(p.Start)
+		stop(p.Start + p.Duration)
 	}
 	problem := &ode.Problem{Dim: m.lay.n, Func: func(dy []float64, t float64, y []float64) { m.derivative(dy, t, y) }, Events: events, StopTimes: stops}
 	settings := &ode.Settings{RelTol: rtol, AbsTol: m.atol(rtol), MaxStep: s.MaxStep, InitialStep: 1, MaxSteps: 400000,
@@ -171,6 +206,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 		return nil, fmt.Errorf("carbon: %w", err)
 	}
 
+	var dynamo []bool
 	keep := func(t float64, y []float64, force bool) {
 		if !full {
 			return
@@ -180,13 +216,16 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 		var r record.Row
 		chem := m.diagnose(&r, t, &z)
 		r.PH = -math.Log10(chem.H)
+		r.Pressure = s.Nitrogen + r.PCO2 + climate.WaterPressure(r.Temperature)
+		r.Boiling = climate.BoilingPoint(r.Pressure)
+		works := m.memo.flow.Dynamo
 		if n := len(h.rows); n > 0 && !force {
 			l := &h.rows[n-1]
 			if math.Abs(r.Temperature-l.Temperature) < 0.05 && math.Abs(math.Log(r.PCO2/l.PCO2)) < 0.01 && t-l.Age < 10*units.Myr {
 				return
 			}
 		}
-		h.rows = append(h.rows, r)
+		h.rows, dynamo = append(h.rows, r), append(dynamo, works)
 	}
 	drift := func(y []float64) {
 		var z State
@@ -196,7 +235,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 
 	// The state of the climate, with hysteresis.
 	isFrozen := y[0] < s.FrozenBelow
-	isMoist := y[0] > s.MoistFrom
+	isMoist := y[0] > s.Strato.T
 	nan := math.NaN()
 	if isFrozen {
 		h.frozen = append(h.frozen, span{lost: nan, start: s.Start, end: nan})
@@ -263,6 +302,10 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 					h.marks = append(h.marks, mark{record.MarkThawed, e.T})
 					lost, regained = nan, nan
 				}
+			case evSupply:
+				once(e.Name, e.T)
+			case evDry:
+				h.reason = endDry
 			case evC3, evC4:
 				if !isFrozen {
 					once(e.Name, e.T)
@@ -298,6 +341,11 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 		if len(h.frozen) >= int(s.MaxFreezes) && isFrozen && !done {
 			h.reason = endFreezes
 			break
+		}
+	}
+	for i := 1; i < len(h.rows); i++ {
+		if s.interior.law.HasCore() && dynamo[i-1] && !dynamo[i] {
+			once(record.MarkDynamo, h.rows[i].Age)
 		}
 	}
 	h.stats = solver.Stats()
@@ -338,7 +386,7 @@ func (m *Model) anchor(ctx context.Context, rtol float64) (residual float64, err
 		case err != nil:
 			return 0, err
 		case h.hasRef && h.atRef.T > s.FrozenBelow:
-			return math.Log(s.ocean.law.Solve(h.atRef.Surface, 0, h.atRef.T).P / s.RefP), nil
+			return math.Log(s.ocean.law.Solve(h.atRef.Surface, h.atRef.Alk, h.atRef.T).P / s.RefP), nil
 		case h.hasRef || h.reason == endCondense || h.reason == endCold:
 			return -far, nil // frozen: too little
 		case h.reason == endSolver:

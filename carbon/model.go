@@ -47,6 +47,13 @@ type Model struct {
 	free            float64
 	balanceResidual float64 // W/m²
 
+	escape bool        // CO₂ escapes while there is no dynamo
+	pair   *ocean.Pair // nil when alkalinity is no state
+
+	saturates interface { // a law of land with a supply limit of its own, or nil
+		Saturation(*weathering.Env) float64
+	}
+
 	memo   memo
 	air    air
 	row    record.Row     // scratch of the right-hand side
@@ -58,27 +65,31 @@ type Model struct {
 // air keeps what depends on temperature and surface carbon alone: the columns
 // of the Jacobian for the deep reservoirs do not change it.
 type air struct {
-	t, c             float64
+	t, c, alk        float64
 	chem             ocean.State
 	lnp, lnh         float64
 	albedo, ice, out float64
+	moisture         float64 // mixing ratio of water in the stratosphere
 	valid            bool
 }
 
-// breathe fills the air for a temperature and surface carbon.
-func (m *Model) breathe(t, c float64) *air {
+// breathe fills the air for a temperature, surface carbon and alkalinity.
+func (m *Model) breathe(t, c, alk float64) *air {
 	a := &m.air
-	if a.valid && a.t == t && a.c == c {
+	if a.valid && a.t == t && a.c == c && a.alk == alk {
 		return a
 	}
 	s := m.set
-	a.t, a.c, a.valid = t, c, true
-	a.chem = s.ocean.law.Solve(c, 0, t)
+	a.t, a.c, a.alk, a.valid = t, c, alk, true
+	a.chem = s.ocean.law.Solve(c, alk, t)
 	p := a.chem.P
 	a.lnp, a.lnh = math.Log(p), math.Log(a.chem.H)
 	a.albedo = s.albedo.law.Planetary(t, p)
 	a.ice = s.albedo.law.IceFraction(t)
 	a.out = s.radiation.law.Outgoing(t, p, a.lnp)
+	if s.WaterEscape {
+		a.moisture = s.Strato.Mixing(t, p+s.Nitrogen)
+	}
 	return a
 }
 
@@ -89,6 +100,7 @@ type memo struct {
 	flow                interior.Flow
 	sun                 float64 // S/4, W/m²
 	land, biology       float64
+	pulse               float64 // mol/yr
 	valid               bool
 }
 
@@ -150,7 +162,12 @@ func NewModel(s *Setup) (*Model, error) {
 	earth := interior.NewPlanet(1, earthCore)
 	m.area = m.planet.Area / earth.Area
 	m.dilution = m.area / (m.planet.MantleMass / earth.MantleMass)
-	m.lay = newLayout(s.interior.law.HasCore())
+	m.escape = s.EscapeCO2 > 0 && s.interior.law.HasCore()
+	m.lay = newLayout(s.interior.law.HasCore(), s.ocean.law.HasAlkalinity(), m.escape)
+	m.pair, _ = s.ocean.law.(*ocean.Pair)
+	m.saturates, _ = s.land.law.(interface {
+		Saturation(*weathering.Env) float64
+	})
 
 	m.ref = s.reference()
 	m.deposited = m.ref.Deposited()
@@ -189,6 +206,10 @@ func NewModel(s *Setup) (*Model, error) {
 	if err := bind("weathering.land", s.land.law.Bind(wref)); err != nil {
 		return nil, err
 	}
+	s.supply.Law = s.land.law
+	if err := bind("weathering.land", s.supply.Bind(wref)); err != nil {
+		return nil, err
+	}
 	wref.Flux = m.ref.Seafloor
 	if err := bind("weathering.seafloor", s.seafloor.law.Bind(wref)); err != nil {
 		return nil, err
@@ -196,9 +217,25 @@ func NewModel(s *Setup) (*Model, error) {
 	ice := s.albedo.law.IceFraction(s.RefT)
 	m.iceNorm = [2]float64{1 / (1 - (1-s.LandIce)*ice), 1 / (1 - (1-s.SeafloorIce)*ice)}
 	m.limNorm = (s.RefP + s.Limiter) / s.RefP
-	c, alk := s.ocean.law.Carbon(s.RefP, s.RefT)
+	c, alk := m.carbonAt(s.RefP, s.RefT, s.OutgassingRef*m.area)
 	m.lnH0 = math.Log(s.ocean.law.Solve(c, alk, s.RefT).H)
 	return m, nil
+}
+
+// carbonAt returns surface carbon and alkalinity, mol, at a CO₂ pressure in bar
+// and a temperature in K. Where alkalinity is a state, the ocean is as saturated
+// as it takes to bury the flux, mol/yr.
+func (m *Model) carbonAt(p, t, flux float64) (c, alk float64) {
+	if l := m.pair; l != nil {
+		keep := l.Omega
+		// The inverse of the precipitation law, by its own normalisation.
+		unit := l.Precipitation(2)
+		l.Omega = 1 + math.Exp(math.Log(math.Max(flux, 1)/unit)/l.Order)
+		c, alk = l.Carbon(p, t)
+		l.Omega = keep
+		return c, alk
+	}
+	return m.set.ocean.law.Carbon(p, t)
 }
 
 // earthCore is the core mass fraction at which reference fluxes hold.
@@ -222,6 +259,13 @@ func (m *Model) drive(age, mantleT, coreT float64) *memo {
 	s := m.set
 	if !d.valid || d.age != age {
 		d.sun = star.Sunlight(s.star.law.Luminosity(age), s.Distance, s.Eccentricity) / 4
+		d.pulse = 0
+		for _, p := range s.Pulses {
+			if age >= p.Start && age < p.Start+p.Duration {
+				d.sun *= 1 + p.Sunlight
+				d.pulse += p.Carbon / p.Duration
+			}
+		}
 		d.land = s.Land.at(age)
 		d.biology = s.Biology.at(age)
 	}
@@ -233,16 +277,21 @@ func (m *Model) drive(age, mantleT, coreT float64) *memo {
 // weather fills the fluxes of both sinks at temperature t (K) and CO₂ pressure
 // p (bar) into a row that already has sunlight, albedo, land, biology and crust.
 //
-//	W_land = W₀ (A/A_E) f_land f_bio i_land ℓ(p) w_land(T, p)
+//	W_land = W₀ (A/A_E) f_land S(f_bio i_land ℓ(p) w_land(T, p))
 //	W_sea  = W₀ (A/A_E) i_sea ℓ(p) w_sea(T, p)
 //	ℓ(p)   = p/(p + p_ℓ), i = 1 − (1 − σ)·ice, both relative to the reference state
 //
-// σ is the strength under ice.
+// σ is the strength under ice, S the supply limit, S(k) = k without one.
 func (m *Model) weather(r *record.Row, lnp, lnh float64) {
 	s, env := m.set, &m.env
 	*env = weathering.Env{Age: r.Age, T: r.Temperature, P: r.PCO2, LnP: lnp - m.lnP0, Sun: r.Sunlight / 4, Alb: r.Albedo, Crust: r.Crust, LnH: lnh - m.lnH0}
 	lim := m.limNorm * r.PCO2 / (r.PCO2 + s.Limiter)
-	r.Land = m.ref.Land * m.area * r.LandFraction * r.Biology * m.iceNorm[0] * (1 - (1-s.LandIce)*r.Ice) * lim * s.land.law.Relative(env)
+	kinetic := r.Biology * m.iceNorm[0] * (1 - (1-s.LandIce)*r.Ice) * lim * s.land.law.Relative(env)
+	r.Land = m.ref.Land * m.area * r.LandFraction * s.supply.Of(kinetic)
+	r.SupplyUse = s.supply.Use(kinetic)
+	if m.saturates != nil {
+		r.SupplyUse = math.Max(r.SupplyUse, m.saturates.Saturation(env))
+	}
 	r.Seafloor = 0
 	if m.ref.Seafloor > 0 {
 		r.Seafloor = m.ref.Seafloor * m.area * m.iceNorm[1] * (1 - (1-s.SeafloorIce)*r.Ice) * lim * s.seafloor.law.Relative(env)
@@ -260,13 +309,15 @@ func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
 	r.LandFraction, r.Biology = d.land, d.biology
 	r.MantleTemperature, r.CoreTemperature = y.MantleT, y.CoreT
 	r.HeatFlow, r.Radiogenic, r.Crust = d.flow.Heat, d.flow.Radiogenic, d.flow.Crust
+	r.CoreHeat = d.flow.Core
 	r.Surface, r.SeafloorCarbon, r.Continental, r.Mantle = y.Surface, y.Seafloor, y.Continental, y.Mantle
+	r.Escaped, r.Water = y.Escaped, y.Water
 	r.Total = y.Carbon()
 
-	a := m.breathe(y.T, y.Surface)
+	a := m.breathe(y.T, y.Surface, y.Alk)
 	chem := a.chem
 	r.PCO2, r.DIC, r.Alk, r.Omega = chem.P, chem.DIC, chem.Alk, chem.Omega
-	r.Albedo, r.Ice, r.Outgoing = a.albedo, a.ice, a.out
+	r.Albedo, r.Ice, r.Outgoing, r.Moisture = a.albedo, a.ice, a.out, a.moisture
 	r.Absorbed = d.sun * (1 - r.Albedo)
 	m.weather(r, a.lnp, a.lnh)
 
@@ -274,9 +325,17 @@ func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
 	*in = outgas.Input{Age: age, Crust: r.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale, Mantle: y.Mantle, Seafloor: y.Seafloor, Continental: y.Continental}
 	f := s.sources.law.Fluxes(in)
 	r.Ridge, r.Arc, r.Metamorphic = f.Ridge, f.Arc, f.Metamorphic
+	r.Pulse = d.pulse
 	r.Outgassing = f.Ridge + f.Arc + f.Metamorphic + r.Pulse
-	r.Imbalance = r.Outgassing - r.Land - r.Seafloor
+	r.Burial = r.Land + r.Seafloor
 	r.Deposited = m.deposited * r.Land
+	if m.pair != nil {
+		// Carbonate leaves as it precipitates, shared as weathering would have it.
+		share := m.deposited * r.Land / r.Burial
+		r.Burial = m.pair.Precipitation(chem.Omega)
+		r.Deposited = share * r.Burial
+	}
+	r.Imbalance = r.Outgassing - r.Burial
 	r.Subducted = f.Subducted
 	r.Foundered = f.Foundered
 	return chem
@@ -285,24 +344,42 @@ func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
 // derivative is the right-hand side: it calls diagnose and sums its fluxes.
 //
 //	c dT/dt           = (S/4)(1 − A) − F
-//	dC_surface/dt     = ridge + arc + metamorphic − W_land − W_sea
-//	dC_seafloor/dt    = W_sea + δ W_land − subducted
-//	dC_continental/dt = (1 − δ) W_land − metamorphic − foundered
-//	dC_mantle/dt      = subducted − arc + foundered − ridge
+//	dC_surface/dt     = ridge + arc + metamorphic + pulse − burial − escape
+//	dC_seafloor/dt    = burial − (1 − δ) burial_land − subducted
+//	dC_continental/dt = (1 − δ) burial_land − metamorphic − foundered
+//	dC_mantle/dt      = subducted − arc + foundered − ridge − pulse
+//	dA_ocean/dt       = 2 (W_land + W_sea) − 2 burial
 //	dT_mantle/dt      from the interior
+//	dM_water/dt       = −escape through the stratosphere
+//
+// burial = W_land + W_sea unless alkalinity is a state; then it is the
+// precipitation of carbonate, and burial_land its share W_land/(W_land + W_sea).
 func (m *Model) derivative(dydt []float64, age float64, y []float64) {
 	st, r := &m.state, &m.row
 	m.lay.unpack(st, y)
 	m.diagnose(r, age, st)
 	flow := &m.memo.flow
+	weathered := r.Land + r.Seafloor
+	land := r.Land
+	if m.pair != nil {
+		land *= r.Burial / weathered
+	}
 	rate := State{
 		T:           (r.Absorbed - r.Outgoing) * units.Year / m.set.HeatCapacity,
 		Surface:     r.Imbalance,
-		Seafloor:    r.Seafloor + r.Deposited - r.Subducted,
-		Continental: r.Land - r.Deposited - r.Metamorphic - r.Foundered,
-		Mantle:      r.Subducted - r.Arc + r.Foundered - r.Ridge,
+		Seafloor:    r.Burial - (land - r.Deposited) - r.Subducted,
+		Continental: land - r.Deposited - r.Metamorphic - r.Foundered,
+		Mantle:      r.Subducted - r.Arc + r.Foundered - r.Ridge - r.Pulse,
 		MantleT:     flow.MantleRate,
 		CoreT:       flow.CoreRate,
+		Alk:         2 * (weathered - r.Burial),
+	}
+	if m.escape && !flow.Dynamo && st.Surface > 0 {
+		rate.Escaped = m.set.EscapeCO2
+		rate.Surface -= rate.Escaped
+	}
+	if m.set.WaterEscape && st.Water > 0 {
+		rate.Water = -climate.WaterLoss(r.Moisture, m.planet.Area)
 	}
 	m.lay.pack(dydt, &rate)
 }

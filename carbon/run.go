@@ -47,6 +47,11 @@ func Run(ctx context.Context, s *Setup) (*record.Run, error) {
 	b.solver(tight)
 	b.outcome(check)
 	b.marks(check)
+	if len(s.Pulses) > 0 {
+		if err := b.recoveries(ctx); err != nil {
+			return nil, err
+		}
+	}
 	b.warnings(residual)
 	b.run.Rows = main.rows
 	return b.run, nil
@@ -125,6 +130,8 @@ func (m *Model) judge(h *history) verdict {
 		add(record.BeyondRange, h.end, span{})
 	case endCondense:
 		add(record.Condensation, h.end, span{})
+	case endDry:
+		add(record.WaterLost, h.end, span{})
 	case endStar:
 		add(record.StarLeft, h.end, span{})
 	case endSolver:
@@ -185,7 +192,7 @@ func (b *builder) warn(about, words string) {
 // margins fills the distance to failure of every row and finds the closest
 // approaches.
 func (b *builder) margins() {
-	m, rows := b.m, b.h.rows
+	m, s, rows := b.m, b.m.set, b.h.rows
 	nan := math.NaN()
 	state := frozenAt(b.h)
 	fold := nan
@@ -208,7 +215,7 @@ func (b *builder) margins() {
 			fold = nan
 		}
 		r.HotMargin = m.radiationLimit(r.Temperature, r.PCO2)/r.Sunlight - 1
-		g := m.strength(r.Age, State{T: r.Temperature, Surface: r.Surface, Seafloor: r.SeafloorCarbon, Continental: r.Continental, Mantle: r.Mantle, MantleT: r.MantleTemperature, CoreT: r.CoreTemperature})
+		g := m.strength(r.Age, State{T: r.Temperature, Surface: r.Surface, Seafloor: r.SeafloorCarbon, Continental: r.Continental, Mantle: r.Mantle, MantleT: r.MantleTemperature, CoreT: r.CoreTemperature, Alk: r.Alk * s.OceanFraction * s.Mass})
 		if !math.IsInf(g.gain, 0) && g.response > 0 && !math.IsInf(g.response, 0) {
 			r.Gain, r.Response = g.gain, g.response
 		}
@@ -253,13 +260,7 @@ func (b *builder) margins() {
 // nearFold finds the cold fold, starting next to where it was in the row before.
 func (m *Model) nearFold(d *memo, t, before float64) (float64, bool) {
 	if !math.IsNaN(before) && before < t {
-		grow := func(x float64) (float64, bool) {
-			p, low, high := m.balance(d.sun, x)
-			if low || high {
-				return 0, false
-			}
-			return m.growth(d.sun, x, p), true
-		}
+		grow := func(x float64) (float64, bool) { return m.growthAlong(d, x) }
 		for _, w := range []float64{0.05, 0.6} {
 			lo, hi := before-w, math.Min(before+w, t)
 			gl, ok1 := grow(lo)
@@ -526,6 +527,74 @@ func (b *builder) marks(check *history) {
 	sort.SliceStable(b.run.Marks, func(i, j int) bool { return b.run.Marks[i].TimeGyr < b.run.Marks[j].TimeGyr })
 }
 
+// recoveries follows every pulse against the same planet without pulses.
+func (b *builder) recoveries(ctx context.Context) error {
+	m, s := b.m, b.m.set
+	pulses := s.Pulses
+	s.Pulses = nil
+	calm, err := m.integrate(ctx, s.End, s.Tolerance, true)
+	s.Pulses = pulses
+	if err != nil {
+		return err
+	}
+	j := 0
+	base := func(age float64) (lnp, t float64) {
+		rows := calm.rows
+		for j+1 < len(rows)-1 && rows[j+1].Age < age {
+			j++
+		}
+		u, v := &rows[j], &rows[min(j+1, len(rows)-1)]
+		w := 0.0
+		if v.Age > u.Age {
+			w = math.Min(math.Max((age-u.Age)/(v.Age-u.Age), 0), 1)
+		}
+		return (1-w)*math.Log(u.PCO2) + w*math.Log(v.PCO2), (1-w)*u.Temperature + w*v.Temperature
+	}
+	for i, p := range pulses {
+		rec := record.Recovery{StartGyr: gyr(p.Start), EndGyr: gyr(p.Start + p.Duration), RecoveryKyr: math.NaN()}
+		var what []string
+		if p.Carbon != 0 {
+			what = append(what, fmt.Sprintf("%.3g Emol of carbon", p.Carbon/1e18))
+		}
+		if p.Sunlight != 0 {
+			what = append(what, fmt.Sprintf("%+.3g %% of sunlight", 100*p.Sunlight))
+		}
+		rec.Pulse = fmt.Sprintf("pulse %d: %s over %s", i+1, strings.Join(what, " and "), units.Time.Format(p.Duration, "kyr"))
+		j = 0
+		peak, peakAge := 0.0, p.Start
+		next := math.Inf(1) // what happens after the next pulse is that pulse's
+		for _, q := range pulses {
+			if q.Start > p.Start {
+				next = math.Min(next, q.Start)
+			}
+		}
+		for k := range b.h.rows {
+			r := &b.h.rows[k]
+			if r.Age < p.Start || r.Age >= next {
+				continue
+			}
+			lnp, t := base(r.Age)
+			dl, dt := math.Log(r.PCO2)-lnp, r.Temperature-t
+			if math.Abs(dt) > math.Abs(rec.PeakKelvin) {
+				rec.PeakKelvin = dt
+			}
+			if math.Abs(dl) > math.Abs(peak) {
+				peak, peakAge, rec.RecoveryKyr = dl, r.Age, math.NaN()
+			} else if math.IsNaN(rec.RecoveryKyr) && r.Age > p.Start+p.Duration && math.Abs(dl) < math.Abs(peak)/math.E {
+				rec.RecoveryKyr = (r.Age - peakAge) / 1e3
+			}
+		}
+		rec.PeakLnCO2 = peak
+		b.run.Recoveries = append(b.run.Recoveries, rec)
+		b.run.Marks = append(b.run.Marks, record.Mark{Name: record.MarkPulse, TimeGyr: rec.StartGyr})
+		if !math.IsNaN(rec.RecoveryKyr) {
+			b.run.Marks = append(b.run.Marks, record.Mark{Name: record.MarkRecovered, TimeGyr: gyr(peakAge) + rec.RecoveryKyr/1e6, ErrorGyr: math.NaN()})
+		}
+	}
+	sort.SliceStable(b.run.Marks, func(i, j int) bool { return b.run.Marks[i].TimeGyr < b.run.Marks[j].TimeGyr })
+	return nil
+}
+
 // laws names the chosen laws and collects the works they rest on.
 func (b *builder) laws() {
 	s := b.m.set
@@ -637,9 +706,16 @@ func (b *builder) warnings(residual float64) {
 	}
 	for _, sec := range s.Sections() {
 		for _, f := range sec.Fields {
-			if !f.Published.Holds(*f.Value) {
+			if f.Extrapolates(*f.Value) {
 				b.warn(sec.Name, fmt.Sprintf("%s.%s = %s is outside its published range, %s to %s", sec.Name, f.Key, f.Text(*f.Value), f.Text(f.Published.Lo), f.Text(f.Published.Hi)))
 			}
+		}
+	}
+	for i := range h.rows {
+		r := &h.rows[i]
+		if r.Pressure < 611.657e-5 {
+			b.warn("atmosphere", fmt.Sprintf("%s at %.3g Gyr: %.2g bar", record.BelowTriple, gyr(r.Age), r.Pressure))
+			break
 		}
 	}
 	// Where the history leaves the range of a law, first and in total.

@@ -28,6 +28,7 @@ type Setup struct {
 	albedo    slot[climate.Albedo]
 	land      slot[weathering.Law]
 	seafloor  slot[weathering.Law]
+	supply    weathering.Supply
 	sources   slot[outgas.Law]
 	interior  slot[interior.Law]
 	ocean     slot[ocean.Law]
@@ -38,9 +39,14 @@ type Setup struct {
 
 	RefAge, RefT, RefP, RefSun float64 // yr, K, bar, W/m²
 
-	HeatCapacity                        float64 // J m⁻² K⁻¹
-	FrozenBelow, ThawedAbove, MoistFrom float64 // K
-	ColdContrast                        float64 // K
+	HeatCapacity             float64              // J m⁻² K⁻¹
+	FrozenBelow, ThawedAbove float64              // K
+	Strato                   climate.Stratosphere // moist from Strato.T
+	Nitrogen                 float64              // bar
+	EscapeCO2                float64              // mol/yr, only while there is no dynamo
+	WaterEscape              bool
+	Pulses                   []*Pulse
+	ColdContrast             float64 // K
 
 	OutgassingRef, RidgeRef, ArcRef float64 // mol/yr; metamorphic is the rest
 	SeafloorRef                     float64 // mol/yr
@@ -61,6 +67,30 @@ type Setup struct {
 	Guard                     bool
 	MaxFreezes                float64
 	Lasting                   float64 // a snowball longer than this is a lasting failure, yr
+}
+
+// Pulse is a passing disturbance: carbon given to or taken from the surface at a
+// constant rate, in exchange with the mantle, or a change of sunlight.
+type Pulse struct {
+	Start, Duration float64 // yr
+	Carbon          float64 // mol, negative for a drawdown
+	Sunlight        float64 // relative change while it lasts
+}
+
+// MaxPulses is how many pulses a setup may have.
+const MaxPulses = 9
+
+// Grow makes a numbered section, "pulse.1" to "pulse.9", and those before it. It
+// reports false when the name is no such section.
+func (s *Setup) Grow(section string) bool {
+	var n int
+	if _, err := fmt.Sscanf(section, "pulse.%d", &n); err != nil || section != fmt.Sprintf("pulse.%d", n) || n < 1 || n > MaxPulses {
+		return false
+	}
+	for len(s.Pulses) < n {
+		s.Pulses = append(s.Pulses, &Pulse{Start: 4 * units.Gyr, Duration: 1e5})
+	}
+	return true
 }
 
 // Step is a smooth step in time,
@@ -147,7 +177,8 @@ func NewSetup() *Setup {
 		Title:    "Earth",
 		Distance: units.AU, Mass: units.EarthMass, CoreFraction: 0.33, Eccentricity: 0,
 		RefAge: 4.57 * units.Gyr, RefT: 288, RefP: 280e-6, RefSun: units.SolarFlux,
-		HeatCapacity: 2.1e9, FrozenBelow: 255, ThawedAbove: 268, MoistFrom: 340, ColdContrast: 30,
+		HeatCapacity: 2.1e9, FrozenBelow: 255, ThawedAbove: 268, ColdContrast: 30,
+		Strato: *climate.NewStratosphere(), Nitrogen: 0.78, WaterEscape: true,
 		OutgassingRef: 7.5e12, RidgeRef: 2.2e12, ArcRef: 2.5e12, SeafloorRef: 1.75e12,
 		LandIce: 0, SeafloorIce: 1, Limiter: 1e-7,
 		Land:    Step{Before: 0.1, After: 1, Middle: 2.0 * units.Gyr, Width: 0.5 * units.Gyr},
@@ -233,7 +264,7 @@ func (s *Setup) Sections() []Section {
 		}
 		return nil
 	}
-	return []Section{
+	out := []Section{
 		{Name: "star", Doc: "luminosity through time", Laws: s.star.choices, Law: s.star.name, Fields: s.star.law.Fields(), Table: table(s.star.law)},
 		{Name: "orbit", Doc: "where the planet goes round", Fields: []units.Field{
 			{Key: "distance", Kind: units.Length, Unit: "au", Min: 0.05 * units.AU, Max: 10 * units.AU, Doc: "semi-major axis", Source: practice("Earth"), Value: &s.Distance},
@@ -256,13 +287,13 @@ func (s *Setup) Sections() []Section {
 			{Key: "heat_capacity", Kind: units.HeatCapacity, Unit: "J/m2/K", Min: 1e7, Max: 1e11, Doc: "of the column that warms and cools; 500 m of water", Source: cite.Own("dates change by less than 0.3 % from 10 m to 5 km of water"), Value: &s.HeatCapacity},
 			{Key: "frozen_below", Kind: units.Temperature, Unit: "K", Min: 220, Max: 262, Doc: "a snowball starts below", Source: cite.Own("colder than the ramp's unstable branch"), Value: &s.FrozenBelow},
 			{Key: "thawed_above", Kind: units.Temperature, Unit: "K", Min: 262, Max: 280, Doc: "a snowball ends above", Source: cite.Own("warmer than the ramp's unstable branch"), Value: &s.ThawedAbove},
-			{Key: "moist_from", Kind: units.Temperature, Unit: "K", Min: 310, Max: 360, Doc: "the stratosphere turns moist at", Source: memory(cite.Kasting1993, "surface about 340 K"), Value: &s.MoistFrom},
 			{Key: "cold_contrast", Kind: units.Interval, Unit: "K", Min: 0, Max: 80, Doc: "coldest place colder than the mean by, for CO2 condensation", Source: cite.Own("of the size of today's pole-to-mean contrast"), Value: &s.ColdContrast},
 		}},
 		{Name: "weathering", Doc: "what both sinks share", Fields: []units.Field{
 			{Key: "limiter", Kind: units.Pressure, Unit: "bar", Min: 1e-9, Max: 1e-5, Doc: "CO2 pressure below which all sinks vanish", Source: cite.Own("keeps carbon from being overdrawn"), Value: &s.Limiter},
 		}},
 		{Name: "weathering.land", Doc: "silicate weathering on land", Laws: s.land.choices, Law: s.land.name, Fields: append([]units.Field{
+			s.supply.LimitField(),
 			{Key: "under_ice", Min: 0, Max: 1, Doc: "strength under ice, 0 to 1", Source: cite.Own("frozen ground does not weather"), Value: &s.LandIce},
 		}, s.land.law.Fields()...)},
 		{Name: "weathering.seafloor", Doc: "weathering of the ocean crust", Laws: s.seafloor.choices, Law: s.seafloor.name, Fields: append([]units.Field{
@@ -288,6 +319,13 @@ func (s *Setup) Sections() []Section {
 			{Key: "continental", Kind: units.Amount, Unit: "Emol", Min: 1e19, Max: 1e23, Doc: "continental carbonate at the reference state; sets its turnover", Source: practice("sedimentary carbonate, about 5e21 mol"), Value: &s.ContinentalRef},
 			{Key: "mantle", Kind: units.Amount, Unit: "Emol", Min: 1e20, Max: 1e24, Published: units.Range{Lo: 1e22, Hi: 1e23}, Doc: "mantle carbon at the reference state; sets its turnover", Source: practice("several 1e22 mol"), Value: &s.MantleRef},
 		}},
+		{Name: "atmosphere", Doc: "what is in the air besides CO2 and vapour, and what leaves it", Fields: []units.Field{
+			{Key: "nitrogen", Kind: units.Pressure, Unit: "bar", Min: 0, Max: 100, Doc: "partial pressure of nitrogen; it counts for the boiling point and for escape", Source: practice("today's Earth"), Value: &s.Nitrogen},
+			{Key: "co2_escape", Kind: units.Flux, Unit: "Tmol/yr", Min: 0, Max: 100e12, Off: true, Doc: "loss of CO2 to space while there is no dynamo; 0 is none", Source: cite.Own("no general law: only at the user's rate"), Value: &s.EscapeCO2},
+		}},
+		{Name: "water", Doc: "loss of water through a moist stratosphere", Fields: s.Strato.Fields(), Flags: []Flag{
+			{Key: "escape", Doc: "water escapes as fast as hydrogen diffuses through the stratosphere", Source: cite.Ref{Work: cite.Kasting1993, Note: "diffusion limit", Trust: cite.Memory}, Value: &s.WaterEscape},
+		}},
 		{Name: "zone", Doc: "limits of the habitable zone to show; they decide nothing", Options: []Option{
 			{Key: "law", Doc: "whose limits", Allowed: zoneNames(), Source: cite.Ref{Work: cite.Kopparapu2014}, Value: &s.ZoneLaw},
 		}},
@@ -306,7 +344,18 @@ func (s *Setup) Sections() []Section {
 			{Key: "guard", Doc: "stability guard: a lost climate branch is located, never followed", Source: cite.Own("general stiff solvers follow a lost branch"), Value: &s.Guard},
 		}},
 	}
+	for i, p := range s.Pulses {
+		out = append(out, Section{Name: fmt.Sprintf("pulse.%d", i+1), Doc: "a passing disturbance", Fields: []units.Field{
+			{Key: "start", Kind: units.Time, Unit: "Gyr", Min: 0, Max: 20e9, Doc: "age at which it begins", Source: user, Value: &p.Start},
+			{Key: "duration", Kind: units.Time, Unit: "kyr", Min: 1, Max: 1e9, Doc: "how long it lasts", Source: user, Value: &p.Duration},
+			{Key: "carbon", Kind: units.Amount, Unit: "Emol", Min: -1e22, Max: 1e22, Doc: "carbon given to the surface out of the mantle; negative for a drawdown", Source: user, Value: &p.Carbon},
+			{Key: "sunlight", Min: -0.99, Max: 1, Doc: "relative change of sunlight while it lasts", Source: user, Value: &p.Sunlight},
+		}})
+	}
+	return out
 }
+
+var user = cite.Ref{Note: "the user's"}
 
 func (p *Step) fields(what string, published units.Range, value, when cite.Ref) []units.Field {
 	return []units.Field{

@@ -14,17 +14,26 @@ type layout struct {
 	continental int
 	mantle      int
 	mantleT     int
+	water       int
 	coreT       int // -1 when it is no state
+	alk         int // likewise
+	escaped     int // likewise
 	n           int
 }
 
-func newLayout(core bool) layout {
-	l := layout{bands: 1, coreT: -1}
+func newLayout(core, alk, escape bool) layout {
+	l := layout{bands: 1, coreT: -1, alk: -1, escaped: -1}
 	next := l.bands
 	take := func() int { next++; return next - 1 }
-	l.surface, l.seafloor, l.continental, l.mantle, l.mantleT = take(), take(), take(), take(), take()
+	l.surface, l.seafloor, l.continental, l.mantle, l.mantleT, l.water = take(), take(), take(), take(), take(), take()
 	if core {
 		l.coreT = take()
+	}
+	if alk {
+		l.alk = take()
+	}
+	if escape {
+		l.escaped = take()
 	}
 	l.n = next
 	return l
@@ -39,10 +48,15 @@ type State struct {
 	Mantle      float64 // mantle carbon, mol
 	MantleT     float64 // mantle temperature, K
 	CoreT       float64 // core temperature, K; 0 when it is no state
+	Water       float64 // water inventory, kg
+	Alk         float64 // alkalinity of the ocean, mol; 0 when it is no state
+	Escaped     float64 // carbon lost to space, mol; 0 when it is no state
 }
 
-// Carbon returns the sum over all reservoirs, mol.
-func (s *State) Carbon() float64 { return s.Surface + s.Seafloor + s.Continental + s.Mantle }
+// Carbon returns the sum over all reservoirs and what escaped, mol.
+func (s *State) Carbon() float64 {
+	return s.Surface + s.Seafloor + s.Continental + s.Mantle + s.Escaped
+}
 
 func (l *layout) unpack(s *State, y []float64) {
 	s.T = y[0]
@@ -51,8 +65,15 @@ func (l *layout) unpack(s *State, y []float64) {
 	s.Continental = y[l.continental]
 	s.Mantle = y[l.mantle]
 	s.MantleT = y[l.mantleT]
+	s.Water = y[l.water]
 	if l.coreT >= 0 {
 		s.CoreT = y[l.coreT]
+	}
+	if l.alk >= 0 {
+		s.Alk = y[l.alk]
+	}
+	if l.escaped >= 0 {
+		s.Escaped = y[l.escaped]
 	}
 }
 
@@ -63,8 +84,15 @@ func (l *layout) pack(y []float64, s *State) {
 	y[l.continental] = s.Continental
 	y[l.mantle] = s.Mantle
 	y[l.mantleT] = s.MantleT
+	y[l.water] = s.Water
 	if l.coreT >= 0 {
 		y[l.coreT] = s.CoreT
+	}
+	if l.alk >= 0 {
+		y[l.alk] = s.Alk
+	}
+	if l.escaped >= 0 {
+		y[l.escaped] = s.Escaped
 	}
 }
 
@@ -77,8 +105,15 @@ func (l *layout) names() []string {
 	out[l.continental] = "continental carbonate"
 	out[l.mantle] = "mantle carbon"
 	out[l.mantleT] = "mantle temperature"
+	out[l.water] = "water"
 	if l.coreT >= 0 {
 		out[l.coreT] = "core temperature"
+	}
+	if l.alk >= 0 {
+		out[l.alk] = "alkalinity"
+	}
+	if l.escaped >= 0 {
+		out[l.escaped] = "escaped carbon"
 	}
 	return out
 }

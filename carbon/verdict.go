@@ -36,6 +36,8 @@ func (b *builder) outcome(check *history) {
 		if cold.start > 0 {
 			o.Sentence = fmt.Sprintf("The planet freezes over at %s and cannot thaw: CO2 condenses at the coldest place at %.4g Gyr.", when, gyr(h.end))
 		}
+	case record.WaterLost:
+		o.Sentence = fmt.Sprintf("Surface water lasts for %.3g Gyr; at %s the last of it has escaped through the stratosphere.", liquid, when)
 	case record.StarLeft:
 		o.Sentence = fmt.Sprintf("Surface water stays liquid until the star leaves the main sequence at %.4g Gyr.", o.TimeGyr)
 		if n := len(h.frozen); n > 0 {
@@ -133,6 +135,8 @@ func (b *builder) why() string {
 			r0.Outgassing/1e12, r.Outgassing/1e12, 100*r0.Flux, 100*r.Flux, r0.LandFraction*r0.Biology, r.LandFraction*r.Biology, needs)
 	case record.MoistGreen, record.RunawayGreen:
 		return fmt.Sprintf("sunlight rose from %.0f to %.0f %% of the Earth's today; CO2 had fallen to %s, so weathering had no more warming to give back", 100*r0.Flux, 100*r.Flux, pressure(r.PCO2))
+	case record.WaterLost:
+		return fmt.Sprintf("at %.4g K the stratosphere holds a fraction %.2g of water, which escapes as fast as its hydrogen diffuses", r.Temperature, r.Moisture)
 	case record.BeyondRange:
 		return fmt.Sprintf("%.4g K and %s of CO2 at %.0f %% of the Earth's sunlight", r.Temperature, pressure(r.PCO2), 100*r.Flux)
 	case record.Undecided:

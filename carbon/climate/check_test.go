@@ -166,13 +166,18 @@ func between(law, input string, got, lo, hi float64, kind, source string) check 
 	return check{law, input, got, (lo + hi) / 2, (hi - lo) / 2, kind, source}
 }
 
-// steady returns the balanced temperature between two temperatures by bisection.
+// steady returns the balanced temperature between two temperatures.
 func steady(r Radiation, a Albedo, sun, p, lo, hi float64) float64 {
-	if !(Imbalance(r, a, sun, lo, p) > 0 && Imbalance(r, a, sun, hi, p) < 0) {
+	return root(func(t float64) float64 { return Imbalance(r, a, sun, t, p) }, lo, hi)
+}
+
+// root returns where f falls through 0, by bisection.
+func root(f func(float64) float64, lo, hi float64) float64 {
+	if !(f(lo) > 0 && f(hi) < 0) {
 		return math.NaN()
 	}
 	for i := 0; i < 60; i++ {
-		if mid := (lo + hi) / 2; Imbalance(r, a, sun, mid, p) > 0 {
+		if mid := (lo + hi) / 2; f(mid) > 0 {
 			lo = mid
 		} else {
 			hi = mid

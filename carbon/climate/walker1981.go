@@ -19,7 +19,7 @@ import (
 //
 // The paper states no range. Own choice: 200-320 K, where F reaches about 300 W/m²
 // (the formula knows no radiation limit), and 1e-8 to 1 bar, where F is still that
-// of the fits to radiative models. Below 222 K F exceeds σT⁴.
+// of the fits to radiative models. Below 222 K (226 K without CO₂) F exceeds σT⁴.
 type Walker1981 struct {
 	N float64 // n
 }

@@ -48,6 +48,13 @@ const (
 	MarkCondensation = "condensation onset"
 	MarkOutgassing   = "outgassing below what the warm state needs"
 	MarkDynamo       = "dynamo off"
+	MarkPulse        = "pulse"
+	MarkRecovered    = "recovered from the pulse"
+)
+
+// Words for what is no outcome of the climate but a doubt about liquid water.
+const (
+	BelowTriple = "surface pressure below the triple point of water"
 )
 
 // Outcome names the first lasting failure, or says there is none.
@@ -105,6 +112,16 @@ type Margin struct {
 	Value    float64 `json:"value"`
 	Unit     string  `json:"unit"`
 	Words    string  `json:"words"` // the sentence
+}
+
+// Recovery says how a pulse passed.
+type Recovery struct {
+	Pulse       string  `json:"pulse"` // what it was
+	StartGyr    float64 `json:"start_gyr"`
+	EndGyr      float64 `json:"end_gyr"`
+	PeakKelvin  float64 `json:"peak_k"`       // largest change of temperature against the undisturbed planet
+	PeakLnCO2   float64 `json:"peak_ln_pco2"` // largest change of ln pCO2
+	RecoveryKyr float64 `json:"recovery_kyr"` // from the peak until 1/e of it is left; NaN when it never is
 }
 
 // Warning is a doubt that every rendering carries.
@@ -174,33 +191,34 @@ type Work struct {
 
 // Run is one finished history.
 type Run struct {
-	Format      int       `json:"format"`
-	Title       string    `json:"title"`
-	Name        string    `json:"scenario"`
-	Hash        string    `json:"hash"`    // of the resolved scenario
-	Version     string    `json:"version"` // of the program
-	Seed        uint64    `json:"seed"`
-	Outcome     Outcome   `json:"outcome"`
-	Start       State     `json:"start"`
-	StartWords  string    `json:"start_words"`
-	Reference   State     `json:"reference"`
-	Feedback    Feedback  `json:"feedback"`
-	Episodes    []Episode `json:"episodes"`
-	Marks       []Mark    `json:"marks"`
-	Margins     []Margin  `json:"margins"`
-	ZoneLaw     string    `json:"zone_law"`
-	Zones       []Zone    `json:"zones"`
-	Stays       []Stay    `json:"stays"`
-	FrozenShare float64   `json:"frozen_share"` // of the history, 0 to 1
-	Freezes     int       `json:"freezes"`
-	CarbonMol   float64   `json:"carbon_mol"`   // total
-	CarbonDrift float64   `json:"carbon_drift"` // largest |change of the total|/total
-	Solver      Solver    `json:"solver"`
-	Laws        []Law     `json:"laws"`
-	Warnings    []Warning `json:"warnings"`
-	Inputs      []Input   `json:"-"`
-	Works       []Work    `json:"works"`
-	Command     string    `json:"-"` // that repeats the run
+	Format      int        `json:"format"`
+	Title       string     `json:"title"`
+	Name        string     `json:"scenario"`
+	Hash        string     `json:"hash"`    // of the resolved scenario
+	Version     string     `json:"version"` // of the program
+	Seed        uint64     `json:"seed"`
+	Outcome     Outcome    `json:"outcome"`
+	Start       State      `json:"start"`
+	StartWords  string     `json:"start_words"`
+	Reference   State      `json:"reference"`
+	Feedback    Feedback   `json:"feedback"`
+	Episodes    []Episode  `json:"episodes"`
+	Marks       []Mark     `json:"marks"`
+	Margins     []Margin   `json:"margins"`
+	ZoneLaw     string     `json:"zone_law"`
+	Zones       []Zone     `json:"zones"`
+	Stays       []Stay     `json:"stays"`
+	Recoveries  []Recovery `json:"recoveries"`
+	FrozenShare float64    `json:"frozen_share"` // of the history, 0 to 1
+	Freezes     int        `json:"freezes"`
+	CarbonMol   float64    `json:"carbon_mol"`   // total
+	CarbonDrift float64    `json:"carbon_drift"` // largest |change of the total|/total
+	Solver      Solver     `json:"solver"`
+	Laws        []Law      `json:"laws"`
+	Warnings    []Warning  `json:"warnings"`
+	Inputs      []Input    `json:"-"`
+	Works       []Work     `json:"works"`
+	Command     string     `json:"-"` // that repeats the run
 
 	ReferenceAgeGyr float64 `json:"reference_age_gyr"`
 	Rows            []Row   `json:"-"` // the history, in order of age
@@ -229,13 +247,15 @@ type Row struct {
 	Pulse                   float64 // user-given bursts
 	Outgassing              float64 // sum of the sources
 	Land, Seafloor          float64 // silicate weathering
-	Imbalance               float64 // sources minus sinks
+	Burial                  float64 // carbonate laid down: both sinks, or precipitation where alkalinity is a state
+	Imbalance               float64 // sources minus burial
 	Deposited               float64 // land carbonate laid down on the seafloor
 	Subducted               float64 // seafloor carbonate leaving with the plates
 	Foundered               float64 // continental carbonate returned to the mantle
 
 	// reservoirs, mol
 	Surface, SeafloorCarbon, Continental, Mantle, Total float64
+	Escaped                                             float64 // lost to space; counts in the total
 
 	// drivers
 	LandFraction, Biology float64 // relative to the reference
@@ -245,6 +265,13 @@ type Row struct {
 	MantleTemperature, CoreTemperature float64 // K
 	HeatFlow, Radiogenic               float64 // W
 	Crust                              float64 // crust production relative to the reference
+	CoreHeat                           float64 // W
+
+	// water
+	Pressure float64 // surface pressure: nitrogen, CO₂ and vapour, bar
+	Boiling  float64 // boiling point at that pressure, K
+	Moisture float64 // mixing ratio of water in the stratosphere
+	Water    float64 // inventory, kg
 
 	// zone: flux and limits relative to today's Earth
 	Flux                                                         float64
@@ -255,7 +282,6 @@ type Row struct {
 	ColdMargin float64 // outgassing/WarmNeeds
 	ColdKelvin float64 // temperature above the cold fold, K
 	HotMargin  float64 // sunlight to the radiation limit at this CO2, fraction of today's
-	Water      float64 // inventory, kg
 	Gain       float64 // d ln W/d ln pCO2
 	Response   float64 // e-folding time of surface carbon, yr
 }
@@ -294,7 +320,8 @@ var Columns = []Column{
 	{"pulse", "Pulses", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Pulse }},
 	{"land_weathering", "Land weathering", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Land }},
 	{"seafloor_weathering", "Seafloor weathering", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Seafloor }},
-	{"imbalance", "Sources minus sinks", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Imbalance }},
+	{"burial", "Carbonate burial", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Burial }},
+	{"imbalance", "Sources minus burial", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Imbalance }},
 	{"deposited", "Land carbonate laid down on the seafloor", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Deposited }},
 	{"subducted", "Seafloor carbonate subducted", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Subducted }},
 	{"surface_carbon", "Surface carbon", "Emol", 1e18, func(r *Row) float64 { return r.Surface }},
@@ -302,6 +329,7 @@ var Columns = []Column{
 	{"continental_carbon", "Continental carbonate", "Emol", 1e18, func(r *Row) float64 { return r.Continental }},
 	{"mantle_carbon", "Mantle carbon", "Emol", 1e18, func(r *Row) float64 { return r.Mantle }},
 	{"total_carbon", "Total carbon", "Emol", 1e18, func(r *Row) float64 { return r.Total }},
+	{"escaped_carbon", "Carbon escaped to space", "Emol", 1e18, func(r *Row) float64 { return r.Escaped }},
 	{"land_fraction", "Land fraction, relative", "", 1, func(r *Row) float64 { return r.LandFraction }},
 	{"biology", "Biological enhancement, relative", "", 1, func(r *Row) float64 { return r.Biology }},
 	{"supply_use", "Land weathering over its supply limit", "", 1, func(r *Row) float64 { return r.SupplyUse }},
@@ -321,6 +349,10 @@ var Columns = []Column{
 	{"hot_margin", "Sunlight left to the radiation limit", "%", 1e-2, func(r *Row) float64 { return r.HotMargin }},
 	{"gain", "Feedback gain", "", 1, func(r *Row) float64 { return r.Gain }},
 	{"response_time", "Response time of surface carbon", "kyr", 1e3, func(r *Row) float64 { return r.Response }},
+	{"core_heat", "Heat from the core", "TW", 1e12, func(r *Row) float64 { return r.CoreHeat }},
+	{"pressure", "Surface pressure", "bar", 1, func(r *Row) float64 { return r.Pressure }},
+	{"boiling", "Boiling point", "K", 1, func(r *Row) float64 { return r.Boiling }},
+	{"moisture", "Water in the stratosphere, mixing ratio", "", 1, func(r *Row) float64 { return r.Moisture }},
 	{"water", "Water inventory", "kg", 1, func(r *Row) float64 { return r.Water }},
 }
 

@@ -206,6 +206,7 @@ type Field struct {
 	Unit      string   // unit to show; "" is the base unit
 	Min, Max  float64  // allowed, in base units, ends included
 	Published Range    // range the source gives, in base units; zero when none
+	Off       bool     // zero switches off what the field stands for
 	Doc       string   // one sentence
 	Source    cite.Ref // where the default comes from
 	Value     *float64 // where the value lives; holds the default after construction
@@ -219,6 +220,12 @@ func (r Range) Stated() bool { return r != Range{} }
 
 // Holds reports whether x is inside a stated range; an unstated range holds everything.
 func (r Range) Holds(x float64) bool { return !r.Stated() || (x >= r.Lo && x <= r.Hi) }
+
+// Extrapolates reports whether a value is outside the published range; zero is
+// not where it means "off".
+func (f *Field) Extrapolates(value float64) bool {
+	return !f.Published.Holds(value) && !(f.Off && value == 0)
+}
 
 // ShownUnit returns the unit a value of the field is shown in.
 func (f *Field) ShownUnit() string {
