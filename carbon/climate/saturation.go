@@ -166,8 +166,8 @@ func co2Ice(t float64) float64 {
 //	log₁₀ p = 6.760956 − 1284.07/(T − 4.718) + 1.256e-4 (T − 143.15)                    T < 216.56 K
 //	log₁₀ p = 3.128082 − 867.2124/T + 1.865612e-2 T − 7.248820e-5 T² + 9.3e-8 T³       above
 //
-// Own choices: the branches, 0.3 % apart, are blended within 1 K, and above the
-// critical point the law is continued as CO2Pressure is.
+// Own choices: the branches, which meet in value, are blended within 1 K, and above
+// the critical point the law is continued as CO2Pressure is.
 func CO2Kasting1991(t float64) float64 {
 	switch w := smoothStep((t - kastingTripleT + blendHalf) / (2 * blendHalf)); w {
 	case 0:
