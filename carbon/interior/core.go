@@ -41,7 +41,7 @@ func newCore() core { return core{Excess: 1500, Start: 2200, Heat: 840, Adiabat:
 
 func (c *core) fields() []units.Field {
 	return []units.Field{
-		{Key: "core_flow", Kind: units.Power, Unit: "TW", Min: 0, Max: 50e12, Published: units.Range{Lo: 5e12, Hi: 17e12}, Doc: "heat flow from the core at the reference state; 0 leaves the core out", Source: cite.Own("off unless wanted; 8-12 TW in reviews"), Value: &c.Flow},
+		{Key: "core_flow", Kind: units.Power, Unit: "TW", Min: 0, Max: 50e12, Published: units.Range{Lo: 5e12, Hi: 17e12}, Off: true, Doc: "heat flow from the core at the reference state; 0 leaves the core out", Source: cite.Own("off unless wanted; 8-12 TW in reviews"), Value: &c.Flow},
 		{Key: "core_excess", Kind: units.Interval, Unit: "K", Min: 100, Max: 4000, Doc: "temperature of the core above the mantle at the reference state, both as potential temperatures", Source: cite.Own("with core_start it gives the reference flow at 4.57 Gyr"), Value: &c.Excess},
 		{Key: "core_start", Kind: units.Interval, Unit: "K", Min: 0, Max: 4000, Doc: "temperature of the core above the mantle at the start", Source: cite.Own("a core that formed hot"), Value: &c.Start},
 		{Key: "core_heat", Kind: units.SpecificHeat, Min: 100, Max: 5000, Doc: "specific heat of the core", Source: cite.Ref{Note: "liquid iron at core pressure", Trust: cite.Unsure}, Value: &c.Heat},

@@ -25,6 +25,8 @@ type mantle struct {
 	geometry float64 // (d/d_E)^(3β−1) (ρg/(ρg)_E)^β
 	area     float64 // A/A_E
 	warming  float64 // K/yr per W
+	theta    float64 // E/R, K
+	invRef   float64 // 1/T_ref, 1/K
 }
 
 func newMantle() mantle {
@@ -53,13 +55,14 @@ func (m *mantle) bind(p *Planet, referenceAge float64) error {
 	rhoG := p.mantleDensity() * p.Gravity / (earth.mantleDensity() * earth.Gravity)
 	m.geometry = math.Pow(p.MantleDepth/earth.MantleDepth, 3*m.Beta-1) * math.Pow(rhoG, m.Beta)
 	m.area = p.Area / earth.Area
+	m.theta, m.invRef = m.E/units.GasConstant, 1/m.TRef
 	m.warming = units.Year / (p.MantleMass * m.C)
 	m.sources.bind(m.Mix, m.Heating, p.MantleMass, referenceAge)
 	return nil
 }
 
-// Start returns the temperature at the start.
-func (m *mantle) Start(float64) (tm, tc float64) { return m.Begin, m.Begin }
+// lnViscosity returns ln(η/η_ref) = (E/R)(1/T − 1/T_ref).
+func (m *mantle) lnViscosity(t float64) float64 { return m.theta * (1/t - m.invRef) }
 
 // Plates is parameterised convection under plate tectonics (Schubert, Stevenson
 // & Cassen 1980):
@@ -88,8 +91,7 @@ func newPlates() Law { return &Plates{mantle: newMantle(), M: 1, core: newCore()
 
 // Flow evaluates the law.
 func (l *Plates) Flow(age, tm, tc float64) Flow {
-	lnEta := l.E / units.GasConstant * (1/tm - 1/l.TRef) // ln(η/η_ref)
-	rel := math.Exp((1+l.Beta)*(math.Log(tm-l.Surface)-l.lnDT) - l.Beta*lnEta)
+	rel := math.Exp((1+l.Beta)*(math.Log(tm-l.Surface)-l.lnDT) - l.Beta*l.lnViscosity(tm))
 	f := Flow{Heat: l.flow * rel, Radiogenic: l.at(age), Relative: l.geometry * rel}
 	if l.core.Flow != 0 {
 		f.Core, f.CoreRate, f.Dynamo = l.core.flow(tm, tc)

@@ -33,7 +33,7 @@ var bulkSilicateEarth = [4]isotope{
 // the continental crust: 7 of 19.8 TW. All isotopes are taken to be shared alike.
 const continentShare = 7 / 19.83
 
-// Heating returns the radiogenic heating of a table in W/kg, t years before present:
+// heating returns the radiogenic heating of a table in W/kg, t years before present:
 //
 //	H(t) = Σ hᵢ Cᵢ 2^(t/τᵢ)
 func heating(table *[4]isotope, ago float64) float64 {
@@ -43,19 +43,6 @@ func heating(table *[4]isotope, ago float64) float64 {
 		h += s.power * s.content * math.Exp2(ago/s.halfLife)
 	}
 	return h
-}
-
-// released returns the energy in J/kg that a table released from a time in
-// years before present until now:
-//
-//	∫H dt = Σ hᵢ Cᵢ (τᵢ/ln 2)(2^(t/τᵢ) − 1)
-func released(table *[4]isotope, ago, secondsPerYear float64) float64 {
-	var e float64
-	for i := range table {
-		s := &table[i]
-		e += s.power * s.content * s.halfLife / math.Ln2 * math.Expm1(ago/s.halfLife*math.Ln2)
-	}
-	return e * secondsPerYear
 }
 
 // sources is a mix of tables, ready for the hot path: H = Σ wᵢ exp(−λᵢ t).

@@ -67,9 +67,8 @@ func newStagnant() Law {
 
 // Flow evaluates the law.
 func (l *Stagnant) Flow(age, tm, tc float64) Flow {
-	rh := units.GasConstant * tm * tm / l.E              // ΔT_rh
-	lnEta := l.E / units.GasConstant * (1/tm - 1/l.TRef) // ln(η/η_ref)
-	q := l.flow * math.Exp((1+l.Beta)*(math.Log(rh)-l.lnDT)-l.Beta*lnEta)
+	rh := tm * tm / l.theta // ΔT_rh
+	q := l.flow * math.Exp((1+l.Beta)*(math.Log(rh)-l.lnDT)-l.Beta*l.lnViscosity(tm))
 	f := Flow{Radiogenic: l.at(age)}
 	f.Crust = l.crust * q / rh * l.column(tm, l.lid*(tm-rh-l.Surface)/q)
 	f.Heat = q + l.melt*f.Crust*(l.Latent+l.C*(tm-l.Surface))
