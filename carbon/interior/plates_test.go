@@ -121,11 +121,11 @@ func TestStartForgotten(t *testing.T) {
 		return tm
 	}
 	for _, start := range []float64{1850, 2300, 2600} {
-		// An e-folding of 0.2-0.3 Gyr: 8 % after 0.5 Gyr, nothing by today.
-		if d := math.Abs(end(start, 0.6)-end(2000, 0.6)) / math.Abs(start-2000); d > 0.25 {
+		// A sixth or less after 0.5 Gyr, nothing by today.
+		if d := math.Abs(end(start, 0.6)-end(2000, 0.6)) / math.Abs(start-2000); d > 0.17 {
 			t.Errorf("%.2g of the start from %g K is left after 0.5 Gyr", d, start)
 		}
-		if d := math.Abs(end(start, 4.57) - end(2000, 4.57)); d > 3 {
+		if d := math.Abs(end(start, 4.57) - end(2000, 4.57)); d > 0.1 {
 			t.Errorf("the start from %g K still makes %g K today", start, d)
 		}
 	}
