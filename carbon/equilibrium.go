@@ -241,7 +241,7 @@ func (m *Model) start() (y State, words string) {
 		return z, g.Ridge + g.Arc + g.Metamorphic - st.row.Land - st.row.Seafloor
 	}
 
-	lo, hi := s.FrozenBelow-40, m.top()-1
+	lo, hi := math.Max(s.FrozenBelow-90, s.radiation.law.Box().T.Lo+1), m.top()-1
 	const step = 0.5
 	at := func(t float64) (State, float64, float64, bool) {
 		st, low, high := m.steadyAt(d, t)
@@ -305,23 +305,25 @@ func (m *Model) start() (y State, words string) {
 	if found || any {
 		return z, "no warm climate at the start age: the planet is born frozen"
 	}
-	return m.bare(y, d, total), "no climate in balance at the start age inside the radiation law's range"
+	z = m.bare(y, d, total)
+	if z.T < s.FrozenBelow {
+		return z, "no warm climate at the start age: the planet is born frozen"
+	}
+	return z, "no climate in balance at the start age inside the radiation law's range"
 }
 
-// bare returns a state at the middle of the radiation law's CO₂ box, for a
-// planet that no CO₂ pressure can bring into balance.
+// bare relaxes the temperature from the cold side at the least CO₂ pressure of
+// the radiation law's box, below which sunlight alone sets the climate. It is
+// where a history starts when no pressure inside the box is in balance.
 func (m *Model) bare(y State, d *memo, total float64) State {
-	lo, hi := m.pressures()
-	p := math.Sqrt(lo * hi)
-	t := m.set.RefT
-	if m.imbalance(d.sun, t, p) < 0 {
-		p = hi
-	} else {
-		p = lo
-	}
-	for i := 0; i < 200; i++ { // a few years of plain relaxation
-		t += m.imbalance(d.sun, t, p) / 4
-		t = math.Min(math.Max(t, 100), m.top())
+	p, _ := m.pressures()
+	lo, hi := math.Max(150, m.set.radiation.law.Box().T.Lo), m.top()
+	t := lo
+	for x := lo; x < hi; x += 0.5 {
+		if m.imbalance(d.sun, x, p) <= 0 {
+			break
+		}
+		t = x
 	}
 	y.T = t
 	y.Surface, y.Alk = m.carbonAt(p, t, m.ref.Total()*m.area)

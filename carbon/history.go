@@ -15,6 +15,7 @@ import (
 // Reasons for which a history ends.
 const (
 	endTime     = "reached the end of the history"
+	endTable    = "the table of the star's luminosity ends"
 	endStar     = "the star left the main sequence"
 	endHot      = "the surface left the radiation law's range on the hot side"
 	endCold     = "the surface left the radiation law's range on the cold side"
@@ -144,6 +145,9 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 	end := until
 	if e := s.star.law.End(); e <= end {
 		end, h.reason = e, endStar
+		if s.starTable() {
+			h.reason = endTable
+		}
 	}
 	box := s.radiation.law.Box()
 	look := lookup{m}
@@ -162,6 +166,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 	temp := func(x float64) func(float64, []float64) float64 {
 		return func(_ float64, y []float64) float64 { return y[0] - x }
 	}
+	condense := s.condensation()
 	events := make([]ode.Event, evCount)
 	events[evFreeze] = ode.Event{Name: record.MarkFroze, Func: temp(s.FrozenBelow), Direction: ode.Falling}
 	events[evThaw] = ode.Event{Name: record.MarkThawed, Func: temp(s.ThawedAbove), Direction: ode.Rising}
@@ -172,7 +177,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 	events[evCold] = ode.Event{Name: "cold edge", Func: below(box.T.Lo, box.T.Stated()), Direction: ode.Falling, Terminal: 1}
 	events[evDense] = ode.Event{Name: "dense edge", Func: limit(box.P.Hi, box.P.Stated()), Direction: ode.Rising, Terminal: 1}
 	events[evCondense] = ode.Event{Name: record.MarkCondensation, Direction: ode.Rising, Terminal: 1, Func: func(_ float64, y []float64) float64 {
-		return math.Log(look.pressure(y) / climate.CO2Pressure(y[0]-s.ColdContrast))
+		return math.Log(look.pressure(y) / condense(y[0]-s.ColdContrast))
 	}}
 
 	events[evSupply] = ode.Event{Name: record.MarkSupply, Direction: ode.Rising, Func: func(t float64, y []float64) float64 {
@@ -199,7 +204,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 		stop(p.Start + p.Duration)
 	}
 	problem := &ode.Problem{Dim: m.lay.n, Func: func(dy []float64, t float64, y []float64) { m.derivative(dy, t, y) }, Events: events, StopTimes: stops}
-	settings := &ode.Settings{RelTol: rtol, AbsTol: m.atol(rtol), MaxStep: s.MaxStep, InitialStep: 1, MaxSteps: 400000,
+	settings := &ode.Settings{RelTol: rtol, AbsTol: m.atol(rtol), MaxStep: s.MaxStep, InitialStep: 1, MaxSteps: int(s.MaxSteps),
 		Guard: ode.Guard{Off: !s.Guard, Blocks: [][]int{bands(m.lay.bands)}}}
 	solver, err := ode.NewSolver(problem, settings)
 	if err != nil {
@@ -330,6 +335,9 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 				h.reason = endCondense
 				once(record.MarkCondensation, e.T)
 			}
+		}
+		for _, p := range s.Pulses {
+			force = force || t >= p.Start && t <= p.Start+p.Duration
 		}
 		if t == s.RefAge {
 			m.lay.unpack(&h.atRef, y)

@@ -109,8 +109,10 @@ func (s *Setup) metamorphic() float64 { return s.OutgassingRef - s.RidgeRef - s.
 
 // seafloorRef returns the reference flux of the seafloor, 0 when there is no law.
 func (s *Setup) seafloorRef() float64 {
-	if s.seafloor.name == "none" {
-		return 0
+	for _, e := range weathering.Seafloor {
+		if e.Name == s.seafloor.name && e.Absent {
+			return 0
+		}
 	}
 	return s.SeafloorRef
 }

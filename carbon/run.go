@@ -85,6 +85,11 @@ type verdict struct {
 	span span    // of the failing episode
 }
 
+// hot tells whether the failure is on the hot side.
+func (v verdict) hot() bool {
+	return v.kind == record.MoistGreen || v.kind == record.RunawayGreen || v.kind == record.BeyondRange
+}
+
 // judge finds the first lasting failure.
 func (m *Model) judge(h *history) verdict {
 	s := m.set
@@ -114,10 +119,10 @@ func (m *Model) judge(h *history) verdict {
 		if w.end-w.start < moistLasting {
 			continue
 		}
-		if k := m.hotKind(h, w); math.IsNaN(w.lost) && k == record.MoistGreen {
+		if quick := math.IsNaN(w.end) && h.end-w.start < 1*units.Myr; math.IsNaN(w.lost) && !quick {
 			add(record.MoistGreen, w.start, w)
 		} else {
-			add(k, w.begun(), w)
+			add(m.hotKind(h, w), w.begun(), w)
 		}
 		break
 	}
@@ -161,9 +166,6 @@ func (m *Model) hotKind(h *history, w span) record.Kind {
 		lnp := math.Log(last.PCO2)
 		if slope := (f(top, last.PCO2, lnp) - f(top-2, last.PCO2, lnp)) / 2; slope > 0.5 {
 			return record.BeyondRange
-		}
-		if math.IsNaN(w.lost) && w.start != 0 && h.end-w.start > 1*units.Myr {
-			return record.MoistGreen
 		}
 		return record.RunawayGreen
 	}
@@ -514,6 +516,9 @@ func (b *builder) marks(check *history) {
 	cross := func(name string, f func(r *record.Row) float64) {
 		rows := b.h.rows
 		for i := 1; i < len(rows); i++ {
+			if rows[i].Age > b.fail.t && !b.fail.hot() {
+				return
+			}
 			u, v := f(&rows[i-1]), f(&rows[i])
 			if u > 0 && v <= 0 {
 				t := rows[i-1].Age + (rows[i].Age-rows[i-1].Age)*u/(u-v)
@@ -526,6 +531,9 @@ func (b *builder) marks(check *history) {
 	cross(record.MarkRadiation, func(r *record.Row) float64 { return r.HotMargin })
 	sort.SliceStable(b.run.Marks, func(i, j int) bool { return b.run.Marks[i].TimeGyr < b.run.Marks[j].TimeGyr })
 }
+
+// pulseWindow is how long after its end a pulse is followed, yr.
+const pulseWindow = 100 * units.Myr
 
 // recoveries follows every pulse against the same planet without pulses.
 func (b *builder) recoveries(ctx context.Context) error {
@@ -570,7 +578,7 @@ func (b *builder) recoveries(ctx context.Context) error {
 		}
 		for k := range b.h.rows {
 			r := &b.h.rows[k]
-			if r.Age < p.Start || r.Age >= next {
+			if r.Age < p.Start || r.Age >= next || r.Age > p.Start+p.Duration+pulseWindow {
 				continue
 			}
 			lnp, t := base(r.Age)
@@ -690,7 +698,7 @@ func (b *builder) warnings(residual float64) {
 		b.warn("solver", "the stability guard is off: a lost climate branch may have been followed")
 	}
 	if h.cause != nil {
-		b.warn("solver", "the solver stopped: "+h.cause.Error())
+		b.warn("solver", "the solver stopped: "+b.stopped())
 	}
 	if h.reason == endFreezes {
 		b.warn("solver", fmt.Sprintf("the history was stopped at %d freezes, %.3g Gyr", len(h.frozen), gyr(h.end)))
@@ -707,7 +715,7 @@ func (b *builder) warnings(residual float64) {
 	for _, sec := range s.Sections() {
 		for _, f := range sec.Fields {
 			if f.Extrapolates(*f.Value) {
-				b.warn(sec.Name, fmt.Sprintf("%s.%s = %s is outside its published range, %s to %s", sec.Name, f.Key, f.Text(*f.Value), f.Text(f.Published.Lo), f.Text(f.Published.Hi)))
+				b.warn(sec.Name, fmt.Sprintf("%s = %s is outside its published range, %s to %s", f.Key, f.Text(*f.Value), f.Text(f.Published.Lo), f.Text(f.Published.Hi)))
 			}
 		}
 	}
@@ -760,7 +768,7 @@ func (b *builder) warnings(residual float64) {
 			}
 		}
 		if !math.IsNaN(from) {
-			b.warn(w.about, fmt.Sprintf("%s law used outside its range of %s (%s to %s) from %.3g Gyr on, for %.2g Gyr in all, as far as %s", w.about, w.what, w.text(w.r.Lo), w.text(w.r.Hi), gyr(from), gyr(out), w.text(far)))
+			b.warn(w.about, fmt.Sprintf("law used outside its range of %s (%s to %s) from %.3g Gyr on, for %.2g Gyr in all, as far as %s", w.what, w.text(w.r.Lo), w.text(w.r.Hi), gyr(from), gyr(out), w.text(far)))
 		}
 	}
 }

@@ -47,6 +47,7 @@ type Setup struct {
 	WaterEscape              bool
 	Pulses                   []*Pulse
 	ColdContrast             float64 // K
+	Condensation             string  // law of CO₂ saturation
 
 	OutgassingRef, RidgeRef, ArcRef float64 // mol/yr; metamorphic is the rest
 	SeafloorRef                     float64 // mol/yr
@@ -65,7 +66,7 @@ type Setup struct {
 	StartSide                 string  // warm or cold
 	Tolerance, MaxStep        float64 // -, yr
 	Guard                     bool
-	MaxFreezes                float64
+	MaxFreezes, MaxSteps      float64
 	Lasting                   float64 // a snowball longer than this is a lasting failure, yr
 }
 
@@ -186,7 +187,7 @@ func NewSetup() *Setup {
 		Solve:   "nothing", Content: 3.5e22 / units.EarthMass, OutgassingScale: 1, OceanFraction: 1.35e21 / units.EarthMass,
 		ContinentalRef: 5e21, MantleRef: 3e22,
 		Start: 0.2 * units.Gyr, End: 9 * units.Gyr, StartSide: "warm",
-		Tolerance: 1e-5, MaxStep: 20 * units.Myr, Guard: true, MaxFreezes: 60, Lasting: 1 * units.Gyr,
+		Tolerance: 1e-5, MaxStep: 20 * units.Myr, Guard: true, MaxFreezes: 60, MaxSteps: 200000, Lasting: 1 * units.Gyr,
 	}
 	for _, e := range star.Laws {
 		s.star.add(Choice{e.Name, e.Doc, e.Form, e.Source}, e.New)
@@ -213,6 +214,7 @@ func NewSetup() *Setup {
 		s.ocean.add(Choice{e.Name, e.Doc, e.Form, e.Source}, e.New)
 	}
 	s.ZoneLaw = star.Zones[0].Name
+	s.Condensation = climate.Condensations[0].Name
 	return s
 }
 
@@ -288,6 +290,8 @@ func (s *Setup) Sections() []Section {
 			{Key: "frozen_below", Kind: units.Temperature, Unit: "K", Min: 220, Max: 262, Doc: "a snowball starts below", Source: cite.Own("colder than the ramp's unstable branch"), Value: &s.FrozenBelow},
 			{Key: "thawed_above", Kind: units.Temperature, Unit: "K", Min: 262, Max: 280, Doc: "a snowball ends above", Source: cite.Own("warmer than the ramp's unstable branch"), Value: &s.ThawedAbove},
 			{Key: "cold_contrast", Kind: units.Interval, Unit: "K", Min: 0, Max: 80, Doc: "coldest place colder than the mean by, for CO2 condensation", Source: cite.Own("of the size of today's pole-to-mean contrast"), Value: &s.ColdContrast},
+		}, Options: []Option{
+			{Key: "condensation", Doc: "saturation pressure of CO2", Allowed: condensationNames(), Source: climate.Condensations[0].Source[0], Value: &s.Condensation},
 		}},
 		{Name: "weathering", Doc: "what both sinks share", Fields: []units.Field{
 			{Key: "limiter", Kind: units.Pressure, Unit: "bar", Min: 1e-9, Max: 1e-5, Doc: "CO2 pressure below which all sinks vanish", Source: cite.Own("keeps carbon from being overdrawn"), Value: &s.Limiter},
@@ -339,6 +343,7 @@ func (s *Setup) Sections() []Section {
 		{Name: "solver", Doc: "accuracy", Fields: []units.Field{
 			{Key: "tolerance", Min: 1e-10, Max: 1e-3, Doc: "relative tolerance", Source: cite.Own("dates of failure to 0.1 % from 1e-4 down"), Value: &s.Tolerance},
 			{Key: "max_step", Kind: units.Time, Unit: "Myr", Min: 1e4, Max: 1e9, Doc: "no step is longer", Source: cite.Own("keeps a short unstable window from being jumped"), Value: &s.MaxStep},
+			{Key: "max_steps", Min: 50, Max: 1e8, Doc: "attempted steps after which the history is given up as undecided", Source: cite.Own("some hundred times what a history takes"), Value: &s.MaxSteps},
 			{Key: "max_freezes", Min: 3, Max: 10000, Doc: "the history stops after so many freezes", Source: cite.Own("bounds the cost of limit cycles"), Value: &s.MaxFreezes},
 		}, Flags: []Flag{
 			{Key: "guard", Doc: "stability guard: a lost climate branch is located, never followed", Source: cite.Own("general stiff solvers follow a lost branch"), Value: &s.Guard},
@@ -378,6 +383,34 @@ func flags(law any) []Flag {
 		return l.Flags()
 	}
 	return nil
+}
+
+func condensationNames() []string {
+	var out []string
+	for _, e := range climate.Condensations {
+		out = append(out, e.Name)
+	}
+	return out
+}
+
+// condensation returns the chosen law: bar over K.
+func (s *Setup) condensation() func(float64) float64 {
+	for _, e := range climate.Condensations {
+		if e.Name == s.Condensation {
+			return e.Pressure
+		}
+	}
+	return climate.CO2Pressure
+}
+
+// starTable reports whether the luminosity ends with its data, not with the star.
+func (s *Setup) starTable() bool {
+	for _, e := range star.Laws {
+		if e.Name == s.star.name {
+			return e.DataEnd
+		}
+	}
+	return false
 }
 
 func zoneNames() []string {

@@ -1,10 +1,13 @@
 package carbon
 
 import (
+	"errors"
 	"fmt"
 	"math"
+	"strings"
 
 	"cycle/carbon/record"
+	"cycle/ode"
 )
 
 // outcome words the verdict: what, when and with what numerical error, and the
@@ -140,11 +143,22 @@ func (b *builder) why() string {
 	case record.BeyondRange:
 		return fmt.Sprintf("%.4g K and %s of CO2 at %.0f %% of the Earth's sunlight", r.Temperature, pressure(r.PCO2), 100*r.Flux)
 	case record.Undecided:
-		if b.h.cause != nil {
-			return b.h.cause.Error()
-		}
+		return b.stopped()
 	}
 	return fmt.Sprintf("weathering kept CO2 between %s and %s as sunlight went from %.0f to %.0f %% of the Earth's today", pressure(least(rows)), pressure(most(rows)), 100*r0.Flux, 100*r.Flux)
+}
+
+// stopped words why the solver could not go on.
+func (b *builder) stopped() string {
+	var e *ode.StepError
+	if !errors.As(b.h.cause, &e) {
+		return b.h.reason
+	}
+	limited := ""
+	if names := b.m.lay.names(); e.Component >= 0 && e.Component < len(names) {
+		limited = ", limited by " + names[e.Component]
+	}
+	return fmt.Sprintf("%s at %.4g Gyr, with a step of %.2g yr%s", strings.TrimPrefix(e.Err.Error(), "ode: "), gyr(e.T), e.H, limited)
 }
 
 // pressure words a CO₂ pressure in ppm or bar.
