@@ -137,6 +137,10 @@ func (b *builder) why() string {
 		return fmt.Sprintf("outgassing went from %.3g to %.3g Tmol/yr while sunlight went from %.0f to %.0f %% of the Earth's today and weatherable land from %.2g to %.2g%s",
 			r0.Outgassing/1e12, r.Outgassing/1e12, 100*r0.Flux, 100*r.Flux, r0.LandFraction*r0.Biology, r.LandFraction*r.Biology, needs)
 	case record.MoistGreen, record.RunawayGreen:
+		if r.PCO2 > r0.PCO2 {
+			return fmt.Sprintf("outgassing of %.3g Tmol/yr exceeded the %.3g Tmol/yr that weathering took up, so CO2 rose from %s to %s at %.0f %% of the Earth's sunlight today",
+				r.Outgassing/1e12, (r.Land+r.Seafloor)/1e12, pressure(r0.PCO2), pressure(r.PCO2), 100*r.Flux)
+		}
 		return fmt.Sprintf("sunlight rose from %.0f to %.0f %% of the Earth's today; CO2 had fallen to %s, so weathering had no more warming to give back", 100*r0.Flux, 100*r.Flux, pressure(r.PCO2))
 	case record.WaterLost:
 		return fmt.Sprintf("at %.4g K the stratosphere holds a fraction %.2g of water, which escapes as fast as its hydrogen diffuses", r.Temperature, r.Moisture)
