@@ -220,7 +220,7 @@ func (m *Model) start() (y State, words string) {
 	fill := func(st *steady) (State, float64) {
 		z := y
 		z.T, z.Surface, z.Alk = st.row.Temperature, st.row.Surface, st.alk
-		in := outgas.Input{Age: s.Start, Crust: d.flow.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale}
+		in := outgas.Input{Age: m.hold.at(driveSources, s.Start), Crust: d.flow.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale}
 		probe := in
 		probe.Seafloor, probe.Continental = 1e20, 1e20
 		f := s.sources.law.Fluxes(&probe)

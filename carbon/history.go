@@ -136,7 +136,13 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 	s := m.set
 	h := &history{reason: endTime}
 	m.memo.valid, m.air.valid = false, false
-	st, words := m.start()
+	var st State
+	words := "a given state"
+	if m.from != nil {
+		st = *m.from
+	} else {
+		st, words = m.start()
+	}
 	h.first, h.words = st, words
 	y := make([]float64, m.lay.n)
 	m.lay.pack(y, &st)

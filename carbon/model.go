@@ -48,6 +48,8 @@ type Model struct {
 	balanceResidual float64 // W/m²
 
 	escape bool        // CO₂ escapes while there is no dynamo
+	hold   hold        // drivers that do not change
+	from   *State      // where a history starts; nil is the equilibrium of start
 	pair   *ocean.Pair // nil when alkalinity is no state
 
 	saturates interface { // a law of land with a supply limit of its own, or nil
@@ -260,18 +262,23 @@ func (m *Model) drive(age, mantleT, coreT float64) *memo {
 	}
 	s := m.set
 	if !d.valid || d.age != age {
-		d.sun = star.Sunlight(s.star.law.Luminosity(age), s.Distance, s.Eccentricity) / 4
+		d.sun = star.Sunlight(s.star.law.Luminosity(m.hold.at(driveSun, age)), s.Distance, s.Eccentricity) / 4
 		d.pulse = 0
 		for _, p := range s.Pulses {
-			if age >= p.Start && age < p.Start+p.Duration {
+			if !m.hold.still[drivePulses] && age >= p.Start && age < p.Start+p.Duration {
 				d.sun *= 1 + p.Sunlight
 				d.pulse += p.Carbon / p.Duration
 			}
 		}
-		d.land = s.Land.at(age)
-		d.biology = s.Biology.at(age)
+		d.land = s.Land.at(m.hold.at(driveLand, age))
+		d.biology = s.Biology.at(m.hold.at(driveBiology, age))
 	}
-	d.flow = s.interior.law.Flow(age, mantleT, coreT)
+	if m.hold.still[driveInterior] {
+		d.flow = s.interior.law.Flow(m.hold.age, m.hold.mantleT, m.hold.coreT)
+		d.flow.MantleRate, d.flow.CoreRate = 0, 0
+	} else {
+		d.flow = s.interior.law.Flow(age, mantleT, coreT)
+	}
 	d.age, d.mantleT, d.coreT, d.valid = age, mantleT, coreT, true
 	return d
 }
@@ -324,7 +331,7 @@ func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
 	m.weather(r, a.lnp, a.lnh)
 
 	in := &m.source
-	*in = outgas.Input{Age: age, Crust: r.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale, Mantle: y.Mantle, Seafloor: y.Seafloor, Continental: y.Continental}
+	*in = outgas.Input{Age: m.hold.at(driveSources, age), Crust: r.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale, Mantle: y.Mantle, Seafloor: y.Seafloor, Continental: y.Continental}
 	f := s.sources.law.Fluxes(in)
 	r.Ridge, r.Arc, r.Metamorphic = f.Ridge, f.Arc, f.Metamorphic
 	r.Pulse = d.pulse
