@@ -136,7 +136,7 @@ func (e *Errors) settle(s *carbon.Setup) {
 			for _, key := range keysOf(&sec) {
 				names = append(names, key.Name)
 			}
-			k.Allowed = "in [" + sec.Name + "] " + strings.Join(names, ", ")
+			k.Allowed = "a key of [" + sec.Name + "]: " + strings.Join(names, ", ")
 		}
 	}
 }

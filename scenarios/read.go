@@ -177,6 +177,9 @@ func parse(l *layer, data []byte, accept func(key string, header bool) *KeyError
 			headers[key] = at
 			for it := v.Children(); it.Next(); {
 				kv := it.Node()
+				if errs.full() { // finding a line takes time
+					return
+				}
 				if kv.Kind != unstable.KeyValue {
 					continue
 				}

@@ -48,6 +48,14 @@ type Resolved struct {
 
 	// Origins says who set a key; a key that is missing has its default.
 	Origins map[string]string
+
+	places map[string]place // where a key was set last
+}
+
+// place is where a key was set.
+type place struct {
+	file string
+	line int
 }
 
 // Origin says who set a key.
@@ -56,6 +64,16 @@ func (r *Resolved) Origin(key string) string {
 		return o
 	}
 	return Default
+}
+
+// Problem words what package carbon says about a key: with the file and line
+// that set it, when the user did.
+func (r *Resolved) Problem(key string, err error) error {
+	e := &KeyError{File: r.File, Key: key, What: strings.TrimPrefix(err.Error(), key+": ")}
+	if p, ok := r.places[key]; ok {
+		e.File, e.Line = p.file, p.line
+	}
+	return e
 }
 
 // Load reads a scenario: the name of a built-in one, or a file; sets are the
@@ -105,17 +123,12 @@ func explainRef(ref string, err error) error {
 
 // resolver applies layers to a setup.
 type resolver struct {
-	res   *Resolved
-	where map[string]setting // last setting of a key, with its line
-	files map[string]string  // key -> file of the same
-	errs  Errors
+	res  *Resolved
+	errs Errors
 }
 
 func resolve(top *layer, name, file string, data []byte, sets []string) (*Resolved, error) {
-	r := &resolver{
-		res:   &Resolved{Name: name, File: file, Setup: carbon.NewSetup(), Origins: map[string]string{}},
-		where: map[string]setting{}, files: map[string]string{},
-	}
+	r := &resolver{res: &Resolved{Name: name, File: file, Setup: carbon.NewSetup(), Origins: map[string]string{}, places: map[string]place{}}}
 	if !parse(top, data, known().accept, &r.errs) {
 		return nil, &r.errs
 	}
@@ -209,6 +222,7 @@ func (r *resolver) apply(l *layer) {
 			for key, p := range before {
 				if after[key] != p {
 					delete(r.res.Origins, key)
+					delete(r.res.places, key)
 				}
 			}
 			r.spoke(l, s)
@@ -256,7 +270,7 @@ func (s *setting) isWord() bool { return s.val.shape == text || s.val.shape == b
 
 func (r *resolver) spoke(l *layer, s setting) {
 	r.res.Origins[s.key] = l.origin
-	r.where[s.key], r.files[s.key] = s, l.file
+	r.res.places[s.key] = place{l.file, s.line}
 }
 
 func (r *resolver) bad(l *layer, s setting, found, allowed, near string) {
@@ -553,26 +567,23 @@ func (r *resolver) finish() {
 	for _, sec := range res.Setup.Sections() {
 		if t := sec.Table; t != nil && *t.Text == "" {
 			key := dotted(sec.Name, "law")
-			e := &KeyError{File: r.files[key], Line: r.where[key].line, Key: key, What: fmt.Sprintf("the law %q needs a table", sec.Law), Allowed: fmt.Sprintf("%s.%s_file = \"FILE.csv\"", sec.Name, t.Key)}
+			p := res.places[key]
+			e := &KeyError{File: p.file, Line: p.line, Key: key, What: fmt.Sprintf("the law %q needs a table", sec.Law), Allowed: fmt.Sprintf("%s.%s_file = \"FILE.csv\"", sec.Name, t.Key)}
 			r.errs.add(e)
 		}
 	}
 	if len(r.errs.List) > 0 {
 		return
 	}
-	checker, ok := any(res.Setup).(interface{ Check() error })
-	if !ok {
-		return
-	}
-	if err := checker.Check(); err != nil {
-		e := &KeyError{File: res.File, What: err.Error()}
+	if err := res.Setup.Check(); err != nil {
+		key := ""
 		var keyed interface{ Key() string }
 		if errors.As(err, &keyed) {
-			e.Key = keyed.Key()
-			if f := r.files[e.Key]; f != "" {
-				e.File, e.Line = f, r.where[e.Key].line
-			}
+			key = keyed.Key()
 		}
-		r.errs.add(e)
+		var e *KeyError
+		if errors.As(res.Problem(key, err), &e) {
+			r.errs.add(e)
+		}
 	}
 }

@@ -459,9 +459,9 @@ func TestBadInput(t *testing.T) {
 		name, content, want string
 		near                string
 	}{
-		{"unknown key", "[orbit]\ndistanse = \"1 au\"\n", "bad.toml:2: orbit.distanse: unknown key; allowed is in [orbit] distance, eccentricity", "orbit.distance"},
+		{"unknown key", "[orbit]\ndistanse = \"1 au\"\n", "bad.toml:2: orbit.distanse: unknown key; allowed is a key of [orbit]: distance, eccentricity", "orbit.distance"},
 		{"unknown key above", "titel = \"x\"\n", "bad.toml:1: titel: unknown key", "title"},
-		{"key in the wrong section", "\n\n[weathering]\nefold = \"20 K\"\n", "bad.toml:4: weathering.efold: unknown key; allowed is in [weathering] limiter", "weathering.land.efold"},
+		{"key in the wrong section", "\n\n[weathering]\nefold = \"20 K\"\n", "bad.toml:4: weathering.efold: unknown key; allowed is a key of [weathering]: limiter", "weathering.land.efold"},
 		{"unknown section", "[obrit]\ndistance = 3\n", "bad.toml:1: obrit: unknown section; allowed is star, orbit", "orbit"},
 		{"key as section", "[orbit.distance]\n", "bad.toml:1: orbit.distance: this is a key, not a section", ""},
 		{"section as key", "orbit = 3\n", "bad.toml:1: orbit: this is a section, not a key", ""},
@@ -507,7 +507,7 @@ func TestBadInput(t *testing.T) {
 		{"missing table", "[sources]\nlaw = \"table\"\ntable_file = \"none.csv\"\n", "bad.toml:3: sources.table_file: ", ""},
 		{"a pulse too many", "[pulse.10]\nstart = \"1 Gyr\"\n", "bad.toml:1: pulse.10: unknown section", "pulse.1"},
 		{"control character in a key", "\"a\\u001bb\" = 1\n", "bad.toml:1: \"a\\u001Bb\": unknown key", ""},
-		{"end before start", "time.start = \"5 Gyr\"\ntime.end = \"4 Gyr\"\n", "bad.toml:", ""},
+		{"end before start", "time.start = \"5 Gyr\"\ntime.end = \"4 Gyr\"\n", "bad.toml:2: time.end: ", ""},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			path := write(t, "bad.toml", c.content)

@@ -1,0 +1,101 @@
+package main
+
+import (
+	"fmt"
+	"strings"
+	"unicode/utf8"
+
+	"github.com/spf13/pflag"
+
+	"cycle/carbon"
+	"cycle/carbon/record"
+	"cycle/scenarios"
+)
+
+var checkCommand = command{
+	name: "check", args: "SCENARIO", short: "read and resolve; print every value with unit, origin and source; run nothing",
+	minArgs: 1, maxArgs: 1, run: check,
+	flags: func(f *pflag.FlagSet, o *options) { setFlag(f, o); quietFlag(f, o) },
+	usage: `
+Reads a scenario and prints every value with its unit, who set it (default, built-in,
+file or --set), what is allowed and where the value comes from. A "!" marks a value
+outside the range its source gives. Nothing is computed or written.
+
+  --set KEY=VALUE    a value over that of the scenario; repeatable
+  --quiet            print nothing unless something is wrong
+
+  cycle check earth --set planet.mass="3 M_E"
+`,
+}
+
+func check(u *ui, o *options, args []string) int {
+	r, err := scenarios.Load(args[0], o.sets)
+	if err != nil {
+		return u.fail(err)
+	}
+	if _, err := carbon.NewModel(r.Setup); err != nil { // do the laws fit together?
+		return u.failRun(r, err)
+	}
+	if o.quiet {
+		return exitOK
+	}
+	fmt.Fprintf(u.out, "%s (%s), hash %s\n", r.Title, r.Name, r.Hash())
+	inputs := r.Inputs()
+	keyW, valW, originW, allowedW := 0, 0, 0, 0
+	for _, in := range inputs {
+		keyW = max(keyW, utf8.RuneCountInString(leaf(in.Key)))
+		valW = max(valW, utf8.RuneCountInString(in.Value))
+		originW = max(originW, len(in.Origin))
+		allowedW = max(allowedW, utf8.RuneCountInString(allowedWords(in)))
+	}
+	section, outside := "", 0
+	for _, in := range inputs {
+		if s := strings.TrimSuffix(in.Key, "."+leaf(in.Key)); s != section {
+			section = s
+			fmt.Fprintf(u.out, "\n[%s] %s\n", section, scenarios.SectionDoc(section))
+		}
+		mark := " "
+		if in.Outside {
+			mark = "!"
+			outside++
+		}
+		fmt.Fprintf(u.out, "%s %s  %s  %s  %s  %s\n", mark, pad(leaf(in.Key), keyW), pad(in.Value, valW), pad(in.Origin, originW), pad(allowedWords(in), allowedW), in.Source)
+	}
+	fmt.Fprintln(u.out)
+	set := 0
+	for _, in := range inputs {
+		if in.Origin != scenarios.Default {
+			set++
+		}
+	}
+	fmt.Fprintf(u.out, "%d values, %d of them set, %s\n", len(inputs), set, outsideWords(inputs, outside))
+	return exitOK
+}
+
+func outsideWords(inputs []record.Input, n int) string {
+	if n == 0 {
+		return "none outside its published range"
+	}
+	var keys []string
+	for _, in := range inputs {
+		if in.Outside {
+			keys = append(keys, in.Key)
+		}
+	}
+	return fmt.Sprintf("%d outside the published range: %s", n, strings.Join(keys, ", "))
+}
+
+func leaf(key string) string { return key[strings.LastIndexByte(key, '.')+1:] }
+
+func pad(s string, width int) string {
+	return s + strings.Repeat(" ", max(0, width-utf8.RuneCountInString(s)))
+}
+
+// allowedWords is what is allowed, in a column: a long list of words only counts
+// them, "cycle keys" has the list.
+func allowedWords(in record.Input) string {
+	if n := strings.Count(in.Allowed, "\"") / 2; n > 3 {
+		return fmt.Sprintf("one of %d (cycle keys %s)", n, in.Key)
+	}
+	return in.Allowed
+}
