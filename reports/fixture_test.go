@@ -11,7 +11,7 @@ import (
 // The runs below are invented: shapes drawn by hand, planets, authors and laws
 // that do not exist. They are not output of the model.
 
-var nan = math.NaN()
+var none = math.NaN()
 
 // orrindel is a planet that stays temperate, loses its plants, and ends moist.
 func orrindel() *record.Run {
@@ -29,7 +29,7 @@ func orrindel() *record.Run {
 			{Name: record.MarkSupply, TimeGyr: 0.71, ErrorGyr: 0.002},
 			{Name: record.MarkC3, TimeGyr: 4.861, ErrorGyr: 0.0004},
 			{Name: record.MarkC4, TimeGyr: 5.702, ErrorGyr: 0.0005},
-			{Name: record.MarkDynamo, TimeGyr: 5.75, ErrorGyr: nan},
+			{Name: record.MarkDynamo, TimeGyr: 5.75, ErrorGyr: none},
 			{Name: record.MarkMoist, TimeGyr: 5.9412, ErrorGyr: 0.0003},
 		},
 		Margins: []record.Margin{
@@ -117,7 +117,7 @@ func invented(t, frozen, outgas float64) record.Row {
 	r.Total = 9.84e21
 	r.LandFraction, r.Biology = 1, 1
 	r.SupplyUse = 0.4 + 0.7*math.Exp(-3*(t-0.3))
-	r.CoreTemperature = nan // this run follows no core
+	r.CoreTemperature = none // this run follows no core
 	r.Flux = s
 	r.RecentVenus, r.InnerConservative, r.OuterConservative, r.EarlyMars = 1.78+0.01*t, 1.05+0.004*t, 0.343, 0.318
 	r.WarmNeeds = r.Outgassing / (2.31 + 0.8*math.Abs(t-1.12)) / outgas
@@ -128,7 +128,7 @@ func invented(t, frozen, outgas float64) record.Row {
 	r.Gain = 0.41 + 0.02*math.Sin(t)
 	r.Response = 2.36e5
 	if t < 0.4 {
-		r.HotMargin = nan // a gap
+		r.HotMargin = none // a gap
 	}
 	return r
 }

@@ -117,7 +117,7 @@ func TestSummaryGolden(t *testing.T) {
 
 func TestSummaryValid(t *testing.T) {
 	r := orrindel()
-	r.Feedback = record.Feedback{Gain: nan, ResponseKyr: math.Inf(1), Sensitivity: math.Inf(-1)}
+	r.Feedback = record.Feedback{Gain: none, ResponseKyr: math.Inf(1), Sensitivity: math.Inf(-1)}
 	r.Seed = math.MaxUint64
 	r.Scenario, r.Command = "SECRET", "SECRET"
 	r.Inputs[0].Origin = "SECRET"
@@ -155,7 +155,7 @@ func TestSummaryValid(t *testing.T) {
 
 func TestHistoryCSV(t *testing.T) {
 	r := orrindel()
-	r.Rows[3].Temperature = nan
+	r.Rows[3].Temperature = none
 	r.Rows[4].ColdMargin = math.Inf(1)
 	var b bytes.Buffer
 	if err := HistoryCSV(&b, r); err != nil {
@@ -204,7 +204,7 @@ func TestHistoryCSV(t *testing.T) {
 
 func TestHistoryParquet(t *testing.T) {
 	r := orrindel()
-	r.Rows[3].Temperature = nan
+	r.Rows[3].Temperature = none
 	r.Rows[4].ColdMargin = math.Inf(1)
 	var b bytes.Buffer
 	if err := HistoryParquet(&b, r); err != nil {

@@ -1,0 +1,655 @@
+"use strict";
+(async () => {
+const $ = (s, e) => (e || document).querySelector(s);
+const $$ = (s, e) => [...(e || document).querySelectorAll(s)];
+const page = JSON.parse($("#page-data").textContent);
+
+// ---- unpacking -----------------------------------------------------------
+
+async function unpack(id) {
+  const text = atob($("#" + id).textContent.trim());
+  const bytes = new Uint8Array(text.length);
+  for (let i = 0; i < text.length; i++) bytes[i] = text.charCodeAt(i);
+  const stream = new Blob([bytes]).stream().pipeThrough(new DecompressionStream("gzip"));
+  return new Uint8Array(await new Response(stream).arrayBuffer());
+}
+
+const n = page.rows;
+const columns = new Map();
+const sets = [];
+
+function decode(bytes) {
+  let at = 0;
+  const words = (size) => {
+    const out = new Uint8Array(n * size);
+    for (let p = 0; p < size; p++) for (let j = 0; j < n; j++) out[j * size + p] = bytes[at++];
+    return out.buffer;
+  };
+  page.columns.forEach((c, i) => {
+    if (i === 0) {
+      columns.set(c.name, { ...c, values: new Float64Array(words(8)) });
+      return;
+    }
+    const u = new Uint32Array(words(4));
+    let last = 0;
+    for (let j = 0; j < n; j++) {
+      last = (last + ((u[j] >>> 1) ^ -(u[j] & 1))) | 0;
+      u[j] = last;
+    }
+    columns.set(c.name, { ...c, values: new Float32Array(u.buffer) });
+  });
+  for (let k = 0; k < page.curves; k++) {
+    const set = [];
+    for (let j = 0; j < n; j++) if ((bytes[at + (j >> 3)] >> (j & 7)) & 1) set.push(j);
+    at += (n + 7) >> 3;
+    sets.push(set);
+  }
+}
+
+// ---- numbers -------------------------------------------------------------
+
+const raised = { "-": "⁻", 0: "⁰", 1: "¹", 2: "²", 3: "³", 4: "⁴", 5: "⁵", 6: "⁶", 7: "⁷", 8: "⁸", 9: "⁹" };
+const power = (e) => "10" + [...String(e)].map((c) => raised[c]).join("");
+const minus = (s) => s.replace("-", "−");
+
+function show(v, digits) {
+  if (!Number.isFinite(v)) return "–";
+  if (v === 0) return "0";
+  const r = Number(v.toPrecision(digits));
+  const e = Math.floor(Math.log10(Math.abs(r)) + 1e-12);
+  if (e < -3 || e >= 6) {
+    const [m, x] = v.toExponential(digits - 1).split("e");
+    return minus(String(Number(m))) + " × " + power(Number(x));
+  }
+  return minus(String(Number(v.toFixed(Math.max(digits - 1 - e, 0)))));
+}
+
+const exact = (v, digits) => (Number.isFinite(v) ? String(Number(v.toPrecision(digits)) || 0) : "");
+
+// ---- state of the page ---------------------------------------------------
+
+const time = () => columns.get(page.columns[0].name).values;
+const dark = matchMedia("(prefers-color-scheme: dark)");
+const view = { from: 0, to: 1, clock: "age", cursor: -1, hidden: new Set() };
+const shift = () => (view.clock === "before" ? page.present : 0);
+
+function bisect(x, t) {
+  let lo = 0, hi = x.length;
+  while (lo < hi) {
+    const mid = (lo + hi) >> 1;
+    if (x[mid] < t) lo = mid + 1; else hi = mid;
+  }
+  return lo;
+}
+
+function nearest(t) {
+  const x = time();
+  let i = bisect(x, t);
+  if (i === n || (i > 0 && t - x[i - 1] < x[i] - t)) i--;
+  return i;
+}
+
+const isWhole = () => view.from === time()[0] && view.to === time()[n - 1];
+
+// The rows to draw: the thinned ones, or every row once the window is narrow.
+function rowsOf(curve) {
+  const set = sets[curve.index];
+  if (isWhole()) return set;
+  const x = time();
+  const a = Math.max(bisect(x, view.from) - 1, 0), b = Math.min(bisect(x, view.to) + 1, n);
+  if (b - a <= 2500) return Array.from({ length: b - a }, (_, i) => a + i);
+  return set.filter((j) => j >= a && j < b);
+}
+
+// Lower and upper edge of a filled curve at a row.
+function edges(panel, curve) {
+  const v = columns.get(curve.column).values;
+  if (curve.kind === "band") {
+    const u = columns.get(curve.upper).values;
+    return (j) => [v[j], u[j]];
+  }
+  const sign = curve.kind === "sink" ? -1 : 1;
+  const below = [];
+  for (const c of panel.curves) {
+    if (c === curve) break;
+    if (c.kind === curve.kind && !view.hidden.has(c.index)) below.push(columns.get(c.column).values);
+  }
+  return (j) => {
+    let base = 0;
+    for (const b of below) base += b[j] || 0;
+    return [sign * base, sign * (base + v[j])];
+  };
+}
+
+function niceStep(span, count) {
+  const raw = span / count, p = 10 ** Math.floor(Math.log10(raw));
+  for (const m of [1, 2, 2.5, 5]) if (raw <= m * p * 1.0001) return m * p;
+  return 10 * p;
+}
+
+// The range of a panel's axis over the rows in view, so that a limit worth
+// seeing stays in it and a zoom uses the whole height.
+function range(panel, few) {
+  let lo = Infinity, hi = -Infinity;
+  const take = (v) => {
+    if (!Number.isFinite(v) || (panel.log && v <= 0)) return;
+    if (v < lo) lo = v;
+    if (v > hi) hi = v;
+  };
+  for (const c of panel.curves) {
+    if (view.hidden.has(c.index)) continue;
+    const rows = rowsOf(c);
+    if (c.kind) {
+      const e = edges(panel, c);
+      for (const j of rows) e(j).forEach(take);
+    } else {
+      const v = columns.get(c.column).values;
+      for (const j of rows) take(v[j]);
+    }
+  }
+  if (lo > hi) return panel.log ? { min: 0.1, max: 10 } : { min: 0, max: 1, interval: 0.5 };
+  for (const l of panel.limits) {
+    if (panel.log) {
+      const room = isWhole() ? 4 : 0.5;
+      if (l > lo * 10 ** -room && l < hi * 10 ** room) take(l);
+    } else {
+      const room = (isWhole() ? 3 : 0.5) * (hi - lo || Math.abs(hi) || 1);
+      if (l > lo - room && l < hi + room) take(l);
+    }
+  }
+  if (panel.log) {
+    let a = Math.floor(Math.log10(lo) + 1e-6), b = Math.ceil(Math.log10(hi) - 1e-6);
+    if (a >= b) b = a + 1;
+    const step = Math.max(1, Math.ceil((b - a) / (few ? 4 : 6)));
+    a = Math.floor(a / step) * step;
+    b = Math.ceil(b / step) * step;
+    return { min: 10 ** a, max: 10 ** b, interval: step };
+  }
+  if (hi === lo) {
+    const pad = Math.abs(hi) * 0.05 || 1;
+    lo -= pad;
+    hi += pad;
+  }
+  const step = niceStep(hi - lo, few ? 3 : 4);
+  return { min: Math.floor(lo / step + 1e-6) * step, max: Math.ceil(hi / step - 1e-6) * step, interval: step };
+}
+
+// ---- what the options may name -------------------------------------------
+
+const formatters = {
+  "@number": (v) => show(v, 6),
+  "@size": (v) => show(Math.abs(v), 6),
+  "@power": (v) => {
+    const e = Math.log10(v);
+    return Math.abs(e - Math.round(e)) < 1e-6 ? (Math.abs(e) < 3.5 && e > -2.5 ? show(v, 3) : power(Math.round(e))) : "";
+  },
+  "@time": (v) => {
+    if (view.clock === "age") return show(v, 6);
+    return Math.abs(v) < 1e-12 ? "0" : v < 0 ? show(-v, 6) : "+" + show(v, 6);
+  },
+  "@limit": (p) => p.name,
+};
+const names = {
+  "@clock": () => (view.clock === "age" ? "Age of the star, Gyr" : "Gyr before (+ after) " + show(page.present, 4) + " Gyr"),
+};
+
+const textOn = (role, tone) => (role === "state.runaway" ? tone("@paper-light") : tone("@ink-light"));
+const clip = (s, k) => (s.length > k ? s.slice(0, k - 1) + "…" : s);
+const font = "ui-sans-serif, system-ui, 'Segoe UI', Roboto, 'Helvetica Neue', 'Noto Sans', 'Liberation Sans', Arial, sans-serif";
+const pen = document.createElement("canvas").getContext("2d");
+function widthOf(text, size) {
+  pen.font = size + "px " + font;
+  return pen.measureText(text).width;
+}
+
+function drawers(fig, tone, areas, narrow) {
+  const box = (params) => params.coordSys;
+  const spans = (api, c) => {
+    const out = [];
+    for (const e of page.episodes) {
+      if (e.to <= view.from || e.from >= view.to) continue;
+      const a = api.coord([Math.max(e.from, view.from) - shift(), 0])[0];
+      const b = api.coord([Math.min(e.to, view.to) - shift(), 0])[0];
+      out.push({ e, a, b, y: c.y, h: c.height });
+    }
+    return out;
+  };
+  const outcome = (api, c, top) => {
+    if (page.outcome === null || page.outcome < view.from || page.outcome > view.to) return [];
+    const x = api.coord([page.outcome - shift(), 0])[0];
+    return [{ type: "line", shape: { x1: x, x2: x, y1: top, y2: c.y + c.height }, style: { stroke: tone("@alarm"), lineWidth: 1.2, lineDash: [2, 2] } }];
+  };
+  return {
+    "@shade": (params, api) => {
+      const c = box(params);
+      const children = spans(api, c).filter((s) => s.e.role !== "state.temperate").map((s) => ({
+        type: "rect", shape: { x: s.a, y: s.y, width: Math.max(s.b - s.a, 0.5), height: s.h }, style: { fill: tone("@" + s.e.role), opacity: 0.24 },
+      }));
+      return { type: "group", children: children.concat(outcome(api, c, c.y)) };
+    },
+    "@area": (params, api) => {
+      const area = areas.get(params.seriesId);
+      const children = [];
+      let lower = [], upper = [];
+      const close = () => {
+        if (upper.length > 1) children.push({ type: "polygon", shape: { points: upper.concat(lower.reverse()) }, style: { fill: area.fill, opacity: area.opacity } });
+        lower = [];
+        upper = [];
+      };
+      for (const [x, a, b] of area.points) {
+        if (!Number.isFinite(a) || !Number.isFinite(b)) { close(); continue; }
+        lower.push(api.coord([x, a]));
+        upper.push(api.coord([x, b]));
+      }
+      close();
+      return { type: "group", children };
+    },
+    "@rail": (params, api) => {
+      const c = box(params), band = 18, y = c.y + c.height - band;
+      const children = [];
+      for (const s of spans(api, c)) {
+        children.push({ type: "rect", shape: { x: s.a, y, width: Math.max(s.b - s.a, 0.7), height: band }, style: { fill: tone("@" + s.e.role) } });
+        if (widthOf(s.e.name, 11) + 12 < s.b - s.a) {
+          children.push({ type: "text", silent: true, style: { x: (s.a + s.b) / 2, y: y + band / 2 + 0.5, text: s.e.name, align: "center", verticalAlign: "middle", fontSize: 11, fontFamily: font, fill: textOn(s.e.role, tone) } });
+        }
+      }
+      const rows = [];
+      for (const m of page.marks) {
+        if (m.time < view.from || m.time > view.to) continue;
+        const x = api.coord([m.time - shift(), 0])[0];
+        children.push({ type: "line", shape: { x1: x, x2: x, y1: y - (m.number ? 4 : 2), y2: y }, style: { stroke: tone("@ink"), lineWidth: 1 } });
+        if (!m.number) continue;
+        const place = (text) => {
+          const w = widthOf(text, 11);
+          for (let r = 0; r < 3; r++) {
+            const taken = rows[r] || (rows[r] = []);
+            for (const a of [x - 3, x - w + 3]) {
+              if (a < c.x - 8 || a + w > c.x + c.width + 8) continue;
+              if (taken.some(([p, q]) => a < q + 8 && a + w > p - 8)) continue;
+              // The leader of a higher row must not cross a lower label.
+              if (rows.slice(0, r).some((low) => low.some(([p, q]) => x > p - 2 && x < q + 2))) continue;
+              taken.push([a, a + w]);
+              return { a, r };
+            }
+          }
+          return null;
+        };
+        let text = narrow ? m.number : clip(m.number + " " + m.name, 48), spot = place(text);
+        if (!spot && text !== m.number) spot = place((text = m.number));
+        if (!spot) continue;
+        const ty = y - 7 - spot.r * 15;
+        children.push({ type: "line", shape: { x1: x, x2: x, y1: ty + 1, y2: y }, style: { stroke: tone("@quiet"), lineWidth: 0.7 } });
+        children.push({ type: "text", silent: true, style: { x: spot.a, y: ty, text, fontSize: 11, fontFamily: font, fill: tone("@ink"), verticalAlign: "bottom" } });
+      }
+      return { type: "group", children };
+    },
+  };
+}
+
+// ---- options -------------------------------------------------------------
+
+function toneOf(isDark) {
+  return (name) => {
+    if (name.endsWith("-light")) return page.palette[name.slice(0, -6)][0];
+    return page.palette[name][isDark ? 1 : 0];
+  };
+}
+
+// Replaces the names in an option of the kit; only under these keys.
+function resolve(o, tone, draw) {
+  for (const k of Object.keys(o)) {
+    const v = o[k];
+    if (v && typeof v === "object") resolve(v, tone, draw);
+    else if (typeof v !== "string" || v[0] !== "@") continue;
+    else if (k === "color") o[k] = tone(v);
+    else if (k === "formatter") o[k] = formatters[v];
+    else if (k === "renderItem") o[k] = draw[v];
+    else if (k === "name" && names[v]) o[k] = names[v]();
+  }
+  return o;
+}
+
+function optionOf(fig, width, isDark, extra) {
+  const tone = toneOf(isDark), narrow = width < 560, areas = new Map();
+  const o = resolve(structuredClone(fig.option), tone, drawers(fig, tone, areas, narrow));
+  const top = extra ? extra.top : 0;
+  o.animation = false;
+  o.textStyle = { fontFamily: font, color: tone("@ink") };
+  o.grid = [].concat(o.grid);
+  o.grid.forEach((g) => {
+    g.left = narrow ? 52 : 64;
+    g.right = narrow ? 12 : 18;
+    g.top = Number(g.top) + top;
+    g.height = Number(g.height);
+  });
+  const x = time(), s = shift();
+  const step = niceStep(view.to - view.from, narrow ? 5 : 9);
+  o.xAxis.forEach((a, i) => {
+    const last = i === o.xAxis.length - 1;
+    a.min = view.from - s;
+    a.max = view.to - s;
+    a.interval = step;
+    a.axisLine = { show: !fig.panels[i].rail, onZero: false, lineStyle: { color: tone("@quiet") } };
+    a.axisTick = { show: last, lineStyle: { color: tone("@quiet") } };
+    a.splitLine = { show: !fig.panels[i].rail, showMinLine: false, showMaxLine: false, lineStyle: { color: tone("@rule"), opacity: 0.7 } };
+    a.axisLabel = { ...a.axisLabel, color: tone("@quiet"), fontSize: 12, hideOverlap: true, showMinLabel: false, showMaxLabel: false };
+    a.nameTextStyle = { color: tone("@quiet"), fontSize: 12 };
+  });
+  o.yAxis.forEach((a, i) => {
+    if (fig.panels[i].rail) { a.min = 0; a.max = 1; return; }
+    Object.assign(a, range(fig.panels[i], o.grid[i].height < 130));
+    a.axisLine = { show: false };
+    a.axisTick = { show: false };
+    a.splitLine = { lineStyle: { color: tone("@rule") } };
+    a.axisLabel = { ...a.axisLabel, color: tone("@quiet"), fontSize: 12 };
+    a.nameTextStyle = { color: tone("@ink"), fontSize: 12.5, fontWeight: 600, align: "left", padding: [0, 0, 0, -(narrow ? 50 : 60)] };
+  });
+  const byId = new Map();
+  fig.panels.forEach((p) => p.curves.forEach((c) => byId.set(c.id, [p, c])));
+  o.series = o.series.filter((r) => !byId.has(r.id) || !view.hidden.has(byId.get(r.id)[1].index));
+  for (const r of o.series) {
+    r.silent = true;
+    r.clip = true;
+    r.animation = false;
+    if (!byId.has(r.id)) {
+      r.data = r.type === "custom" ? [[view.from - s, 0.5]] : [];
+      const axis = o.yAxis[r.yAxisIndex || 0];
+      if (r.type === "custom" && axis.min !== undefined) r.data = [[view.from - s, axis.min]];
+      r.z = r.type === "custom" ? 1 : 3;
+      if (r.markLine) {
+        r.markLine.silent = true;
+        r.markLine.animation = false;
+        r.markLine.data = r.markLine.data.filter((d) => d.yAxis >= axis.min && d.yAxis <= axis.max);
+        r.markLine.label.fontSize = 11;
+        r.markLine.label.distance = 2;
+      }
+      continue;
+    }
+    const [panel, curve] = byId.get(r.id);
+    const rows = rowsOf(curve);
+    if (curve.kind) {
+      const e = edges(panel, curve);
+      areas.set(r.id, { fill: r.itemStyle.color, opacity: curve.kind === "band" ? 1 : 0.92, points: rows.map((j) => [x[j] - s, ...e(j)]) });
+      r.data = [[view.from - s, o.yAxis[r.yAxisIndex || 0].min]];
+      r.z = 2;
+    } else {
+      const v = columns.get(curve.column).values;
+      r.data = rows.map((j) => [x[j] - s, Number.isFinite(v[j]) && (!panel.log || v[j] > 0) ? v[j] : null]);
+      r.symbol = "none";
+      r.z = 4;
+    }
+  }
+  return o;
+}
+
+// ---- figures on the page -------------------------------------------------
+
+const figures = [];
+
+function draw(fig, width, isDark) {
+  fig.chart.setOption(optionOf(fig, width, isDark), { notMerge: true });
+}
+
+let printing = false;
+function drawAll() {
+  for (const f of figures) draw(f, f.stage.clientWidth, !printing && dark.matches);
+  placeCursor();
+}
+
+let asked = 0;
+function redraw() {
+  if (asked) return;
+  asked = requestAnimationFrame(() => { asked = 0; drawAll(); });
+}
+
+function zoom(from, to) {
+  const x = time(), least = Math.max((x[n - 1] - x[0]) * 1e-9, 1e-12);
+  if (!Number.isFinite(from) || !Number.isFinite(to)) return;
+  if (from > to) [from, to] = [to, from];
+  from = Math.max(from, x[0]);
+  to = Math.min(to, x[n - 1]);
+  if (to - from < least) return;
+  view.from = from;
+  view.to = to;
+  readout();
+  redraw();
+}
+
+function readout() {
+  const out = (t) => Number((view.clock === "age" ? t : page.present - t).toPrecision(7));
+  $("#from").value = out(view.from);
+  $("#to").value = out(view.to);
+  $("#clock-unit").textContent = view.clock === "age" ? "Gyr" : "Gyr before";
+}
+
+function words(t) {
+  if (view.clock === "age" || page.present === null) return show(t, 6) + " Gyr";
+  const d = page.present - t;
+  return d >= 0 ? show(d, 5) + " Gyr before" : show(-d, 5) + " Gyr after";
+}
+
+const units = new Map();
+function setCursor(row) {
+  view.cursor = row;
+  const t = time()[row];
+  $("#cursor").value = row;
+  $("#cursor").setAttribute("aria-valuetext", words(t));
+  $("#now").value = "at " + words(t);
+  for (const el of $$("[data-value]")) {
+    const u = units.get(Number(el.dataset.value));
+    el.textContent = u ? u(row) : "";
+  }
+  placeCursor();
+}
+
+function placeCursor() {
+  for (const f of figures) {
+    const hair = $(".hair", f.stage), t = view.cursor < 0 ? NaN : time()[view.cursor];
+    hair.hidden = printing || !(t >= view.from && t <= view.to);
+    if (hair.hidden) continue;
+    hair.style.left = f.chart.convertToPixel({ xAxisIndex: 0 }, t - shift()) + "px";
+    hair.style.top = "0px";
+    hair.style.height = f.height - 46 + "px";
+  }
+}
+
+function pointing(f) {
+  const timeAt = (ev) => {
+    const r = f.stage.getBoundingClientRect();
+    const t = f.chart.convertFromPixel({ xAxisIndex: 0 }, ev.clientX - r.left) + shift();
+    return Math.min(Math.max(t, view.from), view.to);
+  };
+  const brush = $(".brush", f.stage);
+  let start = null;
+  f.stage.addEventListener("pointerdown", (ev) => {
+    if (ev.button !== 0) return;
+    if (ev.pointerType === "mouse") start = { x: ev.clientX, t: timeAt(ev) };
+    setCursor(nearest(timeAt(ev)));
+  });
+  f.stage.addEventListener("pointermove", (ev) => {
+    setCursor(nearest(timeAt(ev)));
+    if (!start || Math.abs(ev.clientX - start.x) < 6) return;
+    f.stage.setPointerCapture(ev.pointerId);
+    const r = f.stage.getBoundingClientRect();
+    const at = (t) => f.chart.convertToPixel({ xAxisIndex: 0 }, t - shift());
+    const a = at(Math.min(start.t, timeAt(ev))), b = at(Math.max(start.t, timeAt(ev)));
+    brush.hidden = false;
+    brush.style.left = a + "px";
+    brush.style.width = b - a + "px";
+    brush.style.height = f.height - 46 + "px";
+  });
+  const end = (ev) => {
+    if (start && !brush.hidden) zoom(start.t, timeAt(ev));
+    start = null;
+    brush.hidden = true;
+  };
+  f.stage.addEventListener("pointerup", end);
+  f.stage.addEventListener("pointercancel", () => { start = null; brush.hidden = true; });
+  f.stage.addEventListener("dblclick", () => zoom(time()[0], time()[n - 1]));
+}
+
+// ---- saving --------------------------------------------------------------
+
+function save(name, blob) {
+  const a = document.createElement("a");
+  const url = URL.createObjectURL(blob);
+  a.href = url;
+  a.download = name;
+  a.click();
+  setTimeout(() => URL.revokeObjectURL(url), 10000);
+}
+
+function csv(cols) {
+  const lines = [cols.map((c) => c.header).join(",")];
+  for (let j = 0; j < n; j++) lines.push(cols.map((c, i) => exact(c.values[j], i === 0 ? 14 : 7)).join(","));
+  return lines.join("\n") + "\n";
+}
+
+function columnsOf(fig) {
+  const cols = new Set([columns.get(page.columns[0].name)]);
+  for (const p of fig.panels) for (const c of p.curves) {
+    cols.add(columns.get(c.column));
+    if (c.upper) cols.add(columns.get(c.upper));
+  }
+  return [...cols];
+}
+
+// A figure at print size, with title, key and the name of the result.
+const exportWidth = 900;
+function exported(fig) {
+  const keys = fig.panels.flatMap((p) => p.curves).filter((c) => !view.hidden.has(c.index));
+  const rows = Math.ceil(keys.reduce((w, c) => w + widthOf(c.name, 12) + 46, 0) / (exportWidth - 80));
+  const top = 46, foot = 22 * rows + 24, height = fig.height + top + foot;
+  const o = optionOf(fig, exportWidth, false, { top });
+  const tone = toneOf(false);
+  o.backgroundColor = tone("@panel");
+  o.title = [
+    { text: fig.title, left: 16, top: 12, textStyle: { fontSize: 17, fontWeight: 600, color: tone("@ink"), fontFamily: font } },
+    { text: page.label, left: 16, bottom: 6, textStyle: { fontSize: 11, fontWeight: 400, color: tone("@quiet"), fontFamily: font } },
+  ];
+  o.legend = { show: true, bottom: 26, left: 60, right: 20, itemGap: 14, itemWidth: 22, itemHeight: 10, selectedMode: false, data: keys.map((c) => ({ name: c.name })), textStyle: { fontSize: 12, color: tone("@ink"), fontFamily: font } };
+  return { option: o, height };
+}
+
+function svg(fig) {
+  const e = exported(fig);
+  const chart = echarts.init(null, null, { renderer: "svg", ssr: true, width: exportWidth, height: e.height });
+  chart.setOption(e.option);
+  const text = chart.renderToSVGString();
+  chart.dispose();
+  return text;
+}
+
+function png(fig) {
+  const e = exported(fig);
+  const chart = echarts.init(document.createElement("div"), null, { renderer: "canvas", width: exportWidth, height: e.height });
+  chart.setOption(e.option);
+  const canvas = chart.renderToCanvas({ pixelRatio: 3, backgroundColor: e.option.backgroundColor });
+  return new Promise((done) => canvas.toBlob((b) => { chart.dispose(); done(b); }, "image/png"));
+}
+
+document.addEventListener("click", async (ev) => {
+  const b = ev.target.closest("button");
+  if (!b) return;
+  if (b.dataset.curve) {
+    const k = Number(b.dataset.curve), on = b.getAttribute("aria-pressed") !== "true";
+    b.setAttribute("aria-pressed", on);
+    if (on) view.hidden.delete(k); else view.hidden.add(k);
+    redraw();
+  } else if (b.dataset.save && b.dataset.figure) {
+    const f = figures.find((g) => g.id === b.dataset.figure), name = page.file + "-" + f.id + "." + b.dataset.save;
+    if (b.dataset.save === "csv") save(name, new Blob([csv(columnsOf(f))], { type: "text/csv" }));
+    if (b.dataset.save === "svg") save(name, new Blob([svg(f)], { type: "image/svg+xml" }));
+    if (b.dataset.save === "png") save(name, await png(f));
+  } else if (b.dataset.save === "rows") {
+    save(page.file + "-history.csv", new Blob([csv([...columns.values()])], { type: "text/csv" }));
+  } else if (b.dataset.save) {
+    save(b.dataset.save, new Blob([$("#" + b.dataset.from).textContent], { type: "text/plain" }));
+  } else if (b.dataset.copy) {
+    const from = $("#" + b.dataset.copy);
+    getSelection().selectAllChildren(from);
+    let done = false;
+    try { await navigator.clipboard.writeText(from.textContent); done = true; } catch { /* the selection remains */ }
+    b.textContent = done ? "Copied" : "Selected";
+  }
+});
+
+for (const box of $$("[data-filter]")) {
+  box.addEventListener("change", () => $("#" + box.dataset.filter).classList.toggle("only-set", box.checked));
+}
+
+// ---- start ---------------------------------------------------------------
+
+function failed(err) {
+  for (const p of $$(".plot")) p.textContent = "This browser could not draw the figure (" + err.message + "). The caption and the numbers below hold all the same.";
+  document.documentElement.dataset.ready = "failed";
+}
+
+try {
+  if (page.figures.length) {
+    const [rows, library] = await Promise.all([unpack("page-rows"), unpack("page-library")]);
+    decode(rows);
+    const s = document.createElement("script");
+    s.textContent = new TextDecoder().decode(library);
+    document.head.append(s);
+
+    view.from = time()[0];
+    view.to = time()[n - 1];
+    for (const spec of page.figures) {
+      const el = document.getElementById(spec.id), stage = $(".stage", el);
+      const chart = echarts.init($(".plot", stage), null, { renderer: "svg" });
+      figures.push({ ...spec, el, stage, chart });
+      for (const p of spec.panels) for (const c of p.curves) {
+        const v = columns.get(c.column).values, u = c.upper ? columns.get(c.upper).values : null;
+        units.set(c.index, (j) => (u ? show(v[j], 4) + " to " + show(u[j], 4) : show(v[j], 4)) + (c.unit ? " " + c.unit : ""));
+      }
+    }
+    for (const f of figures) pointing(f);
+    $("#clock").hidden = false;
+    $("#cursor").max = n - 1;
+    $("#cursor").addEventListener("input", (ev) => setCursor(Number(ev.target.value)));
+    const typed = () => {
+      const of = (id) => (view.clock === "age" ? Number($(id).value) : page.present - Number($(id).value));
+      zoom(of("#from"), of("#to"));
+    };
+    $("#from").addEventListener("change", typed);
+    $("#to").addEventListener("change", typed);
+    $("#whole").addEventListener("click", () => zoom(time()[0], time()[n - 1]));
+    $("#clock").addEventListener("submit", (ev) => ev.preventDefault());
+    for (const r of $$("[name=clock]")) r.addEventListener("change", () => {
+      view.clock = r.value;
+      readout();
+      redraw();
+      setCursor(view.cursor);
+    });
+    readout();
+    drawAll();
+    setCursor(page.present === null ? n - 1 : nearest(page.present));
+
+    new ResizeObserver(() => {
+      if (printing) return;
+      for (const f of figures) if (f.chart.getWidth() !== f.stage.clientWidth) f.chart.resize({ width: "auto", height: "auto" });
+      redraw();
+    }).observe($(".stage"));
+    dark.addEventListener("change", redraw);
+    addEventListener("beforeprint", () => {
+      printing = true;
+      for (const f of figures) {
+        f.chart.resize({ width: 680, height: f.height });
+        draw(f, 680, false);
+        f.chart.getZr().flush();
+      }
+      placeCursor();
+    });
+    addEventListener("afterprint", () => {
+      printing = false;
+      for (const f of figures) f.chart.resize({ width: "auto", height: "auto" });
+      redraw();
+    });
+  }
+  document.documentElement.dataset.ready = Math.round(performance.now());
+} catch (err) {
+  failed(err);
+  throw err;
+}
+})();
