@@ -648,6 +648,8 @@ func (b *builder) rangeOf(section string) string {
 	switch section {
 	case "star":
 		a = s.star.law.Range()
+	case "interior":
+		a = s.interior.law.Range()
 	case "radiation":
 		t, p = s.radiation.law.Box().T, s.radiation.law.Box().P
 	case "albedo":
@@ -741,6 +743,7 @@ func (b *builder) warnings(residual float64) {
 	box, alb, land, sea := s.radiation.law.Box(), s.albedo.law.Box(), s.land.law.Range(), s.seafloor.law.Range()
 	for _, w := range []watch{
 		{"star", "age", s.star.law.Range(), func(r *record.Row) float64 { return r.Age }, age},
+		{"interior", "age", s.interior.law.Range(), func(r *record.Row) float64 { return r.Age }, age},
 		{"radiation", "temperature", box.T, temp, kelvin}, {"radiation", "CO2", box.P, co2, bar},
 		{"albedo", "temperature", alb.T, temp, kelvin}, {"albedo", "CO2", alb.P, co2, bar},
 		{"weathering.land", "temperature", land.T, temp, kelvin}, {"weathering.land", "CO2", land.P, co2, bar},

@@ -169,7 +169,7 @@ func TestUserTable(t *testing.T) {
 		{"age_gyr,relative_heat_flow\n1,2\n1,1\n", "line 3: found the age 1 Gyr"},
 		{"age_gyr,relative_heat_flow\n1,2\n0.5,1\n", "line 3"},
 		{"age_gyr,relative_heat_flow\n1,2,3\n", "line 2: found 3 columns"},
-		{"age,heat\n1,2\n2,3\n", `line 1: found "age"`},
+		{"age,heat\n1,2\n2,3\n", `line 1: found the columns "age,heat"`},
 		{"age_gyr,relative_heat_flow\n1,2\n\"2,3\n", "line 3: found a malformed row"},
 		{"age_gyr,relative_heat_flow\n1,2\n", "found 1 rows"},
 		{"", "found 0 rows"},
@@ -201,8 +201,8 @@ func TestUserTable(t *testing.T) {
 	if r := l.Range(); r.Lo != 0.5e9 || r.Hi != 4.57e9 {
 		t.Errorf("range %v", r)
 	}
-	if err := l.Load(strings.NewReader("0,1\n1,2\n")); err != nil {
-		t.Errorf("a table without header: %v", err)
+	if err := l.Load(strings.NewReader("0,1\n1,2\n")); err == nil {
+		t.Error("loads a table whose columns have no names")
 	}
 }
 

@@ -1,13 +1,9 @@
 package outgas
 
 import (
-	"encoding/csv"
 	"errors"
-	"fmt"
 	"io"
 	"math"
-	"strconv"
-	"strings"
 
 	"gonum.org/v1/gonum/interp"
 
@@ -104,46 +100,14 @@ func (l *Table) Text() *string { return &l.text }
 
 // Load reads the CSV.
 func (l *Table) Load(r io.Reader) error {
-	raw, err := io.ReadAll(io.LimitReader(r, 1<<20))
+	cols, text, err := units.ReadTable(r, units.TableColumn{Name: "outgassing_tmol_yr", Lo: 0, Hi: 1e4})
 	if err != nil {
 		return err
 	}
-	rd := csv.NewReader(strings.NewReader(string(raw)))
-	rd.TrimLeadingSpace = true
-	rd.Comment = '#'
-	rd.FieldsPerRecord = 2
-	var ages, vs []float64
-	header := true
-	for {
-		rec, err := rd.Read()
-		if errors.Is(err, io.EOF) {
-			break
-		}
-		if err != nil {
-			return err
-		}
-		line, _ := rd.FieldPos(0)
-		if header {
-			if rec[0] != "age_gyr" || rec[1] != "outgassing_tmol_yr" {
-				return fmt.Errorf("line %d: found header %q, allowed is \"age_gyr,outgassing_tmol_yr\"", line, strings.Join(rec, ","))
-			}
-			header = false
-			continue
-		}
-		a, err1 := strconv.ParseFloat(rec[0], 64)
-		v, err2 := strconv.ParseFloat(rec[1], 64)
-		if err1 != nil || err2 != nil || !(a >= 0 && a <= 20) || !(v >= 0 && v <= 1e4) {
-			return fmt.Errorf("line %d: found %q, allowed are an age of 0 to 20 Gyr and an outgassing of 0 to 10000 Tmol/yr", line, strings.Join(rec, ","))
-		}
-		if n := len(ages); n > 0 && a*1e9 <= ages[n-1] {
-			return fmt.Errorf("line %d: found age %s Gyr, allowed is more than the line before", line, rec[0])
-		}
-		ages, vs = append(ages, a*1e9), append(vs, v*1e12)
+	for i := range cols[1] {
+		cols[1][i] *= 1e12
 	}
-	if len(ages) < 2 {
-		return errors.New("found fewer than two rows, allowed are two or more")
-	}
-	l.ages, l.vs, l.text = ages, vs, string(raw)
+	l.ages, l.vs, l.text = cols[0], cols[1], text
 	return nil
 }
 

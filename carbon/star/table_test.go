@@ -4,6 +4,8 @@ import (
 	"math"
 	"strings"
 	"testing"
+
+	"cycle/carbon/units"
 )
 
 func TestTable(t *testing.T) {
@@ -54,7 +56,7 @@ func TestTableRefusals(t *testing.T) {
 		{"age_gyr,luminosity\n1,\"1\n", "line 2"},
 		{"age_gyr,luminosity,temperature_k\n1,1,500\n", "column temperature_k"},
 		{"age_gyr,luminosity\n1," + strings.Repeat("9", 500) + "\n", "..."},
-		{strings.Repeat("#", tableBytes+2), "MB"},
+		{strings.Repeat("#", units.TableBytes+2), "MB"},
 	} {
 		l := &Table{}
 		_ = l.Load(strings.NewReader("age_gyr,luminosity\n0,1\n1,1\n"))
