@@ -286,7 +286,7 @@ func (s *Setup) Sections() []Section {
 		{Name: "radiation", Doc: "outgoing long-wave radiation", Laws: s.radiation.choices, Law: s.radiation.name, Fields: s.radiation.law.Fields()},
 		{Name: "albedo", Doc: "planetary albedo; its free value is solved at the reference state", Laws: s.albedo.choices, Law: s.albedo.name, Fields: s.albedo.law.Fields()},
 		{Name: "climate", Doc: "heat capacity and the temperatures that name a state", Fields: []units.Field{
-			{Key: "heat_capacity", Kind: units.HeatCapacity, Unit: "J/m2/K", Min: 1e7, Max: 1e11, Doc: "of the column that warms and cools; 500 m of water", Source: cite.Own("dates change by less than 0.3 % from 10 m to 5 km of water"), Value: &s.HeatCapacity},
+			{Key: "heat_capacity", Kind: units.HeatCapacity, Unit: "MJ/m2/K", Min: 1e7, Max: 1e11, Doc: "of the column that warms and cools; 500 m of water", Source: cite.Own("dates change by less than 0.3 % from 10 m to 5 km of water"), Value: &s.HeatCapacity},
 			{Key: "frozen_below", Kind: units.Temperature, Unit: "K", Min: 220, Max: 262, Doc: "a snowball starts below", Source: cite.Own("colder than the ramp's unstable branch"), Value: &s.FrozenBelow},
 			{Key: "thawed_above", Kind: units.Temperature, Unit: "K", Min: 262, Max: 280, Doc: "a snowball ends above", Source: cite.Own("warmer than the ramp's unstable branch"), Value: &s.ThawedAbove},
 			{Key: "cold_contrast", Kind: units.Interval, Unit: "K", Min: 0, Max: 80, Doc: "coldest place colder than the mean by, for CO2 condensation", Source: cite.Own("of the size of today's pole-to-mean contrast"), Value: &s.ColdContrast},
