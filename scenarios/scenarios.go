@@ -542,17 +542,18 @@ func (r *resolver) table(l *layer, s setting, t *carbon.Table, csvKey string) {
 func (r *resolver) otherLaw(l *layer, s setting, sections []carbon.Section) {
 	c := known()
 	e := &KeyError{File: l.file, Line: s.line, Key: s.key, What: "unknown key"}
+	var laws []string
 	for _, i := range c.byDotted[first(s.key)] {
-		k := &c.keys[i]
-		for _, sec := range sections {
-			if sec.Name == k.Section {
-				e.What = fmt.Sprintf("the law %q has no such key", sec.Law)
-				e.Allowed = "under " + words(k.Laws)
-				e.hints = append(e.hints, fmt.Sprintf("choose the law with: %s.law = %q", k.Section, k.Laws[0]),
-					"list the keys of the section with: cycle keys "+k.Section)
-			}
+		laws = append(laws, c.keys[i].Laws...)
+	}
+	section := parent(s.key)
+	for _, sec := range sections {
+		if sec.Name == section && laws != nil {
+			e.What = fmt.Sprintf("the law %q has no such key", sec.Law)
+			e.Allowed = "under " + words(laws)
+			e.hints = append(e.hints, fmt.Sprintf("choose the law with: %s.law = %q", section, laws[0]),
+				"list the keys of the section with: cycle keys "+section)
 		}
-		break
 	}
 	r.errs.add(e)
 }

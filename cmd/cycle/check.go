@@ -3,6 +3,7 @@ package main
 import (
 	"fmt"
 	"strings"
+	"unicode"
 	"unicode/utf8"
 
 	"github.com/spf13/pflag"
@@ -39,7 +40,7 @@ func check(u *ui, o *options, args []string) int {
 	if o.quiet {
 		return exitOK
 	}
-	fmt.Fprintf(u.out, "%s (%s), hash %s\n", r.Title, r.Name, r.Hash())
+	fmt.Fprintf(u.out, "%s (%s), hash %s\n", visible(r.Title), r.Name, r.Hash())
 	inputs := r.Inputs()
 	keyW, valW, originW, allowedW := 0, 0, 0, 0
 	for _, in := range inputs {
@@ -86,6 +87,17 @@ func outsideWords(inputs []record.Input, n int) string {
 }
 
 func leaf(key string) string { return key[strings.LastIndexByte(key, '.')+1:] }
+
+// visible replaces what could disturb a terminal, such as marks that turn the
+// direction of writing.
+func visible(s string) string {
+	return strings.Map(func(c rune) rune {
+		if unicode.IsPrint(c) {
+			return c
+		}
+		return ' '
+	}, s)
+}
 
 func pad(s string, width int) string {
 	return s + strings.Repeat(" ", max(0, width-utf8.RuneCountInString(s)))

@@ -407,13 +407,16 @@ func TestReplace(t *testing.T) {
 	if read(t, "earth/summary.json") == old {
 		t.Error("the older result is still there")
 	}
+	if entries, err := os.ReadDir("."); err != nil || len(entries) != 1 {
+		t.Errorf("something was left beside the folder: %v", entries)
+	}
 	want := tree(t)
 	for name, spoil := range map[string]func() error{
 		"added":   func() error { return os.WriteFile("earth/notes.txt", nil, 0o644) },
 		"changed": func() error { return os.WriteFile("earth/scenario.toml", []byte("title = \"x\"\n"), 0o644) },
 		"folder":  func() error { return os.Mkdir("earth/more", 0o755) },
 		"link": func() error {
-			return errors.Join(os.Remove("earth/scenario.toml"), os.Symlink("history.csv", "earth/scenario.toml"))
+			return errors.Join(os.Rename("earth/scenario.toml", "same.toml"), os.Symlink("../same.toml", "earth/scenario.toml"))
 		},
 		"no list": func() error { return os.Remove("earth/.cycle") },
 	} {
@@ -428,7 +431,7 @@ func TestReplace(t *testing.T) {
 		if tree(t) != before {
 			t.Errorf("%s: the folder was touched", name)
 		}
-		if err := os.RemoveAll("earth"); err != nil {
+		if err := errors.Join(os.RemoveAll("earth"), os.RemoveAll("same.toml")); err != nil {
 			t.Fatal(err)
 		}
 		mustRun(t, "run", "earth", "--quiet", "--set", "planet.mass=0.9 M_E")
@@ -457,6 +460,30 @@ func TestReplace(t *testing.T) {
 		t.Error("another result in another folder")
 	}
 }
+
+// A folder that is not ours is refused before anything is computed.
+func TestRefuseEarly(t *testing.T) {
+	t.Chdir(t.TempDir())
+	if err := errors.Join(os.Mkdir("earth", 0o755), os.WriteFile("earth/x", nil, 0o644)); err != nil {
+		t.Fatal(err)
+	}
+	done := make(chan int, 1)
+	go func() {
+		status, _, _ := call(slow...)
+		done <- status
+	}()
+	select {
+	case status := <-done:
+		if status != exitUsage {
+			t.Errorf("status %d", status)
+		}
+	case <-time.After(2 * time.Second):
+		t.Fatal("computes first")
+	}
+}
+
+// slow is a command line that takes far longer than any test.
+var slow = []string{"run", "earth", "--set", "solver.tolerance=1e-10", "--set", "solver.max_step=0.01 Myr", "--set", "solver.max_steps=1e8"}
 
 // A quiet run prints nothing; an undecided fate is told by the status.
 func TestStatus(t *testing.T) {
@@ -539,6 +566,26 @@ func TestNew(t *testing.T) {
 	}
 }
 
+// A title is text and nothing else, however odd.
+func TestOddTitle(t *testing.T) {
+	t.Chdir(t.TempDir())
+	title := "</script><img src=x onerror=alert(1)> \u202eevil\u202c 'quoted' \\\"too\\\" " + strings.Repeat("long ", 2000)
+	if err := os.WriteFile("odd.toml", []byte("title = \""+title+"\"\n"), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	if out := mustRun(t, "check", "odd.toml"); strings.ContainsRune(out, '\u202e') || !strings.Contains(out, "</script>") {
+		t.Errorf("%.200q", out)
+	}
+	if out := mustRun(t, "run", "odd.toml"); strings.ContainsRune(out, '\u202e') {
+		t.Errorf("%.200q", out)
+	}
+	first := read(t, "odd/summary.json")
+	mustRun(t, "run", "odd/scenario.toml", "--quiet") // replaces the folder it lies in
+	if read(t, "odd/summary.json") != first {
+		t.Error("the resolved scenario gives another summary.json")
+	}
+}
+
 // Stopped from outside, the command leaves nothing behind.
 func TestInterrupt(t *testing.T) {
 	t.Chdir(t.TempDir())
@@ -546,7 +593,7 @@ func TestInterrupt(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	cmd := exec.Command(self, "run", "earth", "--set", "solver.tolerance=1e-10", "--set", "solver.max_step=0.01 Myr", "--set", "solver.max_steps=1e8")
+	cmd := exec.Command(self, slow...)
 	cmd.Env = append(os.Environ(), "CYCLE_AS_COMMAND=1")
 	var stderr bytes.Buffer
 	cmd.Stderr = &stderr
