@@ -115,6 +115,14 @@ func (s *Solver) scan(tEnd float64) bool {
 		g1 := s.event(i, tEnd, s.y1)
 		ev.g1[i] = g1
 		c := &ev.cand[i]
+		c.on = false
+		// Nothing to do while the function keeps its sign and varies less
+		// over the step than it is away from zero.
+		a, b, d := ev.gs[i*nSamples], ev.gs[i*nSamples+1], ev.gs[i*nSamples+2]
+		low, up := min(ev.g0[i], g1, a, b, d), max(ev.g0[i], g1, a, b, d)
+		if low > 0 && up < 2*low || up < 0 && low > 2*up {
+			continue
+		}
 		s.scanOne(i, h, c)
 		any = any || c.on
 	}

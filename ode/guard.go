@@ -29,6 +29,9 @@ type guardState struct {
 	cpiv   []int
 	scale  []float64
 
+	ref, refTol [][]float64 // blocks as of the last computation of their eigenvalues
+	detOnly     bool
+
 	hMax     float64 // longest step that resolves the growth at the end
 	hRetry   float64
 	hAfter   float64 // bound for the step after a located loss
@@ -87,11 +90,23 @@ func (s *Solver) initGuard(g *Guard) error {
 	gd.cur = make([]blockState, len(gd.blocks))
 	gd.end = make([]blockState, len(gd.blocks))
 	gd.a, gd.b = make([]float64, m*m), make([]float64, m*m)
+	if s.band != nil {
+		gd.b = make([]float64, max(m*m, s.n*(2*s.band.Lower+s.band.Upper+1)))
+	}
 	gd.wr, gd.wi = make([]float64, m), make([]float64, m)
 	gd.ca = make([]complex128, m*m)
 	gd.cv, gd.cw, gd.cx = make([]complex128, m), make([]complex128, m), make([]complex128, m)
 	gd.cpiv = make([]int, m)
 	gd.scale = make([]float64, m)
+	gd.detOnly = g.Blocks == nil && s.n > wholeLimit
+	for _, b := range gd.blocks {
+		size := 0
+		if len(b) > 4 && !gd.detOnly {
+			size = sq2(len(b))
+		}
+		gd.ref = append(gd.ref, make([]float64, size))
+		gd.refTol = append(gd.refTol, make([]float64, size))
+	}
 	return nil
 }
 
@@ -102,6 +117,8 @@ func (s *Solver) startGuard() {
 	s.gd.efolds, s.gd.refRate, s.gd.released = 0, 0, false
 	for i := range s.gd.cur {
 		s.gd.cur[i] = blockState{}
+		clear(s.gd.ref[i])
+		clear(s.gd.refTol[i])
 	}
 }
 
@@ -165,14 +182,157 @@ func (s *Solver) guardAll(dst []blockState, jac []float64, t float64, y []float6
 			dst[k] = st
 			continue
 		}
-		s.extract(jac, b)
-		if certainlyStable(s.gd.a[:m*m], m, s.gd.noise) {
+		a := jac
+		if s.gd.detOnly {
+			dst[k] = s.oddState(jac, sig)
+			continue
+		}
+		whole := m == s.n && s.band == nil && s.dir > 0
+		if !whole {
+			s.extract(jac, b)
+			a = s.gd.a
+		}
+		if certainlyStable(a[:m*m], s.gd.b, m, s.gd.noise) {
+			dst[k] = blockState{sig: sig}
+			continue
+		}
+		if whole {
+			s.extract(jac, b)
+		}
+		if m > 4 && s.gd.cur[k].count == 0 && s.gd.known && s.calm(k, m, sig) {
 			dst[k] = blockState{sig: sig}
 			continue
 		}
 		dst[k], _ = s.spectrum(m, sig, -1, dst[k])
 	}
 }
+
+// calm reports whether block k in gd.a, stable so far, needs no computation of
+// its eigenvalues: no odd number of real ones has become positive, which the
+// sign of a determinant tells, and no entry has changed so much since the last
+// computation that a complex pair may have.
+func (s *Solver) calm(k, m int, sig float64) bool {
+	g := &s.gd
+	a := g.a[:m*m]
+	if s.oddAbove(k, m, max(sig, 1e-3/s.probeStep())) {
+		return false
+	}
+	ref, tol := g.ref[k], g.refTol[k]
+	for i, v := range a {
+		if !(math.Abs(v-ref[i]) <= tol[i]) {
+			copy(ref, a)
+			for i := range m {
+				d := math.Abs(ref[i*m+i])
+				for j := range m {
+					tol[i*m+j] = changeLimit * (math.Abs(ref[i*m+j]) + 0.01*d*g.scale[j]/g.scale[i])
+				}
+			}
+			return false
+		}
+	}
+	return true
+}
+
+// oddAbove reports whether an odd number of real eigenvalues of block k, held
+// in gd.a, exceeds c: whether det(c·I − A) is negative.
+func (s *Solver) oddAbove(k, m int, c float64) bool {
+	g := &s.gd
+	a, w := g.a[:m*m], g.b[:m*m]
+	for i, v := range a {
+		w[i] = -v
+	}
+	for i := 0; i < len(w); i += m + 1 {
+		w[i] += c
+	}
+	for i, j := range g.blocks[k] {
+		g.scale[i] = s.rs[j]
+	}
+	identity(g.cpiv[:m])
+	if !luFactor(w, g.cpiv[:m], g.scale, m) {
+		return false
+	}
+	odd := false
+	for i := range m {
+		if w[i*m+i] < 0 {
+			odd = !odd
+		}
+		for g.cpiv[i] != i { // sort the permutation
+			j := g.cpiv[i]
+			g.cpiv[i], g.cpiv[j] = g.cpiv[j], g.cpiv[i]
+			odd = !odd
+		}
+	}
+	return odd
+}
+
+// oddBand is oddAbove for a banded Jacobian.
+func (s *Solver) oddBand(jac []float64, c float64) bool {
+	g := &s.gd
+	n, kl, ku := s.n, s.band.Lower, s.band.Upper
+	width, jw := 2*kl+ku+1, kl+ku+1
+	w := g.b[:n*width]
+	for i := range n {
+		row := w[i*width : i*width+width]
+		for j, v := range jac[i*jw : i*jw+jw] {
+			row[j] = -s.dir * v
+		}
+		clear(row[jw:])
+		row[kl] += c
+	}
+	if !bandFactor(w, g.cpiv, s.rs, n, kl, ku) {
+		return false
+	}
+	odd := false
+	for i := range n {
+		if w[i*width+kl] < 0 {
+			odd = !odd
+		}
+		if g.cpiv[i] != i {
+			odd = !odd
+		}
+	}
+	return odd
+}
+
+// oddState judges a large whole Jacobian by determinants alone: count is 1 if
+// an odd number of real eigenvalues grows, and re then bounds the fastest of
+// them from above within a factor of two.
+func (s *Solver) oddState(jac []float64, sig float64) blockState {
+	odd := s.oddBand
+	if s.band == nil {
+		s.extract(jac, s.gd.blocks[0])
+		odd = s.oddDense
+	}
+	c := max(sig, 1e-3/s.probeStep())
+	if !odd(jac, c) {
+		return blockState{sig: sig}
+	}
+	for range 60 {
+		c *= 2
+		if !odd(jac, c) {
+			break
+		}
+	}
+	return blockState{count: 1, re: c, sig: sig}
+}
+
+func (s *Solver) oddDense(_ []float64, c float64) bool { return s.oddAbove(0, s.n, c) }
+
+// probeStep is the length of step the determinant test has in mind.
+func (s *Solver) probeStep() float64 {
+	if s.lastH != 0 {
+		return math.Abs(s.lastH)
+	}
+	return math.Abs(s.t1 - s.t0)
+}
+
+// A change of an entry of a large block by this fraction makes the guard
+// compute its eigenvalues anew. A whole Jacobian larger than wholeLimit is
+// watched by the sign of its determinant alone.
+const (
+	changeLimit = 0.2
+	wholeLimit  = 16
+)
 
 // spectrum computes the eigenvalues of the block in gd.a and judges which of
 // them grow. If c0 ≥ 0 it also returns the excess over significance of the
@@ -250,6 +410,8 @@ func (s *Solver) eigenNoise(m int, lam complex128) float64 {
 	}
 	return math.Inf(1)
 }
+
+func sq2(m int) int { return m * m }
 
 func cabs(z complex128) float64 { return math.Hypot(real(z), imag(z)) }
 
@@ -376,6 +538,8 @@ func (s *Solver) stabilityExcess(jac []float64, st []blockState) float64 {
 			if c0 == 1 {
 				v = -v
 			}
+		} else if g.detOnly {
+			v = 1 // with the sign below: bisection
 		} else {
 			s.extract(jac, b)
 			if c0 < m {
@@ -452,7 +616,7 @@ func (s *Solver) locateLoss(h float64) (float64, outcome) {
 			t := s.t + s.dir*x
 			s.stats.FuncEvals++
 			s.f(s.f1, t, s.interp)
-			if !s.allFinite(s.f1) || !s.evalJac(s.jac1, s.dfdt1, t, s.interp, s.f1) {
+			if !allFinite(s.f1) || !s.evalJac(s.jac1, s.dfdt1, t, s.interp, s.f1) {
 				break
 			}
 			s.guardAll(s.gd.end, s.jac1, t, s.interp)
@@ -577,8 +741,15 @@ func (s *Solver) recordChange(k int, a, b blockState) {
 	if !eigenvalues(g.b[:m*m], m, g.wr, g.wi) {
 		return
 	}
-	rank := max(b.count-1, 0)
 	wr, wi := g.wr[:m], g.wi[:m]
+	if g.detOnly { // only real modes are meant
+		for i := range wr {
+			if wi[i] != 0 {
+				wr[i] = math.Inf(-1)
+			}
+		}
+	}
+	rank := max(b.count-1, 0)
 	for i := 1; i < m; i++ {
 		for j := i; j > 0 && wr[j] > wr[j-1]; j-- {
 			wr[j], wr[j-1] = wr[j-1], wr[j]
@@ -617,8 +788,8 @@ func (s *Solver) recordChange(k int, a, b blockState) {
 // certainlyStable reports whether no eigenvalue of the m×m matrix a can have a
 // positive real part, apart from zero eigenvalues indistinguishable from
 // rounding, if the entries of a are uncertain by the relative amount noise. It
-// is sufficient, not necessary, and cheap.
-func certainlyStable(a []float64, m int, noise float64) bool {
+// is sufficient, not necessary, and cheap. w is workspace for m² numbers.
+func certainlyStable(a, w []float64, m int, noise float64) bool {
 	var c, b [5]float64
 	switch m {
 	case 2:
@@ -630,7 +801,7 @@ func certainlyStable(a []float64, m int, noise float64) bool {
 	case 4:
 		minors4((*[16]float64)(a), &c, &b)
 	default:
-		return rowsStable(a, m)
+		return comparisonStable(a, w, m)
 	}
 	return hurwitz(&c, &b, m, 8*noise)
 }
@@ -721,20 +892,42 @@ func minors4(a *[16]float64, c, b *[5]float64) {
 	b[4] = h01.m*l23.m + h02.m*l13.m + h03.m*l12.m + h12.m*l03.m + h13.m*l02.m + h23.m*l01.m
 }
 
-// rowsStable applies Gershgorin's theorem to rows and to columns.
-func rowsStable(a []float64, m int) bool {
-	rows, cols := true, true
-	for i := 0; i < m && (rows || cols); i++ {
-		d := a[i*m+i]
-		r, c := d, d
-		for j := range m {
-			if j != i {
-				r += math.Abs(a[i*m+j])
-				c += math.Abs(a[j*m+i])
+// comparisonStable reports whether the comparison matrix of −A, with −a_ii on
+// its diagonal and −|a_ij| off it, is a nonsingular M-matrix: then Gershgorin's
+// theorem holds for A in some scaling of the components, and every eigenvalue
+// has a negative real part (Berman & Plemmons, Nonnegative Matrices in the
+// Mathematical Sciences (1979), ch. 6). w is workspace for m² numbers.
+func comparisonStable(a, w []float64, m int) bool {
+	for i := range m {
+		row, wi := a[i*m:i*m+m], w[i*m:i*m+m]
+		for j, v := range row {
+			wi[j] = -math.Abs(v)
+		}
+		if !(row[i] < 0) {
+			return false
+		}
+	}
+	for i := range m {
+		w[i*m+i] = math.Abs(a[i*m+i])
+	}
+	// Elimination without interchanges meets positive pivots only.
+	for k := range m {
+		d := w[k*m+k]
+		if !(d > 1e-12*math.Abs(a[k*m+k])) {
+			return false
+		}
+		uk := w[k*m+k+1 : k*m+m]
+		for i := k + 1; i < m; i++ {
+			l := w[i*m+k]
+			if l == 0 {
+				continue
+			}
+			l /= d
+			wi := w[i*m+k+1 : i*m+m]
+			for j, u := range uk {
+				wi[j] -= l * u
 			}
 		}
-		rows = rows && r <= 0
-		cols = cols && c <= 0
 	}
-	return rows || cols
+	return true
 }

@@ -34,6 +34,18 @@ func (s *Solver) factorShifted(c float64) outcome {
 	for i := 0; i < len(w); i += n + 1 {
 		w[i] += c
 	}
+	switch n {
+	case 3:
+		if !factor3((*[9]float64)(w), (*[3]int)(s.piv), (*[3]float64)(s.rs)) {
+			return outcomeSingular
+		}
+		return outcomeOK
+	case 4:
+		if !factor4((*[16]float64)(w), (*[4]int)(s.piv), (*[4]float64)(s.rs)) {
+			return outcomeSingular
+		}
+		return outcomeOK
+	}
 	if n < blockedFrom {
 		identity(s.piv)
 		if !luFactor(w, s.piv, s.rs, n) {
@@ -72,6 +84,32 @@ func (s *Solver) solve(x, b []float64) {
 	s.stats.Solves++
 	if s.band != nil {
 		bandSolve(s.w, s.piv, s.n, s.band.Lower, s.band.Upper, x, b)
+		return
+	}
+	switch s.n {
+	case 1:
+		x[0] = b[0] * s.w[0]
+		return
+	case 2:
+		solve2((*[4]float64)(s.w), (*[2]int)(s.piv), (*[2]float64)(x), (*[2]float64)(b))
+		return
+	case 3:
+		solve3((*[9]float64)(s.w), (*[3]int)(s.piv), (*[3]float64)(x), (*[3]float64)(b))
+		return
+	case 4:
+		solve4((*[16]float64)(s.w), (*[4]int)(s.piv), (*[4]float64)(x), (*[4]float64)(b))
+		return
+	case 5:
+		solve5((*[25]float64)(s.w), (*[5]int)(s.piv), (*[5]float64)(x), (*[5]float64)(b))
+		return
+	case 6:
+		solve6((*[36]float64)(s.w), (*[6]int)(s.piv), (*[6]float64)(x), (*[6]float64)(b))
+		return
+	case 7:
+		solve7((*[49]float64)(s.w), (*[7]int)(s.piv), (*[7]float64)(x), (*[7]float64)(b))
+		return
+	case 8:
+		solve8((*[64]float64)(s.w), (*[8]int)(s.piv), (*[8]float64)(x), (*[8]float64)(b))
 		return
 	}
 	if s.n >= blockedFrom {

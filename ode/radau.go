@@ -457,7 +457,7 @@ func (s *Solver) radauTry(h, tEnd float64) outcome {
 			s.stats.FuncEvals++
 			fi := r.f[i*n : i*n+n]
 			s.f(fi, ti, s.arg)
-			if !s.allFinite(fi) {
+			if !allFinite(fi) {
 				return outcomeNonFinite
 			}
 		}
@@ -562,7 +562,7 @@ func (s *Solver) radauTry(h, tEnd float64) outcome {
 			}
 			s.stats.FuncEvals++
 			s.f(s.fs, s.t, s.arg)
-			if s.allFinite(s.fs) {
+			if allFinite(s.fs) {
 				for k := range n {
 					s.rhs[k] = s.fs[k] + r.ez[k]
 				}

@@ -54,69 +54,37 @@ func (s *Solver) rodasStep(h, tEnd float64) outcome {
 		return o
 	}
 	hinv := 1 / h
-	u, arg, rhs, sol := s.u, s.arg, s.rhs, s.sol
+	u, arg, rhs, sol, fs := s.u, s.arg[:n], s.rhs[:n], s.sol[:n], s.fs[:n]
+	ft := s.dfdt[:n]
 	for i := range 8 {
 		hd := 0.0
 		if !s.autonomous {
 			hd = h * rodasD[i]
 		}
 		if i == 0 {
-			if hd != 0 {
-				for k := range n {
-					rhs[k] = s.f0[k] + hd*s.dfdt[k]
-				}
-			} else {
-				copy(rhs, s.f0)
+			for k, v := range s.f0[:n] {
+				rhs[k] = v + hd*ft[k]
 			}
 		} else {
-			a, c := &rodasA[i], &rodasCC[i]
-			if i < 6 {
-				for k := range n {
-					uk := (*[8]float64)(u[k*8:])
-					sa, sc := 0.0, 0.0
-					for j := range i {
-						sa += a[j] * uk[j]
-						sc += c[j] * uk[j]
-					}
-					arg[k] = s.y[k] + sa
-					rhs[k] = sc * hinv
-				}
-			} else {
-				for k := range n {
-					uk := (*[8]float64)(u[k*8:])
-					sc := 0.0
-					for j := range i {
-						sc += c[j] * uk[j]
-					}
-					arg[k] += uk[i-1]
-					rhs[k] = sc * hinv
-				}
-			}
+			stageSums(i, u, s.y, arg, rhs, hinv)
 			ti := tEnd
-			if rodasC[i] != 1 {
+			if i < 5 {
 				ti = s.t + rodasC[i]*h
 			} else if s.clip {
 				ti = s.tClip
 			}
-			s.stats.FuncEvals++
-			s.f(s.fs, ti, arg)
-			if hd != 0 {
-				for k := range n {
-					rhs[k] += s.fs[k] + hd*s.dfdt[k]
-				}
-			} else {
-				for k := range n {
-					rhs[k] += s.fs[k]
-				}
+			s.f(fs, ti, arg)
+			for k, v := range fs {
+				rhs[k] += v + hd*ft[k]
 			}
 		}
 		s.solve(sol, rhs)
-		for k := range n {
-			u[k*8+i] = sol[k]
+		for k, v := range sol {
+			u[k*8+i] = v
 		}
 	}
-	for k := range n {
-		e := sol[k]
+	s.stats.FuncEvals += 7
+	for k, e := range sol {
 		s.errv[k] = e
 		s.y1[k] = arg[k] + e
 	}
@@ -127,16 +95,7 @@ func (s *Solver) rodasStep(h, tEnd float64) outcome {
 // rodasDense forms the dense-output vectors of the last accepted or attempted
 // step.
 func (s *Solver) rodasDense() {
-	for k := range s.n {
-		uk := (*[8]float64)(s.u[k*8:])
-		for r := range 3 {
-			v := 0.0
-			for j := range 8 {
-				v += rodasH[r][j] * uk[j]
-			}
-			s.dense[k*3+r] = v
-		}
-	}
+	denseSums(s.u, s.dense, s.n)
 	s.denseReady = true
 }
 

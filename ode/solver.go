@@ -401,7 +401,7 @@ func (s *Solver) attempt(h, tEnd float64) outcome {
 	s.errComp = comp
 	if !(s.errNorm <= math.MaxFloat64) {
 		s.lastOutcome = outcomeNonFinite
-		if s.allFinite(s.y1) && s.allFinite(s.errv) { // scale 0 or overflow of the norm
+		if allFinite(s.y1) && allFinite(s.errv) { // scale 0 or overflow of the norm
 			s.lastOutcome = outcomeError
 		}
 		return s.lastOutcome
@@ -421,7 +421,7 @@ func (s *Solver) attempt(h, tEnd float64) outcome {
 	return outcomeOK
 }
 
-func (s *Solver) allFinite(v []float64) bool {
+func allFinite(v []float64) bool {
 	z := 0.0
 	for _, x := range v {
 		z += 0 * x
@@ -486,7 +486,7 @@ func (s *Solver) Step() (done bool, err error) {
 	if !s.haveF {
 		s.stats.FuncEvals++
 		s.f(s.f0, s.t, s.y)
-		if !s.allFinite(s.f0) {
+		if !allFinite(s.f0) {
 			s.lastOutcome = outcomeNonFinite
 			for i, v := range s.f0 {
 				if math.IsNaN(v - v) {
@@ -641,14 +641,14 @@ func (s *Solver) propose(h float64) float64 {
 		m := 7 + 2*(s.rad.s-3)
 		logSafety += math.Log(float64(2*m+1) / float64(2*m+s.rad.iters))
 	}
-	le := math.Log(max(s.errNorm, 1e-20))
+	le := roughLog(max(s.errNorm, 1e-20))
 	lf := le/s.q - logSafety
 	if s.hOld > 0 {
-		if lg := math.Log(s.hOld/h) + (2*le-s.logErrOld)/s.q - logSafety; lg > lf {
+		if lg := roughLog(s.hOld/h) + (2*le-s.logErrOld)/s.q - logSafety; lg > lf {
 			lf = lg
 		}
 	}
-	fac := math.Exp(max(-1.791759469228055, min(lf, 1.6094379124341003))) // 1/6 to 5
+	fac := roughExp(max(-1.791759469228055, min(lf, 1.6094379124341003))) // 1/6 to 5
 	if s.rejectedLast && fac < 1 {
 		fac = 1
 	}
@@ -666,7 +666,7 @@ func (s *Solver) shrink(h float64, o outcome) float64 {
 		if !(s.errNorm <= math.MaxFloat64) {
 			return 0.1 * h
 		}
-		fac := math.Exp(math.Log(s.errNorm)/s.q) / 0.9
+		fac := roughExp(roughLog(s.errNorm)/s.q) / 0.9
 		return h / min(max(fac, 1.05), 5)
 	case outcomeDomain, outcomeSingular, outcomeNewton:
 		return 0.5 * h
@@ -683,7 +683,7 @@ func (s *Solver) finish(tEnd float64) bool {
 	}
 	s.stats.FuncEvals++
 	s.f(s.f1, t, s.y1)
-	if !s.allFinite(s.f1) {
+	if !allFinite(s.f1) {
 		return false
 	}
 	if s.gd.on {
@@ -770,7 +770,7 @@ func (s *Solver) restart(changed bool) {
 	}
 	s.stats.FuncEvals++
 	s.f(s.f0, s.t, s.y)
-	if !s.allFinite(s.f0) {
+	if !allFinite(s.f0) {
 		return // the next Step reports it
 	}
 	s.haveF = true
@@ -800,13 +800,14 @@ func (s *Solver) setRowScale(y []float64) {
 func (s *Solver) evalJac(jac, dfdt []float64, t float64, y, f []float64) bool {
 	s.stats.JacEvals++
 	n := s.n
+	f = f[:n]
 	if s.p.Jac != nil {
 		clear(jac)
 		clear(dfdt)
 		s.p.Jac(jac, dfdt, t, y)
-		return s.allFinite(jac) && (s.autonomous || s.allFinite(dfdt))
+		return allFinite(jac) && (s.autonomous || allFinite(dfdt))
 	}
-	arg, fs := s.arg, s.fs
+	arg, fs := s.arg[:n], s.fs[:n]
 	copy(arg, y)
 	if s.band != nil {
 		return s.bandJac(jac, t, y, f) && s.timeDeriv(dfdt, t, y, f)
@@ -814,31 +815,43 @@ func (s *Solver) evalJac(jac, dfdt []float64, t float64, y, f []float64) bool {
 	for j := range n {
 		d := s.increment(j, y, f)
 		arg[j] = y[j] + d
-		d = arg[j] - y[j]
-		s.stats.FuncEvals++
+		r := 1 / (arg[j] - y[j])
 		s.f(fs, t, arg)
-		if !s.allFinite(fs) {
+		z := 0.0
+		for i, v := range fs {
+			v = (v - f[i]) * r
+			jac[i*n+j] = v
+			z += 0 * v
+		}
+		if z != 0 { // not finite: try the other side
 			arg[j] = y[j] - d
-			d = arg[j] - y[j]
+			r = 1 / (arg[j] - y[j])
 			s.stats.FuncEvals++
 			s.f(fs, t, arg)
-			if !s.allFinite(fs) {
+			if !allFinite(fs) {
 				return false
 			}
-		}
-		r := 1 / d
-		for i, v := range fs {
-			jac[i*n+j] = (v - f[i]) * r
+			for i, v := range fs {
+				jac[i*n+j] = (v - f[i]) * r
+			}
 		}
 		arg[j] = y[j]
 	}
+	s.stats.FuncEvals += n
 	return s.timeDeriv(dfdt, t, y, f)
 }
 
 // increment is the step of a difference in component j: outwards, so that a
 // sign is kept.
 func (s *Solver) increment(j int, y, f []float64) float64 {
-	d := sqrtEps * max(math.Abs(y[j]), 1000*s.atol[j], 1e-3*math.Abs(s.h*f[j]))
+	d := math.Abs(y[j])
+	if a := 1000 * s.atol[j]; a > d {
+		d = a
+	}
+	if a := 1e-3 * math.Abs(s.h*f[j]); a > d {
+		d = a
+	}
+	d *= sqrtEps
 	if d < 0x1p-900 {
 		d = sqrtEps
 	}
@@ -862,7 +875,7 @@ func (s *Solver) bandJac(jac []float64, t float64, y, f []float64) bool {
 			}
 			s.stats.FuncEvals++
 			s.f(fs, t, arg)
-			if s.allFinite(fs) {
+			if allFinite(fs) {
 				break
 			}
 			if try == 1 {
@@ -897,12 +910,12 @@ func (s *Solver) timeDeriv(dfdt []float64, t float64, y, f []float64) bool {
 	fs := s.fs
 	s.stats.FuncEvals++
 	s.f(fs, tt, y)
-	if !s.allFinite(fs) {
+	if !allFinite(fs) {
 		tt = t - d
 		d = tt - t
 		s.stats.FuncEvals++
 		s.f(fs, tt, y)
-		if !s.allFinite(fs) {
+		if !allFinite(fs) {
 			return false
 		}
 	}
@@ -944,7 +957,7 @@ func (s *Solver) firstStep() float64 {
 		}
 		s.stats.FuncEvals++
 		s.f(s.fs, s.t+s.dir*h, s.arg)
-		if s.allFinite(s.fs) {
+		if allFinite(s.fs) {
 			break
 		}
 		h *= 0.1
@@ -958,14 +971,40 @@ func (s *Solver) firstStep() float64 {
 		d2 += sq((s.fs[i] - s.f0[i]) / sc)
 	}
 	d2 = math.Sqrt(d2/float64(s.n)) / h
-	h1 := max(1e-6*span, 1e-3*h)
-	if m := max(d1, d2); m > 1e-15 && m <= math.MaxFloat64 {
-		h1 = math.Exp(math.Log(0.01/m) / s.q)
+	h1 := 100 * h
+	if d2 > 0 && d2 <= math.MaxFloat64 && d1 > 0 {
+		// The solution varies at the rate L = |y''|/|y'| and, if it decays,
+		// by d1/L tolerances: resolve that with the order of the method.
+		L := d2 / d1
+		h1 = 2 / L
+		if d1 > L {
+			h1 *= math.Exp(-math.Log(d1/L) / s.q)
+		}
 	}
 	return max(min(100*h, h1, span), min(span, 4*s.spacing(s.t)))
 }
 
 func sq(x float64) float64 { return x * x }
+
+// roughLog returns ln x for x > 0 to about 1e-4, which is all the step
+// controller needs, in a fraction of the time of math.Log.
+func roughLog(x float64) float64 {
+	b := math.Float64bits(x)
+	e := float64(int(b>>52) - 1023)
+	m := math.Float64frombits(b&(1<<52-1)|1023<<52) - 1 // in [0, 1)
+	// ln(1+m), Abramowitz & Stegun 4.1.43 (error below 1e-5).
+	l := m * (0.99949556 + m*(-0.49190896+m*(0.28947478+m*(-0.13606275+m*0.03215845))))
+	return e*math.Ln2 + l
+}
+
+// roughExp returns exp x for |x| < 3 to about 1e-4 relative.
+func roughExp(x float64) float64 {
+	x *= 0.125
+	p := 1 + x*(1+x*(0.5+x*(1.0/6+x*(1.0/24))))
+	p *= p
+	p *= p
+	return p * p
+}
 
 // Integrate runs from (t0, y) to t1 and leaves the state reached in y, also
 // when it returns an error.

@@ -52,7 +52,7 @@ func (p *Thermostat) Func(d []float64, t float64, y []float64) {
 	_ = y[3]
 	l := math.Log(y[1] / p.C0)
 	x := y[0] - 288
-	alb := p.Warm + 0.5*(p.Cold-p.Warm)*(1-math.Tanh((y[0]-p.Ti)/p.Wi))
+	alb := p.Warm + (p.Cold-p.Warm)/(1+math.Exp(2*(y[0]-p.Ti)/p.Wi))
 	s := 240 / (1 + 0.2*(1-t/4.57))
 	w := p.W0 * math.Exp(p.Beta*l+x/p.Te)
 	v := p.V0 * math.Exp(-0.25*t) * y[3]
@@ -70,15 +70,14 @@ func (p *Thermostat) Jac(j, dfdt []float64, t float64, y []float64) {
 	_ = y[3]
 	l := math.Log(y[1] / p.C0)
 	x := y[0] - 288
-	th := math.Tanh((y[0] - p.Ti) / p.Wi)
-	half := 0.5 * (p.Cold - p.Warm)
-	alb := p.Warm + half*(1-th)
+	q := 1 / (1 + math.Exp(2*(y[0]-p.Ti)/p.Wi)) // ½ (1 − tanh)
+	alb := p.Warm + (p.Cold-p.Warm)*q
 	g := 1 / (1 + 0.2*(1-t/4.57))
 	s := 240 * g
 	w := p.W0 * math.Exp(p.Beta*l+x/p.Te)
 	v0 := p.V0 * math.Exp(-0.25*t)
 	wt, wc := w/p.Te, w*p.Beta/y[1]
-	j[0], j[1] = (s*half*(1-th*th)/(p.Wi*0.7)-p.B)*p.Heat, p.F/y[1]*p.Heat
+	j[0], j[1] = (s*2*(p.Cold-p.Warm)*q*(1-q)/(p.Wi*0.7)-p.B)*p.Heat, p.F/y[1]*p.Heat
 	j[4], j[5], j[6], j[7] = -wt, -wc, p.Kr, v0
 	j[8], j[9], j[10] = wt, wc, -p.Kr-p.Kd
 	j[14], j[15] = p.Kd, -v0
