@@ -40,7 +40,6 @@ type Model struct {
 	deposited float64 // fraction of land carbonate laid down on the seafloor
 
 	lnP0, lnH0      float64 // reference state
-	p150, p10       float64 // bar
 	iceNorm         [2]float64
 	limNorm         float64
 	freeName        string

@@ -163,15 +163,6 @@ func (s *slot[L]) choose(name string) bool {
 	return false
 }
 
-func (s *slot[L]) chosen() Choice {
-	for _, c := range s.choices {
-		if c.Name == s.name {
-			return c
-		}
-	}
-	return Choice{Name: s.name}
-}
-
 // NewSetup returns the Earth with the published defaults.
 func NewSetup() *Setup {
 	s := &Setup{
