@@ -324,6 +324,7 @@ var Columns = []Column{
 	{"imbalance", "Sources minus burial", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Imbalance }},
 	{"deposited", "Land carbonate laid down on the seafloor", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Deposited }},
 	{"subducted", "Seafloor carbonate subducted", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Subducted }},
+	{"foundered", "Continental carbonate returned to the mantle", "Tmol/yr", 1e12, func(r *Row) float64 { return r.Foundered }},
 	{"surface_carbon", "Surface carbon", "Emol", 1e18, func(r *Row) float64 { return r.Surface }},
 	{"seafloor_carbon", "Seafloor carbonate", "Emol", 1e18, func(r *Row) float64 { return r.SeafloorCarbon }},
 	{"continental_carbon", "Continental carbonate", "Emol", 1e18, func(r *Row) float64 { return r.Continental }},
