@@ -33,7 +33,7 @@ func figuresOf(r *record.Run, groups []markGroup) []*page.Figure {
 			}},
 		{ID: "fluxes", Title: "Ledger of carbon fluxes", Caption: c.fluxes(),
 			Panels: []page.Panel{
-				{Name: "Sources up, sinks down", Unit: "Tmol/yr", Mirror: true, Height: 240, Limits: []page.Limit{{Value: 0, Words: " "}}, Curves: fluxCurves(r)},
+				{Name: "Sources up, sinks down", Unit: "Tmol/yr", Mirror: true, Height: 240, Limits: []page.Limit{{Value: 0}}, Curves: fluxCurves(r)},
 				{Name: "Imbalance", Unit: "Tmol/yr", Height: 90, Limits: []page.Limit{{Value: 0, Words: "balance"}}, Curves: []page.Curve{{Column: "imbalance", Role: "ink"}}},
 			}},
 		{ID: "reservoirs", Title: "Carbon reservoirs", Caption: c.reservoirs(),
@@ -41,7 +41,7 @@ func figuresOf(r *record.Run, groups []markGroup) []*page.Figure {
 				{Column: "mantle_carbon", Role: "pool.mantle", Wide: true},
 				{Column: "continental_carbon", Role: "pool.continental", Dash: "dashed", Wide: true},
 				{Column: "seafloor_carbon", Role: "pool.seafloor", Wide: true},
-				{Column: "surface_carbon", Role: "pool.surface", Dash: "dashed", Wide: true},
+				{Column: "surface_carbon", Role: "pool.surface", Wide: true},
 				{Column: "total_carbon", Role: "pool.total", Dash: "dotted"},
 			}}}},
 		{ID: "interior", Title: "Interior", Caption: c.interior(),
@@ -54,8 +54,8 @@ func figuresOf(r *record.Run, groups []markGroup) []*page.Figure {
 				{Name: "pH", Height: 120, Curves: []page.Curve{{Column: "ph", Role: "ink"}}},
 				{Name: "Concentration", Unit: "mmol/kg", Height: 120, Log: logWorthy(r, "dic", "alkalinity"), Curves: []page.Curve{{Column: "dic", Role: "ink"}, {Column: "alkalinity", Role: "ink", Dash: "dashed"}}},
 			}},
-		{ID: "zone", Title: "The planet's flux between the zone limits", Caption: c.zone(),
-			Panels: []page.Panel{{Name: "Flux over the Earth's today", Height: 230, Curves: []page.Curve{
+		{ID: "zone", Title: "The planet’s flux between the zone limits", Caption: c.zone(),
+			Panels: []page.Panel{{Name: "Flux over the Earth’s today", Height: 230, Curves: []page.Curve{
 				{Column: "zone_early_mars", Upper: "zone_recent_venus", Name: "optimistic zone", Role: "zone.outer", Kind: page.Band},
 				{Column: "zone_outer", Upper: "zone_inner", Name: "conservative zone", Role: "zone.inner", Kind: page.Band},
 				{Column: "flux", Name: "the planet", Role: "ink", Wide: true},
@@ -202,14 +202,16 @@ func age(gyr float64) string { return num.Pretty(num.Age(gyr)) }
 func pressure(bar float64) string { return num.Pretty(num.Pressure(bar)) }
 
 // fromTo words a change from the first to the last value.
-func fromTo(a, b string, up bool) string {
+func fromTo(a, b string, up bool) string { return change(a, b, up, "rises", "falls") }
+
+func change(a, b string, up bool, rises, falls string) string {
 	switch {
 	case a == b:
 		return "stays at " + a
 	case up:
-		return "rises from " + a + " to " + b
+		return rises + " from " + a + " to " + b
 	}
-	return "falls from " + a + " to " + b
+	return falls + " from " + a + " to " + b
 }
 
 func (c *captions) history() []string {
@@ -321,7 +323,7 @@ func (c *captions) interior() []string {
 	r := c.r
 	var out []string
 	if e := extremes(r, "mantle_temperature"); e.ok {
-		out = append(out, "The mantle "+fromTo(pretty(e.first, 4, e.unit), pretty(e.last, 4, e.unit), e.last > e.first)+".")
+		out = append(out, "The mantle "+change(pretty(e.first, 4, e.unit), pretty(e.last, 4, e.unit), e.last > e.first, "warms", "cools")+".")
 	}
 	if e := extremes(r, "heat_flow"); e.ok {
 		out = append(out, "Its heat flow "+fromTo(pretty(e.first, 3, e.unit), pretty(e.last, 3, e.unit), e.last > e.first)+".")
@@ -349,7 +351,7 @@ func (c *captions) zone() []string {
 	r := c.r
 	var out []string
 	if e := extremes(r, "flux"); e.ok {
-		out = append(out, "The planet's flux goes from "+pretty(e.first, 3, "")+" to "+pretty(e.last, 3, "")+" times the Earth's today.")
+		out = append(out, "The planet’s flux goes from "+pretty(e.first, 3, "")+" to "+pretty(e.last, 3, "")+" times the Earth’s today.")
 	}
 	for _, s := range r.Stays {
 		name := clip(clean(s.Name), 40)

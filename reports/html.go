@@ -138,7 +138,9 @@ type runBody struct {
 	Date, Ago                      string
 	Strip                          *strip
 	MarginWords                    []string
+	RefAge                         string
 	Doubts                         []record.Warning
+	FirstDoubts, MoreDoubts        []record.Warning // those in view, and the rest
 	Facts                          []fact
 	Solved                         []fact
 	InputGroups                    []inputGroup
@@ -173,6 +175,11 @@ func (b *runBody) fill() {
 	for _, w := range r.Warnings {
 		b.Doubts = append(b.Doubts, record.Warning{About: clean(w.About), Words: sentence(w.Words)})
 	}
+	b.FirstDoubts = b.Doubts
+	if len(b.Doubts) > 6 {
+		b.FirstDoubts, b.MoreDoubts = b.Doubts[:5], b.Doubts[5:]
+	}
+	b.RefAge = age(r.Reference.AgeGyr)
 	b.Facts = factsOf(r)
 	b.Solved = solverFacts(r)
 	for _, in := range r.Inputs {

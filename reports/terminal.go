@@ -86,6 +86,9 @@ func Terminal(w io.Writer, r *record.Run, opt TerminalOptions) error {
 	tail.out = tail.out[4:]
 
 	t.doubts(r.Warnings, max(terminalLines-len(t.out)-len(tail.out), 2))
+	if len(t.out)+len(tail.out) < terminalLines {
+		t.line("")
+	}
 	t.out = append(t.out, tail.out...)
 	_, err := io.WriteString(w, strings.Join(t.out, "\n")+"\n")
 	return err
@@ -319,19 +322,12 @@ func solverWords(r *record.Run) string {
 	if words != "" {
 		words += ", "
 	}
-	rejected := 0
-	for _, n := range s.Rejected {
-		rejected += n
-	}
-	words += fmt.Sprintf("tolerance %s, %d steps, %d rejected", num.Short(s.RelTol, 2), s.Steps, rejected)
+	words += fmt.Sprintf("tolerance %s, %d steps", num.Short(s.RelTol, 2), s.Steps)
 	if !s.Guard {
 		words += ", stability guard off"
 	}
-	if st := clean(s.Status); st != "" && st != "finished" {
-		words += ", " + st
-	}
 	if known(r.CarbonDrift) {
-		words += ", carbon closes to " + num.Short(r.CarbonDrift, 2)
+		words += ", carbon to " + num.Short(r.CarbonDrift, 2)
 	}
 	return words
 }

@@ -9,8 +9,8 @@ import (
 
 // The sums that build.sh printed.
 const (
-	sumGzip  = "f44f0c51e50658f646437d0abc924cc2e68709ea62b5935e5ae4597abd3ef7e1"
-	sumPlain = "f441babf197f98fa9346149d6e847f3fdc55f66f7db16b74e152705a9d650ed3"
+	sumGzip  = "f9e3e63ac6930c75c7fa5495f7678488b8d319914f67f94704c49c3130608d6b"
+	sumPlain = "b4f36a4ce849f030a02893f97dfa11f8ebaf5985f084570c3d60e50c590cc069"
 )
 
 func TestECharts(t *testing.T) {

@@ -124,7 +124,7 @@ func Date(gyr, err float64) string {
 	}
 	err = math.Abs(err)
 	if err < 0.5e-4 {
-		return Fix(gyr, 4) + " ± <0.0001 Gyr"
+		return Fix(gyr, 4) + " Gyr ± under 0.1 Myr"
 	}
 	d := min(max(int(math.Ceil(-math.Log10(err)-1e-9)), 2), 4)
 	return Fix(gyr, d) + " ± " + Fix(err, d) + " Gyr"

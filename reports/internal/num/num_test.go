@@ -32,7 +32,7 @@ func TestNumbers(t *testing.T) {
 		{Date(1.9391, 0.002), "1.939 ± 0.002 Gyr"},
 		{Date(1.93918, 0.00031), "1.9392 ± 0.0003 Gyr"},
 		{Date(1.93918, 0.5), "1.94 ± 0.50 Gyr"},
-		{Date(1.93918, 1e-9), "1.9392 ± <0.0001 Gyr"},
+		{Date(1.93918, 1e-9), "1.9392 Gyr ± under 0.1 Myr"},
 		{Date(1.93918, nan), "1.939 Gyr (numerical error not known)"},
 		{Date(nan, 1), Missing},
 		{Ago(1.94, 4.57), "2.63 Gyr before"},

@@ -35,15 +35,14 @@ type MarkLine struct{ Number, Name, Date string }
 
 // A Panel is one pair of axes.
 type Panel struct {
-	Name    string // of the vertical axis
-	Unit    string
-	Log     bool
-	Mirror  bool // values below zero are shown without their sign (a ledger)
-	Height  int  // pixels
-	Curves  []Curve
-	Limits  []Limit
-	Rail    bool // climate states and marks instead of curves
-	Missing string
+	Name   string // of the vertical axis
+	Unit   string
+	Log    bool
+	Mirror bool // values below zero are shown without their sign (a ledger)
+	Height int  // pixels
+	Curves []Curve
+	Limits []Limit
+	Rail   bool // climate states and marks instead of curves
 }
 
 // How a curve is drawn.
@@ -65,6 +64,7 @@ type Curve struct {
 	Wide   bool
 
 	// Filled by the kit.
+	Lone   bool // the only curve of its panel: it needs no telling apart
 	Unit   string
 	Figure string
 	Index  int // among all curves of the page
@@ -73,8 +73,8 @@ type Curve struct {
 
 // A Limit is a line across a panel at a value that means something.
 type Limit struct {
-	Value float64
-	Words string
+	Value float64 `json:"value"`
+	Words string  `json:"words"` // "" for a plain line
 }
 
 // A Table shows a thin choice of the rows behind a figure.
@@ -86,9 +86,10 @@ type Table struct {
 }
 
 const (
-	railHeight  = 74
-	gapHeight   = 46 // between panels: name of the axis above each
-	topHeight   = 26
+	railHeight  = 29 // and a row for each label
+	railRow     = 15
+	gapHeight   = 50 // between panels: name of the axis above each
+	topHeight   = 30
 	footHeight  = 46
 	thinBuckets = 360
 )
@@ -125,6 +126,7 @@ func (f *Figure) finish(d *Data, index *int, also []float64) error {
 	for i := range f.Panels {
 		unite(f.Panels[i].Curves, d.Rows)
 		for j := range f.Panels[i].Curves {
+			f.Panels[i].Curves[j].Lone = len(f.Panels[i].Curves) == 1
 			f.Curves = append(f.Curves, &f.Panels[i].Curves[j])
 		}
 	}
@@ -209,7 +211,7 @@ func (f *Figure) build() error {
 	for i, p := range f.Panels {
 		height := p.Height
 		if p.Rail {
-			height = railHeight
+			height = railHeight + railRow*min(max(len(f.Marks), 1), 4)
 		}
 		if i == 0 && p.Rail {
 			top = 4
@@ -235,7 +237,7 @@ func (f *Figure) build() error {
 		if p.Unit != "" {
 			name += ", " + num.Unit(p.Unit)
 		}
-		ya := opts.YAxis{Type: kind, GridIndex: i, Name: name, NameLocation: "end", NameGap: 9,
+		ya := opts.YAxis{Type: kind, GridIndex: i, Name: name, NameLocation: "end", NameGap: 13,
 			Show: opts.Bool(!p.Rail), AxisLabel: &opts.AxisLabel{Formatter: format}, SplitNumber: 4}
 		chart.ExtendXAxis(xa)
 		chart.ExtendYAxis(ya)
@@ -262,20 +264,7 @@ func (f *Figure) build() error {
 			}
 			chart.MultiSeries = append(chart.MultiSeries, s)
 		}
-		if len(p.Limits) > 0 {
-			s := charts.SingleSeries{Type: types.ChartLine, Id: fmt.Sprint("limits", i), XAxisIndex: i, YAxisIndex: i}
-			lines := []any{}
-			for _, l := range p.Limits {
-				if missing(l.Value) || p.Log && l.Value <= 0 {
-					continue
-				}
-				lines = append(lines, opts.MarkLineNameYAxisItem{Name: l.Words, YAxis: l.Value})
-			}
-			s.MarkLines = &opts.MarkLines{Data: lines, MarkLineStyle: opts.MarkLineStyle{Symbol: []string{"none", "none"},
-				Label:     &opts.Label{Show: opts.Bool(true), Position: "insideStartTop", Formatter: "@limit", Color: "@quiet"},
-				LineStyle: &opts.LineStyle{Color: "@quiet", Type: "dashed", Width: 1}}}
-			chart.MultiSeries = append(chart.MultiSeries, s)
-		}
+		chart.MultiSeries = append(chart.MultiSeries, charts.SingleSeries{Type: types.ChartCustom, Id: fmt.Sprint("limits", i), XAxisIndex: i, YAxisIndex: i, RenderItem: "@limits"})
 		top += height + gapHeight
 	}
 	f.Height = top - gapHeight + footHeight
@@ -299,10 +288,10 @@ func (f *Figure) spec() map[string]any {
 		for _, c := range p.Curves {
 			curves = append(curves, map[string]any{"id": fmt.Sprint("curve", c.Index), "index": c.Index, "column": c.Column, "upper": c.Upper, "kind": c.Kind, "name": c.Name, "unit": c.Unit})
 		}
-		limits := []float64{}
+		limits := []Limit{}
 		for _, l := range p.Limits {
 			if !missing(l.Value) && !(p.Log && l.Value <= 0) {
-				limits = append(limits, l.Value)
+				limits = append(limits, l)
 			}
 		}
 		panels = append(panels, map[string]any{"log": p.Log, "rail": p.Rail, "curves": curves, "limits": limits})

@@ -64,6 +64,12 @@ function show(v, digits) {
   return minus(String(Number(v.toFixed(Math.max(digits - 1 - e, 0)))));
 }
 
+// A value with its unit; a small pressure in ppm, as in the captions.
+function quantity(v, unit) {
+  if (unit === "bar" && Math.abs(v) < 0.01) return show(v * 1e6, 4) + " ppm";
+  return Number.isFinite(v) ? show(v, 4) + (unit ? " " + unit : "") : "–";
+}
+
 const exact = (v, digits) => (Number.isFinite(v) ? String(Number(v.toPrecision(digits)) || 0) : "");
 
 // ---- state of the page ---------------------------------------------------
@@ -147,8 +153,9 @@ function range(panel, few) {
       for (const j of rows) take(v[j]);
     }
   }
-  if (lo > hi) return panel.log ? { min: 0.1, max: 10 } : { min: 0, max: 1, interval: 0.5 };
-  for (const l of panel.limits) {
+  if (lo > hi) return panel.log ? { min: 0.1, max: 10, ticks: [0.1, 1, 10] } : { min: 0, max: 1, ticks: [0, 0.5, 1] };
+  const least = lo, most = hi;
+  for (const { value: l } of panel.limits) {
     if (panel.log) {
       const room = isWhole() ? 4 : 0.5;
       if (l > lo * 10 ** -room && l < hi * 10 ** room) take(l);
@@ -161,9 +168,9 @@ function range(panel, few) {
     let a = Math.floor(Math.log10(lo) + 1e-6), b = Math.ceil(Math.log10(hi) - 1e-6);
     if (a >= b) b = a + 1;
     const step = Math.max(1, Math.ceil((b - a) / (few ? 4 : 6)));
-    a = Math.floor(a / step) * step;
-    b = Math.ceil(b / step) * step;
-    return { min: 10 ** a, max: 10 ** b, interval: step };
+    const ticks = [];
+    for (let e = Math.ceil(a / step) * step; e <= b; e += step) ticks.push(10 ** e);
+    return { min: 10 ** a, max: 10 ** b, ticks };
   }
   if (hi === lo) {
     const pad = Math.abs(hi) * 0.05 || 1;
@@ -171,7 +178,17 @@ function range(panel, few) {
     hi += pad;
   }
   const step = niceStep(hi - lo, few ? 3 : 4);
-  return { min: Math.floor(lo / step + 1e-6) * step, max: Math.ceil(hi / step - 1e-6) * step, interval: step };
+  let min = Math.floor(lo / step + 1e-6) * step, max = Math.ceil(hi / step - 1e-6) * step;
+  // A curve that runs along the frame is hard to see.
+  if (least - min < 0.02 * (max - min) && Math.abs(min) > step / 2) min -= step / 2;
+  if (max - most < 0.02 * (max - min) && Math.abs(max) > step / 2) max += step / 2;
+  return { min, max, ticks: ticksIn(min, max, step) };
+}
+
+function ticksIn(min, max, step) {
+  const out = [];
+  for (let k = Math.ceil(min / step - 1e-6); k * step <= max + 1e-6 * step; k++) out.push(Number((k * step).toPrecision(12)));
+  return out;
 }
 
 // ---- what the options may name -------------------------------------------
@@ -187,7 +204,6 @@ const formatters = {
     if (view.clock === "age") return show(v, 6);
     return Math.abs(v) < 1e-12 ? "0" : v < 0 ? show(-v, 6) : "+" + show(v, 6);
   },
-  "@limit": (p) => p.name,
 };
 const names = {
   "@clock": () => (view.clock === "age" ? "Age of the star, Gyr" : "Gyr before (+ after) " + show(page.present, 4) + " Gyr"),
@@ -200,6 +216,41 @@ const pen = document.createElement("canvas").getContext("2d");
 function widthOf(text, size) {
   pen.font = size + "px " + font;
   return pen.measureText(text).width;
+}
+
+// Finds places for the labels of marks in four rows over the band: no label
+// on another, no leader through a label; a number alone where the words do not
+// fit. A short search finds the best it can.
+function arrange(marks, left, right) {
+  let best = null, bestCost = Infinity, nodes = 0;
+  const placed = [];
+  const fits = (c) => placed.every((q) => {
+    if (q.row === c.row && c.a < q.a + q.w + 8 && c.a + c.w + 8 > q.a) return false;
+    if (q.row >= c.row && q.x > c.a - 3 && q.x < c.a + c.w + 3) return false;
+    return !(c.row >= q.row && c.x > q.a - 3 && c.x < q.a + q.w + 3);
+  });
+  const search = (k, cost) => {
+    if (cost >= bestCost || nodes++ > 4000) return;
+    if (k === marks.length) {
+      best = placed.slice();
+      bestCost = cost;
+      return;
+    }
+    const m = marks[k];
+    for (const words of m.text === m.number ? [m.number] : [m.text, m.number]) {
+      const w = widthOf(words, 11);
+      for (let row = 0; row < 4; row++) for (const a of words === m.number ? [m.x - w / 2] : [m.x - 3, m.x - w + 3]) {
+        const c = { x: m.x, a, w, row, words };
+        if (a < left || a + w > right || !fits(c)) continue;
+        placed.push(c);
+        search(k + 1, cost + (words === m.text ? 0 : 1) + row * 0.01);
+        placed.pop();
+      }
+    }
+    search(k + 1, cost + 3);
+  };
+  search(0, 0);
+  return best || [];
 }
 
 function drawers(fig, tone, areas, narrow) {
@@ -223,9 +274,19 @@ function drawers(fig, tone, areas, narrow) {
     "@shade": (params, api) => {
       const c = box(params);
       const children = spans(api, c).filter((s) => s.e.role !== "state.temperate").map((s) => ({
-        type: "rect", shape: { x: s.a, y: s.y, width: Math.max(s.b - s.a, 0.5), height: s.h }, style: { fill: tone("@" + s.e.role), opacity: 0.24 },
+        type: "rect", shape: { x: s.a, y: s.y, width: Math.max(s.b - s.a, 0.5), height: s.h }, style: { fill: tone("@" + s.e.role), opacity: s.e.role === "state.snowball" ? 0.4 : 0.24 },
       }));
-      return { type: "group", children: children.concat(outcome(api, c, c.y)) };
+      return { type: "group", children };
+    },
+    "@limits": (params, api) => {
+      const c = box(params), panel = fig.panels[Number(params.seriesId.slice(6))], children = outcome(api, c, c.y);
+      for (const l of panel.limits) {
+        const y = api.coord([view.from - shift(), l.value])[1];
+        if (y < c.y - 0.5 || y > c.y + c.height + 0.5) continue;
+        children.push({ type: "line", shape: { x1: c.x, x2: c.x + c.width, y1: y, y2: y }, style: { stroke: tone("@quiet"), lineWidth: 1, lineDash: l.words ? [5, 3] : null } });
+        if (l.words) children.push({ type: "text", style: { x: c.x + 4, y: y > c.y + 16 ? y - 3 : y + 15, text: l.words, fontSize: 11, fontFamily: font, fill: tone("@quiet"), stroke: tone("@panel"), lineWidth: 3, verticalAlign: "bottom" } });
+      }
+      return { type: "group", children };
     },
     "@area": (params, api) => {
       const area = areas.get(params.seriesId);
@@ -253,33 +314,17 @@ function drawers(fig, tone, areas, narrow) {
           children.push({ type: "text", silent: true, style: { x: (s.a + s.b) / 2, y: y + band / 2 + 0.5, text: s.e.name, align: "center", verticalAlign: "middle", fontSize: 11, fontFamily: font, fill: textOn(s.e.role, tone) } });
         }
       }
-      const rows = [];
+      const labelled = [];
       for (const m of page.marks) {
         if (m.time < view.from || m.time > view.to) continue;
         const x = api.coord([m.time - shift(), 0])[0];
         children.push({ type: "line", shape: { x1: x, x2: x, y1: y - (m.number ? 4 : 2), y2: y }, style: { stroke: tone("@ink"), lineWidth: 1 } });
-        if (!m.number) continue;
-        const place = (text) => {
-          const w = widthOf(text, 11);
-          for (let r = 0; r < 3; r++) {
-            const taken = rows[r] || (rows[r] = []);
-            for (const a of [x - 3, x - w + 3]) {
-              if (a < c.x - 8 || a + w > c.x + c.width + 8) continue;
-              if (taken.some(([p, q]) => a < q + 8 && a + w > p - 8)) continue;
-              // The leader of a higher row must not cross a lower label.
-              if (rows.slice(0, r).some((low) => low.some(([p, q]) => x > p - 2 && x < q + 2))) continue;
-              taken.push([a, a + w]);
-              return { a, r };
-            }
-          }
-          return null;
-        };
-        let text = narrow ? m.number : clip(m.number + " " + m.name, 48), spot = place(text);
-        if (!spot && text !== m.number) spot = place((text = m.number));
-        if (!spot) continue;
-        const ty = y - 7 - spot.r * 15;
-        children.push({ type: "line", shape: { x1: x, x2: x, y1: ty + 1, y2: y }, style: { stroke: tone("@quiet"), lineWidth: 0.7 } });
-        children.push({ type: "text", silent: true, style: { x: spot.a, y: ty, text, fontSize: 11, fontFamily: font, fill: tone("@ink"), verticalAlign: "bottom" } });
+        if (m.number) labelled.push({ x, number: m.number, text: narrow ? m.number : clip(m.number + " " + m.name, 48) });
+      }
+      for (const l of arrange(labelled, c.x - 8, c.x + c.width + 8)) {
+        const ty = y - 7 - l.row * 15;
+        children.push({ type: "line", shape: { x1: l.x, x2: l.x, y1: ty + 1, y2: y }, style: { stroke: tone("@quiet"), lineWidth: 0.7 } });
+        children.push({ type: "text", style: { x: l.a, y: ty, text: l.words, fontSize: 11, fontFamily: font, fill: tone("@ink"), verticalAlign: "bottom" } });
       }
       return { type: "group", children };
     },
@@ -317,6 +362,7 @@ function optionOf(fig, width, isDark, extra) {
   o.textStyle = { fontFamily: font, color: tone("@ink") };
   o.grid = [].concat(o.grid);
   o.grid.forEach((g) => {
+    g.outerBoundsMode = "none"; // the kit reserves the room itself, so that all time axes align
     g.left = narrow ? 52 : 64;
     g.right = narrow ? 12 : 18;
     g.top = Number(g.top) + top;
@@ -328,20 +374,26 @@ function optionOf(fig, width, isDark, extra) {
     const last = i === o.xAxis.length - 1;
     a.min = view.from - s;
     a.max = view.to - s;
-    a.interval = step;
+    const ticks = ticksIn(view.from - s, view.to - s, step);
     a.axisLine = { show: !fig.panels[i].rail, onZero: false, lineStyle: { color: tone("@quiet") } };
-    a.axisTick = { show: last, lineStyle: { color: tone("@quiet") } };
-    a.splitLine = { show: !fig.panels[i].rail, showMinLine: false, showMaxLine: false, lineStyle: { color: tone("@rule"), opacity: 0.7 } };
-    a.axisLabel = { ...a.axisLabel, color: tone("@quiet"), fontSize: 12, hideOverlap: true, showMinLabel: false, showMaxLabel: false };
+    a.axisTick = { show: last, customValues: ticks, lineStyle: { color: tone("@quiet") } };
+    a.splitLine = { show: !fig.panels[i].rail, lineStyle: { color: tone("@rule"), opacity: 0.7 } };
+    a.axisLabel = { ...a.axisLabel, color: tone("@quiet"), fontSize: 12, customValues: ticks, hideOverlap: true, showMinLabel: true, showMaxLabel: true };
     a.nameTextStyle = { color: tone("@quiet"), fontSize: 12 };
   });
   o.yAxis.forEach((a, i) => {
-    if (fig.panels[i].rail) { a.min = 0; a.max = 1; return; }
-    Object.assign(a, range(fig.panels[i], o.grid[i].height < 130));
+    if (fig.panels[i].rail) {
+      a.min = 0;
+      a.max = 1;
+      return;
+    }
+    const r = range(fig.panels[i], o.grid[i].height < 125);
+    a.min = r.min;
+    a.max = r.max;
     a.axisLine = { show: false };
-    a.axisTick = { show: false };
+    a.axisTick = { show: false, customValues: r.ticks };
     a.splitLine = { lineStyle: { color: tone("@rule") } };
-    a.axisLabel = { ...a.axisLabel, color: tone("@quiet"), fontSize: 12 };
+    a.axisLabel = { ...a.axisLabel, color: tone("@quiet"), fontSize: 12, customValues: r.ticks, hideOverlap: true, showMinLabel: true, showMaxLabel: true };
     a.nameTextStyle = { color: tone("@ink"), fontSize: 12.5, fontWeight: 600, align: "left", padding: [0, 0, 0, -(narrow ? 50 : 60)] };
   });
   const byId = new Map();
@@ -352,17 +404,9 @@ function optionOf(fig, width, isDark, extra) {
     r.clip = true;
     r.animation = false;
     if (!byId.has(r.id)) {
-      r.data = r.type === "custom" ? [[view.from - s, 0.5]] : [];
       const axis = o.yAxis[r.yAxisIndex || 0];
-      if (r.type === "custom" && axis.min !== undefined) r.data = [[view.from - s, axis.min]];
-      r.z = r.type === "custom" ? 1 : 3;
-      if (r.markLine) {
-        r.markLine.silent = true;
-        r.markLine.animation = false;
-        r.markLine.data = r.markLine.data.filter((d) => d.yAxis >= axis.min && d.yAxis <= axis.max);
-        r.markLine.label.fontSize = 11;
-        r.markLine.label.distance = 2;
-      }
+      r.data = [[view.from - s, axis.min]];
+      r.z = r.id.startsWith("limits") ? 5 : 1;
       continue;
     }
     const [panel, curve] = byId.get(r.id);
@@ -601,7 +645,7 @@ try {
       figures.push({ ...spec, el, stage, chart });
       for (const p of spec.panels) for (const c of p.curves) {
         const v = columns.get(c.column).values, u = c.upper ? columns.get(c.upper).values : null;
-        units.set(c.index, (j) => (u ? show(v[j], 4) + " to " + show(u[j], 4) : show(v[j], 4)) + (c.unit ? " " + c.unit : ""));
+        units.set(c.index, (j) => (u ? show(v[j], 4) + " to " + show(u[j], 4) + " " + c.unit : quantity(v[j], c.unit)).trim());
       }
     }
     for (const f of figures) pointing(f);
