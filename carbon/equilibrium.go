@@ -94,7 +94,7 @@ func bracketed(f func(float64) float64, a, b, fa, fb, tol float64) float64 {
 func (m *Model) growth(sun, t, p, c, alk float64) float64 {
 	return fd.Derivative(func(x float64) float64 {
 		return m.imbalance(sun, x, m.set.ocean.law.Solve(c, alk, x).P)
-	}, t, &fd.Settings{Formula: fd.Central, Step: 1e-3})
+	}, t, &fd.Settings{Formula: fivePoint, Step: 1e-2})
 }
 
 // steady is a state in energy balance at one age, with the sinks there.
@@ -110,6 +110,12 @@ func (m *Model) steadyAt(d *memo, t float64) (s steady, low, high bool) {
 	if low || high {
 		return s, low, high
 	}
+	return m.steadyWith(d, t, p), false, false
+}
+
+// steadyWith completes a state that is in balance at temperature t and CO₂
+// pressure p.
+func (m *Model) steadyWith(d *memo, t, p float64) (s steady) {
 	r := &s.row
 	r.Age, r.Temperature, r.PCO2 = d.age, t, p
 	r.Sunlight, r.LandFraction, r.Biology, r.Crust = 4*d.sun, d.land, d.biology, d.flow.Crust
@@ -123,7 +129,7 @@ func (m *Model) steadyAt(d *memo, t float64) (s steady, low, high bool) {
 	}
 	r.Surface, s.alk = c, alk
 	s.grow = m.growth(d.sun, t, p, c, alk)
-	return s, false, false
+	return s
 }
 
 // growthAlong returns growth at temperature t along the energy balance; ok is
@@ -300,6 +306,17 @@ func (m *Model) start() (y State, words string) {
 		// No steady carbon cycle on the warm branch: start at its cold end,
 		// where weathering is as weak as it gets, if sources are still weaker.
 		return z, "no warm equilibrium at the start age: the end of the warm branch"
+	}
+	// Sunlight above what a warm surface can shed with the least CO₂ leaves no
+	// warm climate either; from the warm side that is a hot planet, even where a
+	// frozen one could reflect as much.
+	if p, _ := m.pressures(); s.StartSide != "cold" {
+		if t := math.Min(s.Strato.T, m.top()) - 1; m.imbalance(d.sun, t, p) > 0 {
+			y.T = t
+			y.Surface, y.Alk = m.carbonAt(p, t, m.ref.Total()*m.area)
+			y.Mantle = total - y.Surface
+			return y, "no warm climate at the start age: sunlight exceeds what a warm surface can shed"
+		}
 	}
 	z, found, any = scan(s.FrozenBelow, lo, all)
 	if found || any {
