@@ -18,6 +18,7 @@ type eventState struct {
 	stale   bool // g1 does not belong to the end of the step last taken
 	total   int
 	hits    []bool // fires at the end of this step
+	fresh   []bool // fired at the start of this step: its value there is rounding
 
 	records []EventRecord
 	fired   int
@@ -48,7 +49,7 @@ func (s *Solver) initEvents() error {
 	ev.g0, ev.g1 = make([]float64, k), make([]float64, k)
 	ev.gs = make([]float64, nSamples*k)
 	ev.noise, ev.lastT = make([]float64, k), make([]float64, k)
-	ev.count, ev.hits = make([]int, k), make([]bool, k)
+	ev.count, ev.hits, ev.fresh = make([]int, k), make([]bool, k), make([]bool, k)
 	ev.cand = make([]candidate, k)
 	return nil
 }
@@ -59,7 +60,7 @@ func (s *Solver) startEvents() {
 	ev.known = false
 	for i := range ev.side {
 		ev.side[i], ev.count[i], ev.lastT[i], ev.noise[i] = 0, 0, math.NaN(), 0
-		ev.hits[i] = false
+		ev.hits[i], ev.fresh[i] = false, false
 	}
 }
 
@@ -156,7 +157,7 @@ func (s *Solver) scanOne(i int, h float64, c *candidate) {
 	at := 0
 	for j := 0; j < k; j++ {
 		v := g[j]
-		if a := math.Abs(v); j > 0 || side != 0 {
+		if a := math.Abs(v); j > 0 || side != 0 && !ev.fresh[i] {
 			if a < lo {
 				lo, at = a, j
 			}
@@ -203,6 +204,9 @@ func (s *Solver) scanOne(i int, h float64, c *candidate) {
 			s.dip(e, c, cur, th[max(at-1, 0)], x, th[min(at+1, k-1)])
 			return
 		}
+	}
+	if ev.fresh[i] {
+		a = max(a, 0x1p-6) // what lies nearer is the zero just passed
 	}
 	// Golden section for the least value.
 	const phi = 0.6180339887498949
@@ -343,7 +347,7 @@ func (s *Solver) locateEvents(h, tEnd float64) (float64, outcome) {
 		if len(ev.cand) > 1 {
 			for i := range ev.cand {
 				d := &ev.cand[i]
-				if i == first || !d.on || d.a*h >= lo {
+				if i == first || !d.on || s.second(i) && d.a*h >= lo {
 					continue
 				}
 				if taken != lo && lo > 0 {
@@ -377,7 +381,7 @@ func (s *Solver) locateEvents(h, tEnd float64) (float64, outcome) {
 			if yes, _ := s.crossed(i, s.t+s.dir*end); yes {
 				continue
 			}
-			x := min(end+2*tol, h)
+			x := min(end+16*tol, h)
 			if !s.retakeTo(x, &taken) {
 				return 0, s.lastOutcome
 			}
@@ -395,7 +399,7 @@ func (s *Solver) locateEvents(h, tEnd float64) (float64, outcome) {
 		for i := range ev.cand {
 			d := &ev.cand[i]
 			ev.hits[i] = false
-			if !d.on || d.a*h >= end {
+			if !d.on || i != first && s.second(i) && d.a*h >= end {
 				continue
 			}
 			if yes, v := s.crossed(i, te); yes {
@@ -412,6 +416,13 @@ func (s *Solver) locateEvents(h, tEnd float64) (float64, outcome) {
 		return 0, s.lastOutcome
 	}
 	return h, outcomeOK
+}
+
+// second reports whether the crossing of candidate i follows another one in
+// the same step that does not count: before that, the event function is
+// already on the far side.
+func (s *Solver) second(i int) bool {
+	return s.ev.side[i] == s.ev.cand[i].sense
 }
 
 func (s *Solver) retakeTo(x float64, taken *float64) bool {
@@ -444,17 +455,17 @@ func (s *Solver) locateOne(i int, h, tol float64, taken *float64) (lo, hi float6
 	// A narrow bracket around the root on the dense output, widened until it
 	// holds the crossing.
 	w := max(tol, 1e-6*(b-a))
-	hi = min(x+w, b)
+	hi = min(x+w, h)
 	if h-hi <= tol {
-		hi = b
+		hi = h
 	}
 	fhi, fine := eval(hi)
 	if !fine {
 		return fail()
 	}
-	for fhi < 0 && hi < b {
+	for fhi < 0 && hi < h { // the dense output may be late
 		w *= 30
-		hi = min(hi+w, b)
+		hi = min(hi+w, h)
 		if fhi, fine = eval(hi); !fine {
 			return fail()
 		}
@@ -547,8 +558,13 @@ func (s *Solver) fire() bool {
 		}
 		ev.g0[i] = g
 		ev.side[i] = sign8(g)
-		if changed && ev.hits[i] && math.Abs(g) <= ev.noise[i] {
-			ev.side[i] = 0
+		ev.fresh[i] = ev.hits[i] && math.Abs(g) <= ev.noise[i]
+		if ev.fresh[i] {
+			// Known where the crossing leads, unless the state was changed.
+			ev.side[i] = ev.cand[i].sense
+			if changed {
+				ev.side[i] = 0
+			}
 		}
 	}
 	if changed {

@@ -79,7 +79,8 @@ type Settings struct {
 
 	// AbsTol is the noise floor: below it a component is not resolved
 	// relatively. One value for all components or one each; nil means
-	// 1e-3·RelTol of the largest |y_i| seen so far in the run.
+	// 1e-3·RelTol of the largest |y_i| seen so far in the run, which suits
+	// components that do not start near zero.
 	AbsTol []float64
 
 	InitialStep float64 // length of the first step; 0 means chosen by the solver
@@ -91,6 +92,11 @@ type Settings struct {
 	// NonNegative lists components that may not fall below zero. A step that
 	// ends below -AbsTol is rejected; an end between -AbsTol and 0 is set to 0.
 	NonNegative []int
+
+	// Dense holds the dense output to the tolerance also inside steps whose
+	// ends are more accurate than their inside. It is implied by IntegrateAt
+	// and by events.
+	Dense bool
 
 	Guard Guard
 }

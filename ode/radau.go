@@ -34,6 +34,7 @@ type radau struct {
 	theta     float64 // contraction of the last iteration
 	eta       float64
 	iters     int
+	kappa     float64 // size of the last Newton correction, in tolerances, that ends the iteration
 	lin       []csystem
 	firstStep bool // of a run or after a restart
 	jacFresh  bool // s.jac belongs to (t, y)
@@ -422,7 +423,7 @@ func (s *Solver) radauTry(h, tEnd float64) outcome {
 	} else {
 		clear(r.z)
 	}
-	kappa := max(10*eps/s.rtol, min(0.03, math.Sqrt(s.rtol)))
+	kappa := r.kappa
 	maxIt := 7 + 2*(ns-3)
 	if !reused || r.eta == 0 {
 		r.eta = 1
@@ -432,11 +433,14 @@ func (s *Solver) radauTry(h, tEnd float64) outcome {
 		eta = eps
 	}
 	dOld, theta := 0.0, math.Abs(r.theta)
-	for i := range n {
-		s.sol[i] = 1 / (s.atol[i] + s.rtol*math.Abs(s.y[i]))
-	}
 	wt := s.rhsW
-	copy(wt, s.sol)
+	for i := range wt {
+		sc := s.atol[i] + s.rtol*max(math.Abs(s.y[i]), math.Abs(h*s.f0[i]))
+		wt[i] = 0
+		if sc > tinyScale {
+			wt[i] = 1 / sc
+		}
+	}
 	it := 0
 	for {
 		if it == maxIt {
