@@ -32,10 +32,7 @@ func figuresOf(r *record.Run, groups []markGroup) []*page.Figure {
 				{Name: "Sunlight left to the radiation limit", Unit: "%", Height: 130, Limits: []page.Limit{{Value: 0, Words: "the radiation limit"}}, Curves: []page.Curve{{Column: "hot_margin", Role: "ink"}}},
 			}},
 		{ID: "fluxes", Title: "Ledger of carbon fluxes", Caption: c.fluxes(),
-			Panels: []page.Panel{
-				{Name: "Sources up, sinks down", Unit: "Tmol/yr", Mirror: true, Height: 240, Limits: []page.Limit{{Value: 0}}, Curves: fluxCurves(r)},
-				{Name: "Imbalance", Unit: "Tmol/yr", Height: 90, Limits: []page.Limit{{Value: 0, Words: "balance"}}, Curves: []page.Curve{{Column: "imbalance", Role: "ink"}}},
-			}},
+			Panels: fluxPanels(r)},
 		{ID: "reservoirs", Title: "Carbon reservoirs", Caption: c.reservoirs(),
 			Panels: []page.Panel{{Name: "Carbon", Unit: "Emol", Height: 230, Log: logWorthy(r, "surface_carbon", "seafloor_carbon", "continental_carbon", "mantle_carbon"), Curves: []page.Curve{
 				{Column: "mantle_carbon", Role: "pool.mantle", Wide: true},
@@ -46,8 +43,8 @@ func figuresOf(r *record.Run, groups []markGroup) []*page.Figure {
 			}}}},
 		{ID: "interior", Title: "Interior", Caption: c.interior(),
 			Panels: []page.Panel{
-				{Name: "Temperature", Unit: "K", Height: 130, Curves: []page.Curve{{Column: "mantle_temperature", Role: "ink"}, {Column: "core_temperature", Role: "ink", Dash: "dashed"}}},
-				{Name: "Heat", Unit: "TW", Height: 130, Curves: []page.Curve{{Column: "heat_flow", Role: "ink"}, {Column: "radiogenic", Role: "ink", Dash: "dashed"}, {Column: "core_heat", Role: "ink", Dash: "dotted"}}},
+				{Name: "Temperature", Unit: "K", Height: 130, Curves: used(r, page.Curve{Column: "mantle_temperature", Role: "ink"}, page.Curve{Column: "core_temperature", Role: "ink", Dash: "dashed"})},
+				{Name: "Heat", Unit: "TW", Height: 130, Curves: used(r, page.Curve{Column: "heat_flow", Role: "ink"}, page.Curve{Column: "radiogenic", Role: "ink", Dash: "dashed"}, page.Curve{Column: "core_heat", Role: "ink", Dash: "dotted"})},
 			}},
 		{ID: "ocean", Title: "Ocean", Caption: c.ocean(),
 			Panels: []page.Panel{
@@ -64,7 +61,7 @@ func figuresOf(r *record.Run, groups []markGroup) []*page.Figure {
 	for _, f := range figures {
 		for _, w := range r.Warnings {
 			if concerns(w.About, f.ID) {
-				f.Doubts = append(f.Doubts, clean(w.About)+": "+sentenceEnd(w.Words))
+				f.Doubts = append(f.Doubts, clean(w.About)+": "+typeset(sentenceEnd(w.Words)))
 			}
 		}
 	}
@@ -92,19 +89,58 @@ func sentenceEnd(s string) string {
 	return s
 }
 
-// fluxCurves leaves out a source that is zero throughout.
-func fluxCurves(r *record.Run) []page.Curve {
+// fluxPanels is the ledger: sources stacked above zero against sinks below it.
+// Where the sinks surge far beyond the sources, as they do after a thaw, one
+// linear axis would show the surges alone; then the sources have a panel of
+// their own and the sinks are set against their sum on a logarithmic axis.
+func fluxPanels(r *record.Run) []page.Panel {
+	sources := used(r,
+		page.Curve{Column: "metamorphic", Role: "flux.metamorphic", Kind: page.Stack},
+		page.Curve{Column: "arc", Role: "flux.arc", Kind: page.Stack},
+		page.Curve{Column: "ridge", Role: "flux.ridge", Kind: page.Stack},
+		page.Curve{Column: "pulse", Role: "flux.pulse", Kind: page.Stack})
+	sinks := used(r,
+		page.Curve{Column: "land_weathering", Role: "flux.land", Kind: page.Sink},
+		page.Curve{Column: "seafloor_weathering", Role: "flux.seafloor", Kind: page.Sink})
+	balance := page.Panel{Name: "Imbalance", Unit: "Tmol/yr", Trim: true, Height: 90, Limits: []page.Limit{{Value: 0, Words: "balance"}}, Curves: []page.Curve{{Column: "imbalance", Role: "ink"}}}
+	if surging(r) {
+		for i := range sinks {
+			sinks[i].Kind, sinks[i].Wide = page.Line, true
+		}
+		return []page.Panel{
+			{Name: "Sources", Unit: "Tmol/yr", Height: 120, Trim: true, Curves: sources},
+			{Name: "Sinks against all sources", Unit: "Tmol/yr", Height: 190, Log: true, Decades: 5, Curves: append([]page.Curve{{Column: "outgassing", Name: "All sources", Role: "ink", Dash: "dashed"}}, sinks...)},
+			balance,
+		}
+	}
+	return []page.Panel{
+		{Name: "Sources up, sinks down", Unit: "Tmol/yr", Mirror: true, Trim: true, Height: 240, Limits: []page.Limit{{Value: 0}}, Curves: append(sources, sinks...)},
+		balance,
+	}
+}
+
+// surging reports whether weathering exceeds the largest outgassing manyfold,
+// and does so at more than one moment.
+func surging(r *record.Run) bool {
+	out, n := extremes(r, "outgassing"), 0
+	for _, name := range []string{"land_weathering", "seafloor_weathering"} {
+		c, above := record.ColumnNamed(name), false
+		for i := range r.Rows {
+			is := c.Value(&r.Rows[i]) > 4*out.most
+			if is && !above {
+				n++
+			}
+			above = is
+		}
+	}
+	return out.ok && out.most > 0 && n > 1
+}
+
+// used leaves out what is zero throughout: a part of the model that is off.
+func used(r *record.Run, curves ...page.Curve) []page.Curve {
 	var out []page.Curve
-	for _, c := range []page.Curve{
-		{Column: "metamorphic", Role: "flux.metamorphic", Kind: page.Stack},
-		{Column: "arc", Role: "flux.arc", Kind: page.Stack},
-		{Column: "ridge", Role: "flux.ridge", Kind: page.Stack},
-		{Column: "pulse", Role: "flux.pulse", Kind: page.Stack},
-		{Column: "land_weathering", Role: "flux.land", Kind: page.Sink},
-		{Column: "seafloor_weathering", Role: "flux.seafloor", Kind: page.Sink},
-	} {
-		e := extremes(r, c.Column)
-		if e.ok && (e.least != 0 || e.most != 0) {
+	for _, c := range curves {
+		if e := extremes(r, c.Column); e.ok && (e.least != 0 || e.most != 0) {
 			out = append(out, c)
 		}
 	}

@@ -4,6 +4,7 @@ import (
 	_ "embed"
 	"html/template"
 	"io"
+	"regexp"
 	"strconv"
 	"strings"
 	"unicode"
@@ -18,7 +19,7 @@ import (
 //go:embed run.tmpl
 var runTemplate string
 
-var runPage = template.Must(page.Parse("run", runTemplate))
+var runPage = template.Must(page.Parse("run", runTemplate, template.FuncMap{"typeset": typeset}))
 
 // Licences returns the notices and licences of everything a report embeds.
 func Licences() string { return assets.Licences() }
@@ -134,6 +135,7 @@ type runBody struct {
 	Clock    string
 
 	Heading, ShortTitle, FullTitle string
+	Why                            string
 	Kind, Role                     string
 	Date, Ago                      string
 	Strip                          *strip
@@ -162,6 +164,7 @@ type inputGroup struct {
 func (b *runBody) fill() {
 	r := b.Run
 	b.Heading = clip(sentence(r.Outcome.Sentence), 600)
+	b.Why = sentence(r.Outcome.Why)
 	b.FullTitle = strings.TrimSpace(r.Title)
 	b.ShortTitle = clip(titleOf(r), 120)
 	b.Kind = upper(clip(clean(string(r.Outcome.Kind)), 80))
@@ -243,12 +246,28 @@ func fileStem(s string) string {
 
 // sentence makes words a sentence: a capital at the start, a full stop at the end.
 func sentence(s string) string {
-	s = upper(clean(s))
+	s = typeset(upper(clean(s)))
 	if s != "" && !strings.ContainsAny(s[len(s)-1:], ".!?…") {
 		s += "."
 	}
 	return s
 }
+
+// typeset writes the plain numbers, units and formulas of a sentence as print
+// does: 1e-05 as 1 × 10⁻⁵, CO2 as CO₂, W/m2 as W/m².
+func typeset(s string) string {
+	s = plainNumber.ReplaceAllStringFunc(s, func(m string) string {
+		mant, exp, _ := strings.Cut(m, "e")
+		n, err := strconv.Atoi(exp)
+		if err != nil {
+			return m
+		}
+		return num.Pretty(mant + "e" + strconv.Itoa(n))
+	})
+	return strings.NewReplacer("CO2", "CO₂", "/m2", "/m²", "'s ", "’s ").Replace(s)
+}
+
+var plainNumber = regexp.MustCompile(`\b[0-9]+(?:\.[0-9]+)?e[+-]?[0-9]{1,3}\b`)
 
 func upper(s string) string {
 	r, n := utf8.DecodeRuneInString(s)

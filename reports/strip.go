@@ -33,7 +33,7 @@ func stripOf(r *record.Run) *strip {
 		if !known(e.Start) || !known(e.End) {
 			continue
 		}
-		b := stripBand{X: percent(at(e.Start)), W: percent(math.Max(at(e.End)-at(e.Start), 0.05)), Mid: percent((at(e.Start) + at(e.End)) / 2), Role: stateRole(e.State)}
+		b := stripBand{X: percent(at(e.Start)), W: percent(math.Max(at(e.End)-at(e.Start), 0.15)), Mid: percent((at(e.Start) + at(e.End)) / 2), Role: stateRole(e.State)}
 		if at(e.End)-at(e.Start) > 22 {
 			b.Name = clip(clean(e.State), 24)
 		}

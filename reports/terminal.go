@@ -55,6 +55,9 @@ func Terminal(w io.Writer, r *record.Run, opt TerminalOptions) error {
 
 	kind := short(strings.ToUpper(clean(string(r.Outcome.Kind))), t.width/2)
 	date, ago := when(r)
+	if ago != "" && runewidth.StringWidth(kind+"  "+date+", "+ago) > t.width {
+		ago = strings.Replace(ago, "the reference age", num.Age(r.ReferenceAgeGyr), 1)
+	}
 	if ago != "" && runewidth.StringWidth(kind+"  "+date+", "+ago) <= t.width {
 		date += ", " + ago
 	}

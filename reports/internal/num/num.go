@@ -60,15 +60,23 @@ func Trim(s string) string {
 // Short writes v with at most n significant digits and no zeros at the end.
 func Short(v float64, n int) string { return Trim(Sig(v, n)) }
 
-// Pretty turns the plain characters of Sig and Fix into typeset ones:
-// "-2.8e-4" becomes "−2.8 × 10⁻⁴".
+// Pretty turns the number at the start of a text into typeset characters and
+// leaves the rest: "-2.8e-4 bar" becomes "−2.8 × 10⁻⁴ bar".
 func Pretty(s string) string {
-	mant, exp, ok := strings.Cut(s, "e")
-	mant = strings.Replace(mant, "-", "−", 1)
-	if !ok || strings.ContainsFunc(exp, func(r rune) bool { return r != '-' && (r < '0' || r > '9') }) {
-		return strings.Replace(s, "-", "−", 1)
+	end := len(s)
+	if i := strings.IndexByte(s, ' '); i >= 0 {
+		end = i
 	}
-	return mant + " × 10" + Raised(exp)
+	n, rest := s[:end], s[end:]
+	if _, err := strconv.ParseFloat(n, 64); err != nil {
+		return s
+	}
+	mant, exp, ok := strings.Cut(n, "e")
+	mant = strings.Replace(mant, "-", "−", 1)
+	if ok {
+		mant += " × 10" + Raised(exp)
+	}
+	return mant + rest
 }
 
 // Raised writes an integer in superscript.

@@ -35,14 +35,16 @@ type MarkLine struct{ Number, Name, Date string }
 
 // A Panel is one pair of axes.
 type Panel struct {
-	Name   string // of the vertical axis
-	Unit   string
-	Log    bool
-	Mirror bool // values below zero are shown without their sign (a ledger)
-	Height int  // pixels
-	Curves []Curve
-	Limits []Limit
-	Rail   bool // climate states and marks instead of curves
+	Name    string // of the vertical axis
+	Unit    string
+	Log     bool
+	Decades int  // most decades a logarithmic axis shows below its top; 0 for all
+	Mirror  bool // values below zero are shown without their sign (a ledger)
+	Trim    bool // a spike may leave the frame, which then says how far it goes
+	Height  int  // pixels
+	Curves  []Curve
+	Limits  []Limit
+	Rail    bool // climate states and marks instead of curves
 }
 
 // How a curve is drawn.
@@ -294,7 +296,7 @@ func (f *Figure) spec() map[string]any {
 				limits = append(limits, l)
 			}
 		}
-		panels = append(panels, map[string]any{"log": p.Log, "rail": p.Rail, "curves": curves, "limits": limits})
+		panels = append(panels, map[string]any{"log": p.Log, "trim": p.Trim, "decades": p.Decades, "mirror": p.Mirror, "unit": num.Unit(p.Unit), "rail": p.Rail, "curves": curves, "limits": limits})
 	}
 	return map[string]any{"id": f.ID, "title": f.Title, "option": f.option, "panels": panels, "height": f.Height}
 }

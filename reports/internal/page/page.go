@@ -68,9 +68,9 @@ type Mark struct {
 }
 
 // Parse reads the template of a report, which must define "body" and may use
-// the kit's "figure", "clock" and the functions below.
-func Parse(name, text string) (*template.Template, error) {
-	t, err := template.New(name).Funcs(template.FuncMap{
+// the kit's "figure" and "clock", the functions below and its own.
+func Parse(name, text string, funcs template.FuncMap) (*template.Template, error) {
+	t, err := template.New(name).Funcs(funcs).Funcs(template.FuncMap{
 		"class": func(role string) string { return "c" + strings.ReplaceAll("."+role, ".", "-") },
 		"unit":  num.Unit,
 	}).Parse(kit)

@@ -153,6 +153,12 @@ function range(panel, few) {
       for (const j of rows) take(v[j]);
     }
   }
+  const cut = panel.trim ? trimmed(panel) : null;
+  if (cut && hi - lo > 2.5 * (cut.hi - cut.lo)) {
+    if (hi > cut.hi) cut.over = hi;
+    if (lo < cut.lo) cut.under = lo;
+    [lo, hi] = [cut.lo, cut.hi];
+  }
   if (lo > hi) return panel.log ? { min: 0.1, max: 10, ticks: [0.1, 1, 10] } : { min: 0, max: 1, ticks: [0, 0.5, 1] };
   const least = lo, most = hi;
   for (const { value: l } of panel.limits) {
@@ -165,6 +171,7 @@ function range(panel, few) {
     }
   }
   if (panel.log) {
+    if (panel.decades) lo = Math.max(lo, hi / 10 ** panel.decades);
     let a = Math.floor(Math.log10(lo) + 1e-6), b = Math.ceil(Math.log10(hi) - 1e-6);
     if (a >= b) b = a + 1;
     const step = Math.max(1, Math.ceil((b - a) / (few ? 4 : 6)));
@@ -178,11 +185,38 @@ function range(panel, few) {
     hi += pad;
   }
   const step = niceStep(hi - lo, few ? 3 : 4);
-  let min = Math.floor(lo / step + 1e-6) * step, max = Math.ceil(hi / step - 1e-6) * step;
+  const half = step / 2;
+  let min = Math.floor(lo / half + 1e-6) * half, max = Math.ceil(hi / half - 1e-6) * half;
   // A curve that runs along the frame is hard to see.
-  if (least - min < 0.02 * (max - min) && Math.abs(min) > step / 2) min -= step / 2;
-  if (max - most < 0.02 * (max - min) && Math.abs(max) > step / 2) max += step / 2;
-  return { min, max, ticks: ticksIn(min, max, step) };
+  if (least - min < 0.02 * (max - min) && Math.abs(min) > half) min -= half;
+  if (max - most < 0.02 * (max - min) && Math.abs(max) > half) max += half;
+  return { min, max, ticks: ticksIn(min, max, step), cut };
+}
+
+// The range that holds a panel's values for all but a four-hundredth of the
+// time in view, so that one short spike does not flatten the rest; the figure
+// then says how far the spike goes.
+function trimmed(panel) {
+  const x = time(), values = [];
+  let total = 0;
+  for (const c of panel.curves) {
+    if (view.hidden.has(c.index)) continue;
+    const v = columns.get(c.column).values, e = c.kind ? edges(panel, c) : (j) => [v[j]];
+    for (let j = Math.max(bisect(x, view.from), 1); j < n && x[j] <= view.to; j++) {
+      const w = x[j] - x[j - 1];
+      for (const y of e(j)) if (Number.isFinite(y)) values.push([y, w]);
+      total += w * (c.kind ? 2 : 1);
+    }
+  }
+  if (!values.length) return null;
+  values.sort((a, b) => a[0] - b[0]);
+  const spare = total / 400 / Math.max(panel.curves.length, 1);
+  const edge = (list) => {
+    let w = 0;
+    for (const [y, d] of list) if ((w += d) > spare) return y;
+    return list[list.length - 1][0];
+  };
+  return { lo: edge(values), hi: edge(values.slice().reverse()) };
 }
 
 function ticksIn(min, max, step) {
@@ -253,7 +287,7 @@ function arrange(marks, left, right) {
   return best || [];
 }
 
-function drawers(fig, tone, areas, narrow) {
+function drawers(fig, tone, areas, cuts, narrow) {
   const box = (params) => params.coordSys;
   const spans = (api, c) => {
     const out = [];
@@ -270,6 +304,24 @@ function drawers(fig, tone, areas, narrow) {
     const x = api.coord([page.outcome - shift(), 0])[0];
     return [{ type: "line", shape: { x1: x, x2: x, y1: top, y2: c.y + c.height }, style: { stroke: tone("@alarm"), lineWidth: 1.2, lineDash: [2, 2] } }];
   };
+  // Where along a limit its words are farthest from the curves.
+  const roomiest = (api, c, panel, w, y) => {
+    let best = c.x + 4, most = -1;
+    for (const x of [c.x + 4, c.x + (c.width - w) / 2, c.x + c.width - w - 4]) {
+      let room = 24;
+      for (const k of panel.curves) {
+        if (k.kind || view.hidden.has(k.index)) continue;
+        const v = columns.get(k.column).values;
+        for (const j of rowsOf(k)) {
+          if (!Number.isFinite(v[j]) || (panel.log && v[j] <= 0)) continue;
+          const [px, py] = api.coord([time()[j] - shift(), v[j]]);
+          if (px > x - 6 && px < x + w + 6) room = Math.min(room, Math.abs(py - y));
+        }
+      }
+      if (room > most + 1) [best, most] = [x, room];
+    }
+    return best;
+  };
   return {
     "@shade": (params, api) => {
       const c = box(params);
@@ -280,11 +332,18 @@ function drawers(fig, tone, areas, narrow) {
     },
     "@limits": (params, api) => {
       const c = box(params), panel = fig.panels[Number(params.seriesId.slice(6))], children = outcome(api, c, c.y);
+      const cut = cuts[Number(params.seriesId.slice(6))], unit = panel.unit ? " " + panel.unit : "";
+      const beyond = (text, y, align) => children.push({ type: "text", style: { x: c.x + c.width - 4, y, text, align: "right", verticalAlign: align, fontSize: 11, fontFamily: font, fill: tone("@alarm"), stroke: tone("@panel"), lineWidth: 3 } });
+      if (cut && cut.over !== undefined) beyond("▲ a spike goes on to " + show(cut.over, 3) + unit, c.y + 3, "top");
+      if (cut && cut.under !== undefined) beyond("▼ a spike goes on to " + show(panel.mirror ? -cut.under : cut.under, 3) + unit, c.y + c.height - 3, "bottom");
       for (const l of panel.limits) {
         const y = api.coord([view.from - shift(), l.value])[1];
         if (y < c.y - 0.5 || y > c.y + c.height + 0.5) continue;
         children.push({ type: "line", shape: { x1: c.x, x2: c.x + c.width, y1: y, y2: y }, style: { stroke: tone("@quiet"), lineWidth: 1, lineDash: l.words ? [5, 3] : null } });
-        if (l.words) children.push({ type: "text", style: { x: c.x + 4, y: y > c.y + 16 ? y - 3 : y + 15, text: l.words, fontSize: 11, fontFamily: font, fill: tone("@quiet"), stroke: tone("@panel"), lineWidth: 3, verticalAlign: "bottom" } });
+        if (!l.words) continue;
+        const w = widthOf(l.words, 11), base = y > c.y + 16 ? y - 3 : y + 15;
+        const x = roomiest(api, c, panel, w, base - 7);
+        children.push({ type: "text", style: { x, y: base, text: l.words, fontSize: 11, fontFamily: font, fill: tone("@quiet"), stroke: tone("@panel"), lineWidth: 3, verticalAlign: "bottom" } });
       }
       return { type: "group", children };
     },
@@ -355,8 +414,9 @@ function resolve(o, tone, draw) {
 }
 
 function optionOf(fig, width, isDark, extra) {
-  const tone = toneOf(isDark), narrow = width < 560, areas = new Map();
-  const o = resolve(structuredClone(fig.option), tone, drawers(fig, tone, areas, narrow));
+  const tone = toneOf(isDark), narrow = width < 560, areas = new Map(), cuts = [];
+  const drawing = drawers(fig, tone, areas, cuts, narrow);
+  const o = resolve(structuredClone(fig.option), tone, drawing);
   const top = extra ? extra.top : 0;
   o.animation = false;
   o.textStyle = { fontFamily: font, color: tone("@ink") };
@@ -388,6 +448,7 @@ function optionOf(fig, width, isDark, extra) {
       return;
     }
     const r = range(fig.panels[i], o.grid[i].height < 125);
+    cuts[i] = r.cut;
     a.min = r.min;
     a.max = r.max;
     a.axisLine = { show: false };
@@ -401,7 +462,7 @@ function optionOf(fig, width, isDark, extra) {
   o.series = o.series.filter((r) => !byId.has(r.id) || !view.hidden.has(byId.get(r.id)[1].index));
   for (const r of o.series) {
     r.silent = true;
-    r.clip = true;
+    r.clip = r.renderItem !== drawing["@rail"];
     r.animation = false;
     if (!byId.has(r.id)) {
       const axis = o.yAxis[r.yAxisIndex || 0];
@@ -460,7 +521,7 @@ function zoom(from, to) {
 }
 
 function readout() {
-  const out = (t) => Number((view.clock === "age" ? t : page.present - t).toPrecision(7));
+  const out = (t) => Number((view.clock === "age" ? t : page.present - t).toPrecision(6));
   $("#from").value = out(view.from);
   $("#to").value = out(view.to);
   $("#clock-unit").textContent = view.clock === "age" ? "Gyr" : "Gyr before";
@@ -671,7 +732,7 @@ try {
     setCursor(page.present === null ? n - 1 : nearest(page.present));
 
     new ResizeObserver(() => {
-      if (printing) return;
+      if (printing || $(".stage").clientWidth < 120) return; // hidden, or on its way to another size
       for (const f of figures) if (f.chart.getWidth() !== f.stage.clientWidth) f.chart.resize({ width: "auto", height: "auto" });
       redraw();
     }).observe($(".stage"));
