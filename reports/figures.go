@@ -59,6 +59,9 @@ func figuresOf(r *record.Run, groups []markGroup) []*page.Figure {
 			}}}},
 	}
 	for _, f := range figures {
+		for i := range f.Caption {
+			f.Caption[i] = typeset(f.Caption[i])
+		}
 		for _, w := range r.Warnings {
 			if concerns(w.About, f.ID) {
 				f.Doubts = append(f.Doubts, clean(w.About)+": "+typeset(sentenceEnd(w.Words)))

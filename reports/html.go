@@ -254,7 +254,8 @@ func sentence(s string) string {
 }
 
 // typeset writes the plain numbers, units and formulas of a sentence as print
-// does: 1e-05 as 1 × 10⁻⁵, CO2 as CO₂, W/m2 as W/m².
+// does: 1e-05 as 1 × 10⁻⁵, CO2 as CO₂, W/m2 as W/m², and no line break between
+// a number and its unit.
 func typeset(s string) string {
 	s = plainNumber.ReplaceAllStringFunc(s, func(m string) string {
 		mant, exp, _ := strings.Cut(m, "e")
@@ -264,10 +265,13 @@ func typeset(s string) string {
 		}
 		return num.Pretty(mant + "e" + strconv.Itoa(n))
 	})
+	s = beforeUnit.ReplaceAllString(s, "$1\u00a0$2")
 	return strings.NewReplacer("CO2", "CO₂", "/m2", "/m²", "'s ", "’s ").Replace(s)
 }
 
 var plainNumber = regexp.MustCompile(`\b[0-9]+(?:\.[0-9]+)?e[+-]?[0-9]{1,3}\b`)
+
+var beforeUnit = regexp.MustCompile(`([0-9⁰¹²³⁴⁵⁶⁷⁸⁹]) (%|K|[GMk]?yr|ppm|bar|Tmol/yr|Emol|TW|W/m[2²]|au)`)
 
 func upper(s string) string {
 	r, n := utf8.DecodeRuneInString(s)

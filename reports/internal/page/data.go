@@ -19,8 +19,8 @@ type Column struct {
 }
 
 // Data is the one set of rows behind all figures of a page. The first column
-// is the time in Gyr and is kept in full; the others travel with seven
-// significant digits (single precision), which is more than the solver earns.
+// is the time in Gyr and is kept in full; the others travel in single
+// precision, about seven digits, which is more than the solver earns.
 type Data struct {
 	Columns []Column
 	Rows    int

@@ -70,7 +70,14 @@ function quantity(v, unit) {
   return Number.isFinite(v) ? show(v, 4) + (unit ? " " + unit : "") : "–";
 }
 
-const exact = (v, digits) => (Number.isFinite(v) ? String(Number(v.toPrecision(digits)) || 0) : "");
+// The fewest digits that name the number in the precision it travels in.
+function exact(v, single) {
+  if (!Number.isFinite(v)) return "";
+  if (!single) return String(Number(v.toPrecision(14)) || 0);
+  let s = v;
+  for (let p = 6; p < 10; p++) if (Math.fround((s = Number(v.toPrecision(p)))) === v) break;
+  return String(s || 0);
+}
 
 // ---- state of the page ---------------------------------------------------
 
@@ -352,7 +359,9 @@ function drawers(fig, tone, areas, cuts, narrow) {
       const children = [];
       let lower = [], upper = [];
       const close = () => {
+        const rim = upper.slice();
         if (upper.length > 1) children.push({ type: "polygon", shape: { points: upper.concat(lower.reverse()) }, style: { fill: area.fill, opacity: area.opacity } });
+        if (rim.length > 1 && area.rim) children.push({ type: "polyline", shape: { points: rim }, style: { fill: "none", stroke: tone("@ink"), lineWidth: 0.6, opacity: 0.7 } });
         lower = [];
         upper = [];
       };
@@ -474,7 +483,7 @@ function optionOf(fig, width, isDark, extra) {
     const rows = rowsOf(curve);
     if (curve.kind) {
       const e = edges(panel, curve);
-      areas.set(r.id, { fill: r.itemStyle.color, opacity: curve.kind === "band" ? 1 : 0.92, points: rows.map((j) => [x[j] - s, ...e(j)]) });
+      areas.set(r.id, { fill: r.itemStyle.color, opacity: curve.kind === "band" ? 1 : 0.92, rim: curve.kind !== "band", points: rows.map((j) => [x[j] - s, ...e(j)]) });
       r.data = [[view.from - s, o.yAxis[r.yAxisIndex || 0].min]];
       r.z = 2;
     } else {
@@ -492,7 +501,12 @@ function optionOf(fig, width, isDark, extra) {
 const figures = [];
 
 function draw(fig, width, isDark) {
-  fig.chart.setOption(optionOf(fig, width, isDark), { notMerge: true });
+  const o = optionOf(fig, width, isDark);
+  fig.chart.setOption(o, { notMerge: true });
+  // What is shown, for those who look at the page with a script.
+  const el = fig.chart.getDom();
+  el.dataset.span = JSON.stringify([o.xAxis[0].min, o.xAxis[0].max]);
+  el.dataset.rows = Math.max(...o.series.map((r) => r.data.length));
 }
 
 let printing = false;
@@ -606,7 +620,7 @@ function save(name, blob) {
 
 function csv(cols) {
   const lines = [cols.map((c) => c.header).join(",")];
-  for (let j = 0; j < n; j++) lines.push(cols.map((c, i) => exact(c.values[j], i === 0 ? 14 : 7)).join(","));
+  for (let j = 0; j < n; j++) lines.push(cols.map((c, i) => exact(c.values[j], i > 0)).join(","));
   return lines.join("\n") + "\n";
 }
 

@@ -25,26 +25,26 @@ var Palette = map[string]Tone{
 	"alarm":  {"#a1330f", "#f0956b"},
 
 	// climate states
-	"state.temperate": {"#5aa57f", "#5aa57f"},
+	"state.temperate": {"#58a87e", "#58a87e"},
 	"state.snowball":  {"#a9cdf0", "#bcdcf8"},
 	"state.moist":     {"#d98a1e", "#d98a1e"},
 	"state.runaway":   {"#8c1f12", "#b8402c"},
-	"state.beyond":    {"#7d8388", "#7d8388"},
+	"state.beyond":    {"#8a8a96", "#8a8a96"},
 
 	// sources of carbon, then sinks
 	"flux.ridge":       {"#2b2d6e", "#5a60c8"},
 	"flux.arc":         {"#8258b3", "#9b7bd0"},
 	"flux.metamorphic": {"#cdb4e0", "#d9c6ea"},
-	"flux.pulse":       {"#d0427a", "#e2639a"},
+	"flux.pulse":       {"#d0427a", "#d23c66"},
 	"flux.land":        {"#a8631b", "#c07c30"},
-	"flux.seafloor":    {"#5fb3c8", "#74c4d8"},
+	"flux.seafloor":    {"#2c90a3", "#39a7ba"},
 
 	// reservoirs
-	"pool.surface":     {"#2f7fbf", "#5aa7e0"},
-	"pool.seafloor":    {"#58b0a8", "#6fc7be"},
+	"pool.surface":     {"#1f66b5", "#5aa7e0"},
+	"pool.seafloor":    {"#3a9a86", "#7fe0c4"},
 	"pool.continental": {"#b07a1f", "#d09c48"},
 	"pool.mantle":      {"#6b1f2a", "#b5545f"},
-	"pool.total":       {"#58636a", "#9faab0"},
+	"pool.total":       {"#4b555b", "#a3a9b4"},
 
 	// the zone
 	"zone.inner": {"#8fbf9f", "#3f6b50"},
