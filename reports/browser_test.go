@@ -572,7 +572,7 @@ func TestPrint(t *testing.T) {
 	}
 	// While printing, charts have the width of the paper and its colours.
 	got := eval[[]string](b, `(() => { dispatchEvent(new Event("beforeprint")); const s = document.querySelector("#history .plot svg"), r = [s.getAttribute("width"), String(s.querySelectorAll("path[stroke='#1c2529']").length > 0)]; dispatchEvent(new Event("afterprint")); return r; })()`)
-	if got[0] != "680" || got[1] != "true" {
+	if got[0] != "700" || got[1] != "true" {
 		t.Errorf("printed with width %s, in ink on white: %s", got[0], got[1])
 	}
 	b.settle()

@@ -170,7 +170,7 @@ func (b *runBody) fill() {
 	b.Kind = upper(clip(clean(string(r.Outcome.Kind)), 80))
 	b.Role = outcomeRole(r.Outcome.Kind)
 	b.Date, b.Ago = when(r)
-	b.Date = strings.TrimPrefix(b.Date, "at ")
+	b.Date = num.Pretty(strings.TrimPrefix(b.Date, "at "))
 	b.Strip = stripOf(r)
 	for _, m := range r.Margins {
 		b.MarginWords = append(b.MarginWords, sentence(m.Words))

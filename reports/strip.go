@@ -67,7 +67,7 @@ func stripOf(r *record.Run) *strip {
 		case x > 75:
 			anchor = "end"
 		}
-		date := num.Age(r.Outcome.TimeGyr)
+		date := age(r.Outcome.TimeGyr)
 		s.End = &stripTick{X: percent(x), Label: clip(clean(string(r.Outcome.Kind)), 40) + ", " + date, Anchor: anchor}
 	}
 	return s

@@ -361,7 +361,7 @@ function drawers(fig, tone, areas, cuts, narrow) {
       const close = () => {
         const rim = upper.slice();
         if (upper.length > 1) children.push({ type: "polygon", shape: { points: upper.concat(lower.reverse()) }, style: { fill: area.fill, opacity: area.opacity } });
-        if (rim.length > 1 && area.rim) children.push({ type: "polyline", shape: { points: rim }, style: { fill: "none", stroke: tone("@ink"), lineWidth: 0.6, opacity: 0.7 } });
+        if (rim.length > 1 && area.rim) children.push({ type: "polyline", shape: { points: rim }, style: { fill: "none", stroke: tone("@quiet"), lineWidth: 0.6, opacity: 0.6 } });
         lower = [];
         upper = [];
       };
@@ -460,7 +460,7 @@ function optionOf(fig, width, isDark, extra) {
     cuts[i] = r.cut;
     a.min = r.min;
     a.max = r.max;
-    a.axisLine = { show: false };
+    a.axisLine = { show: false, onZero: false };
     a.axisTick = { show: false, customValues: r.ticks };
     a.splitLine = { lineStyle: { color: tone("@rule") } };
     a.axisLabel = { ...a.axisLabel, color: tone("@quiet"), fontSize: 12, customValues: r.ticks, hideOverlap: true, showMinLabel: true, showMaxLabel: true };
@@ -509,6 +509,7 @@ function draw(fig, width, isDark) {
   el.dataset.rows = Math.max(...o.series.map((r) => r.data.length));
 }
 
+const paper = 700; // px, the width of a chart on A4 or Letter
 let printing = false;
 function drawAll() {
   for (const f of figures) draw(f, f.stage.clientWidth, !printing && dark.matches);
@@ -754,8 +755,8 @@ try {
     addEventListener("beforeprint", () => {
       printing = true;
       for (const f of figures) {
-        f.chart.resize({ width: 680, height: f.height });
-        draw(f, 680, false);
+        f.chart.resize({ width: paper, height: f.height });
+        draw(f, paper, false);
         f.chart.getZr().flush();
       }
       placeCursor();
