@@ -121,6 +121,8 @@ var (
 		Title: "Energy balance climate models", Journal: "Reviews of Geophysics and Space Physics", Volume: "19", Pages: "91-121"}
 	IAU2015 = &Work{Key: "iau2015", Authors: []string{"Prša, A.", "Harmanec, P.", "Torres, G.", "Mamajek, E.", "Asplund, M.", "Capitaine, N.", "Christensen-Dalsgaard, J.", "Depagne, É.", "Haberreiter, M.", "Hekker, S.", "Hilton, J.", "Kopp, G.", "Kostov, V.", "Kurtz, D. W.", "Laskar, J.", "Mason, B. D.", "Milone, E. F.", "Montgomery, M.", "Richards, M.", "Schmutz, W.", "Schou, J.", "Stewart, S. G."}, Year: 2016,
 		Title: "Nominal values for selected solar and planetary quantities: IAU 2015 Resolution B3", Journal: "The Astronomical Journal", Volume: "152", Pages: "41"}
+	OliveiraTakahashi2021 = &Work{Key: "oliveira2021", Authors: []string{"Oliveira, I. F. D.", "Takahashi, R. H. C."}, Year: 2021,
+		Title: "An enhancement of the bisection method average performance preserving minmax optimality", Journal: "ACM Transactions on Mathematical Software", Volume: "47", Pages: "5"}
 	Pozzo2012 = &Work{Key: "pozzo2012", Authors: []string{"Pozzo, M.", "Davies, C.", "Gubbins, D.", "Alfè, D."}, Year: 2012,
 		Title: "Thermal and electrical conductivity of iron at Earth's core conditions", Journal: "Nature", Volume: "485", Pages: "355-358"}
 	RileyTongudai1967 = &Work{Key: "riley1967", Authors: []string{"Riley, J. P.", "Tongudai, M."}, Year: 1967,
@@ -131,6 +133,8 @@ var (
 		Title: "Distant future of the Sun and Earth revisited", Journal: "Monthly Notices of the Royal Astronomical Society", Volume: "386", Pages: "155-163"}
 	SchubertStevensonCassen1980 = &Work{Key: "schubert1980", Authors: []string{"Schubert, G.", "Stevenson, D.", "Cassen, P."}, Year: 1980,
 		Title: "Whole planet cooling and the radiogenic heat source contents of the Earth and Moon", Journal: "Journal of Geophysical Research", Volume: "85", Pages: "2531-2538"}
+	Shapley1953 = &Work{Key: "shapley1953", Authors: []string{"Shapley, L. S."}, Year: 1953,
+		Title: "A value for n-person games", Journal: "Contributions to the Theory of Games, Annals of Mathematics Studies", Volume: "28", Pages: "307-317"}
 	SleepZahnle2001 = &Work{Key: "sleep2001", Authors: []string{"Sleep, N. H.", "Zahnle, K."}, Year: 2001,
 		Title: "Carbon dioxide cycling and implications for climate on ancient Earth", Journal: "Journal of Geophysical Research", Volume: "106", Pages: "1373-1399"}
 	Solomatov1995 = &Work{Key: "solomatov1995", Authors: []string{"Solomatov, V. S."}, Year: 1995,
