@@ -16,6 +16,11 @@ func (b *builder) outcome(check *history) {
 	o, h, s := &b.run.Outcome, b.h, b.m.set
 	when := date(o.TimeGyr, o.ErrorGyr)
 	liquid := gyr(b.fail.t - s.Start)
+	for _, f := range h.frozen { // less what was spent under ice before
+		if f.end < b.fail.t {
+			liquid -= gyr(f.end - f.begun())
+		}
+	}
 	cold := b.fail.span
 	switch b.fail.kind {
 	case record.Temperate:
