@@ -36,6 +36,7 @@ type hold struct {
 	age     float64 // yr
 	mantleT float64 // K
 	coreT   float64 // K
+	crust   float64 // crust production; 0 is what the interior gives
 	still   [drivers]bool
 }
 

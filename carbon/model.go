@@ -275,6 +275,9 @@ func (m *Model) drive(age, mantleT, coreT float64) *memo {
 	if m.hold.still[driveInterior] {
 		d.flow = s.interior.law.Flow(m.hold.age, m.hold.mantleT, m.hold.coreT)
 		d.flow.MantleRate, d.flow.CoreRate = 0, 0
+		if m.hold.crust > 0 {
+			d.flow.Crust = m.hold.crust
+		}
 	} else {
 		d.flow = s.interior.law.Flow(age, mantleT, coreT)
 	}

@@ -73,3 +73,14 @@ type Equilibria struct {
 	States      []Steady     `json:"states"`
 	Boundaries  Boundaries   `json:"boundaries"`
 }
+
+// Cycle is one turn of a limit cycle between snowball and warm.
+type Cycle struct {
+	PeriodMyr float64 `json:"period_myr"`
+	FrozenMyr float64 `json:"frozen_myr"`
+	WarmMyr   float64 `json:"warm_myr"`
+	ColdestK  float64 `json:"coldest_k"`
+	WarmestK  float64 `json:"warmest_k"`
+	LeastBar  float64 `json:"least_co2_bar"`
+	MostBar   float64 `json:"most_co2_bar"`
+}
