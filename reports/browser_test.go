@@ -301,7 +301,10 @@ func axes(b *tab) [][2]float64 {
 func TestZoomLinksAllAxes(t *testing.T) {
 	b := opened(t, quessmere())
 	before := axes(b)
-	if len(before) != 7 {
+	if n := eval[int](b, `document.querySelectorAll(".plot path[stroke='#a1330f']").length`); n < 7 {
+		t.Errorf("the outcome is drawn only %d times", n)
+	}
+	if len(before) != 8 {
 		t.Fatalf("%d figures", len(before))
 	}
 	// Typed.
@@ -311,6 +314,14 @@ func TestZoomLinksAllAxes(t *testing.T) {
 		if a != [2]float64{2, 2.5} {
 			t.Errorf("figure %d spans %v after the zoom", i, a)
 		}
+	}
+	// What lies outside the window is gone: the date of the outcome, 1.2 Gyr.
+	if n := eval[int](b, `document.querySelectorAll(".plot path[stroke='#a1330f']").length`); n != 0 {
+		t.Errorf("the outcome is drawn %d times in a window that does not hold it", n)
+	}
+	// The cursor stays in view.
+	if s := eval[string](b, `document.getElementById("now").value`); !strings.HasPrefix(s, "at 2.2") {
+		t.Errorf("the cursor is left behind: %s", s)
 	}
 	// Every row is drawn once the window is narrow.
 	rows := 0
@@ -489,7 +500,7 @@ func TestHostileTexts(t *testing.T) {
 		if n := eval[int](b, `document.scripts.length`); n != 5 {
 			t.Errorf("%.40q: %d scripts", text, n)
 		}
-		if n := eval[int](b, `document.querySelectorAll(".plot svg").length`); n != 7 {
+		if n := eval[int](b, `document.querySelectorAll(".plot svg").length`); n != 8 {
 			t.Errorf("%.40q: %d figures are drawn", text, n)
 		}
 		for _, width := range []int64{390, 1280} {

@@ -51,6 +51,11 @@ func figuresOf(r *record.Run, groups []markGroup) []*page.Figure {
 				{Name: "pH", Height: 120, Curves: []page.Curve{{Column: "ph", Role: "ink"}}},
 				{Name: "Concentration", Unit: "mmol/kg", Height: 120, Log: logWorthy(r, "dic", "alkalinity"), Curves: []page.Curve{{Column: "dic", Role: "ink"}, {Column: "alkalinity", Role: "ink", Dash: "dashed"}}},
 			}},
+		{ID: "water", Title: "Water on its way out", Caption: c.water(),
+			Panels: []page.Panel{
+				{Name: "Water in the stratosphere, mixing ratio", Height: 120, Log: logWorthy(r, "moisture"), Curves: used(r, page.Curve{Column: "moisture", Role: "ink"})},
+				{Name: "Inventory", Unit: "kg", Height: 90, Curves: changing(r, page.Curve{Column: "water", Role: "ink"})},
+			}},
 		{ID: "zone", Title: "The planet’s flux between the zone limits", Caption: c.zone(),
 			Panels: []page.Panel{{Name: "Flux over the Earth’s today", Height: 230, Curves: []page.Curve{
 				{Column: "zone_early_mars", Upper: "zone_recent_venus", Name: "optimistic zone", Role: "zone.outer", Kind: page.Band},
@@ -76,7 +81,7 @@ func figuresOf(r *record.Run, groups []markGroup) []*page.Figure {
 var concerned = map[string]string{
 	"star": "history", "climate": "history", "radiation": "history", "albedo": "history", "atmosphere": "history", "time": "history", "condensation": "history",
 	"weathering": "fluxes", "land": "fluxes", "seafloor": "fluxes", "outgassing": "fluxes", "pulse": "fluxes",
-	"carbon": "reservoirs", "interior": "interior", "mantle": "interior", "planet": "interior", "ocean": "ocean", "water": "ocean", "zone": "zone", "orbit": "zone",
+	"carbon": "reservoirs", "interior": "interior", "mantle": "interior", "planet": "interior", "ocean": "ocean", "water": "water", "zone": "zone", "orbit": "zone",
 }
 
 func concerns(about, figure string) bool {
@@ -148,6 +153,14 @@ func used(r *record.Run, curves ...page.Curve) []page.Curve {
 		}
 	}
 	return out
+}
+
+// changing leaves out what is the same throughout.
+func changing(r *record.Run, c page.Curve) []page.Curve {
+	if e := extremes(r, c.Column); e.ok && e.least != e.most {
+		return []page.Curve{c}
+	}
+	return nil
 }
 
 func logWorthy(r *record.Run, names ...string) bool {
@@ -279,6 +292,15 @@ func (c *captions) history() []string {
 	if r.Freezes > 0 {
 		out = append(out, "The planet freezes "+times(r.Freezes)+" and is frozen for "+num.Percent(r.FrozenShare)+" of the history.")
 	}
+	for _, p := range r.Recoveries {
+		s := "A pulse (" + clip(clean(p.Pulse), 60) + ") from " + age(p.StartGyr) + " to " + age(p.EndGyr) + " changes the surface by " + pretty(p.PeakKelvin, 3, "K") + " at most"
+		if known(p.RecoveryKyr) {
+			s += "; all but 1/e of it is gone " + pretty(p.RecoveryKyr, 3, "kyr") + " after the peak"
+		} else {
+			s += ", and the planet does not recover from it"
+		}
+		out = append(out, s+".")
+	}
 	if !lasting(r.Outcome.Kind) {
 		out = append(out, "Shaded spans are not temperate.")
 	} else {
@@ -382,6 +404,18 @@ func (c *captions) ocean() []string {
 			s += "; at the reference age it has pH " + num.Pretty(num.Fix(r.Reference.PH, 2))
 		}
 		out = append(out, s+".")
+	}
+	return out
+}
+
+func (c *captions) water() []string {
+	r := c.r
+	var out []string
+	if e := extremes(r, "moisture"); e.ok {
+		out = append(out, "The stratosphere holds most water, a mixing ratio of "+pretty(e.most, 3, "")+", at "+age(e.tMost)+", and least, "+pretty(e.least, 3, "")+", at "+age(e.tLeast)+".")
+	}
+	if e := extremes(r, "water"); e.ok && e.least != e.most {
+		out = append(out, "The inventory "+fromTo(pretty(e.first, 4, e.unit), pretty(e.last, 4, e.unit), e.last > e.first)+".")
 	}
 	return out
 }

@@ -76,6 +76,7 @@ func orrindel() *record.Run {
 		t := 0.3 + 6.0*float64(i)/(n-1)
 		r.Rows = append(r.Rows, invented(t, 0, 1))
 	}
+	r.Recoveries = []record.Recovery{{Pulse: "40 Tmol/yr of carbon", StartGyr: 3.2, EndGyr: 3.21, PeakKelvin: 9, PeakLnCO2: 0.4, RecoveryKyr: 310}}
 	// A burst of carbon that lasts a moment: the thinned curve must keep it.
 	for i := range r.Rows {
 		if t := r.Rows[i].Age / 1e9; t > 3.2 && t < 3.21 {
@@ -124,7 +125,8 @@ func invented(t, frozen, outgas float64) record.Row {
 	r.ColdMargin = (2.31 + 0.8*math.Abs(t-1.12)) * outgas
 	r.ColdKelvin = (22 + 3*math.Abs(t-1.12)) * (1 - 2*frozen)
 	r.HotMargin = 0.55 - 0.09*t
-	r.Water = 1.4e21
+	r.Water = 1.4e21 - 1e20*math.Max(0, t-5.9)
+	r.Moisture = 3e-6 * math.Exp(0.12*(r.Temperature-288))
 	r.Gain = 0.41 + 0.02*math.Sin(t)
 	r.Response = 2.36e5
 	if t < 0.4 {
@@ -138,7 +140,7 @@ func quessmere() *record.Run {
 	r := orrindel()
 	r.Title, r.Name, r.Hash = "Quessmere, a cold outer orbit", "quessmere", "90cc17d2aa04e6f3"
 	r.Command = "cycle run quessmere"
-	r.Rows, r.Episodes, r.Marks = nil, nil, nil
+	r.Rows, r.Episodes, r.Marks, r.Recoveries = nil, nil, nil, nil
 	const cycles, perCycle = 40, 125
 	begin, period := 1.2, 0.09
 	r.Outcome = record.Outcome{Kind: record.LimitCycles, TimeGyr: begin, ErrorGyr: 2e-5,
@@ -183,6 +185,7 @@ func absurd() *record.Run {
 	r.Episodes = []record.Episode{{State: record.StateRunaway, Start: -9, End: -4}, {State: record.StateSnowball, Start: -4, End: 91}}
 	r.Marks = []record.Mark{{Name: record.MarkThawed, TimeGyr: 66, ErrorGyr: 7}, {Name: record.MarkFroze, TimeGyr: 67, ErrorGyr: 8}}
 	r.Margins = []record.Margin{{Boundary: "cold fold", Side: "cold", TimeGyr: 41, Value: -350, Unit: "K", Words: "It was 350 K past the fold and did not mind."}}
+	r.Recoveries = nil
 	r.FrozenShare, r.Freezes, r.CarbonDrift, r.CarbonMol = 3.5, -2, 1e6, -1
 	r.Rows = nil
 	for i := range 5 {
@@ -235,6 +238,9 @@ func hostile(text string) *record.Run {
 	}
 	for i := range r.Stays {
 		r.Stays[i].Name = text
+	}
+	for i := range r.Recoveries {
+		r.Recoveries[i].Pulse = text
 	}
 	for i := range r.Laws {
 		r.Laws[i] = record.Law{Part: text, Name: text, Doc: text, Form: text, Source: text, Range: text}

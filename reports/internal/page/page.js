@@ -294,7 +294,7 @@ function arrange(marks, left, right) {
   return best || [];
 }
 
-function drawers(fig, tone, areas, cuts, narrow) {
+function drawers(fig, tone, areas, cuts, narrow, isDark) {
   const box = (params) => params.coordSys;
   const spans = (api, c) => {
     const out = [];
@@ -311,6 +311,8 @@ function drawers(fig, tone, areas, cuts, narrow) {
     const x = api.coord([page.outcome - shift(), 0])[0];
     return [{ type: "line", shape: { x1: x, x2: x, y1: top, y2: c.y + c.height }, style: { stroke: tone("@alarm"), lineWidth: 1.2, lineDash: [2, 2] } }];
   };
+  // Without this, ECharts keeps the old shapes where there are no new ones.
+  const drawn = (children) => ({ type: "group", $mergeChildren: false, children });
   // Where along a limit its words are farthest from the curves.
   const roomiest = (api, c, panel, w, y) => {
     let best = c.x + 4, most = -1;
@@ -333,9 +335,9 @@ function drawers(fig, tone, areas, cuts, narrow) {
     "@shade": (params, api) => {
       const c = box(params);
       const children = spans(api, c).filter((s) => s.e.role !== "state.temperate").map((s) => ({
-        type: "rect", shape: { x: s.a, y: s.y, width: Math.max(s.b - s.a, 0.5), height: s.h }, style: { fill: tone("@" + s.e.role), opacity: s.e.role === "state.snowball" ? 0.4 : 0.24 },
+        type: "rect", shape: { x: s.a, y: s.y, width: Math.max(s.b - s.a, 0.5), height: s.h }, style: { fill: tone("@" + s.e.role), opacity: s.e.role !== "state.snowball" ? 0.24 : isDark ? 0.2 : 0.4 },
       }));
-      return { type: "group", children };
+      return drawn(children);
     },
     "@limits": (params, api) => {
       const c = box(params), panel = fig.panels[Number(params.seriesId.slice(6))], children = outcome(api, c, c.y);
@@ -352,7 +354,7 @@ function drawers(fig, tone, areas, cuts, narrow) {
         const x = roomiest(api, c, panel, w, base - 7);
         children.push({ type: "text", style: { x, y: base, text: l.words, fontSize: 11, fontFamily: font, fill: tone("@quiet"), stroke: tone("@panel"), lineWidth: 3, verticalAlign: "bottom" } });
       }
-      return { type: "group", children };
+      return drawn(children);
     },
     "@area": (params, api) => {
       const area = areas.get(params.seriesId);
@@ -371,7 +373,7 @@ function drawers(fig, tone, areas, cuts, narrow) {
         upper.push(api.coord([x, b]));
       }
       close();
-      return { type: "group", children };
+      return drawn(children);
     },
     "@rail": (params, api) => {
       const c = box(params), band = 18, y = c.y + c.height - band;
@@ -394,7 +396,7 @@ function drawers(fig, tone, areas, cuts, narrow) {
         children.push({ type: "line", shape: { x1: l.x, x2: l.x, y1: ty + 1, y2: y }, style: { stroke: tone("@quiet"), lineWidth: 0.7 } });
         children.push({ type: "text", style: { x: l.a, y: ty, text: l.words, fontSize: 11, fontFamily: font, fill: tone("@ink"), verticalAlign: "bottom" } });
       }
-      return { type: "group", children };
+      return drawn(children);
     },
   };
 }
@@ -424,7 +426,7 @@ function resolve(o, tone, draw) {
 
 function optionOf(fig, width, isDark, extra) {
   const tone = toneOf(isDark), narrow = width < 560, areas = new Map(), cuts = [];
-  const drawing = drawers(fig, tone, areas, cuts, narrow);
+  const drawing = drawers(fig, tone, areas, cuts, narrow, isDark);
   const o = resolve(structuredClone(fig.option), tone, drawing);
   const top = extra ? extra.top : 0;
   o.animation = false;
@@ -432,7 +434,7 @@ function optionOf(fig, width, isDark, extra) {
   o.grid = [].concat(o.grid);
   o.grid.forEach((g) => {
     g.outerBoundsMode = "none"; // the kit reserves the room itself, so that all time axes align
-    g.left = narrow ? 52 : 64;
+    g.left = (narrow ? 52 : 64) + (extra ? extra.left : 0);
     g.right = narrow ? 12 : 18;
     g.top = Number(g.top) + top;
     g.height = Number(g.height);
@@ -531,6 +533,8 @@ function zoom(from, to) {
   if (to - from < least) return;
   view.from = from;
   view.to = to;
+  const at = time()[view.cursor];
+  if (!(at >= from && at <= to)) setCursor(nearest((from + to) / 2));
   readout();
   redraw();
 }
@@ -544,8 +548,8 @@ function readout() {
 
 function words(t) {
   if (view.clock === "age" || page.present === null) return show(t, 6) + " Gyr";
-  const d = page.present - t;
-  return d >= 0 ? show(d, 5) + " Gyr before" : show(-d, 5) + " Gyr after";
+  const d = page.present - t, a = Math.abs(d);
+  return (a < 0.01 ? show(a * 1e3, 4) + " Myr" : show(a, 5) + " Gyr") + (d >= 0 ? " before" : " after");
 }
 
 const units = new Map();
@@ -640,14 +644,14 @@ function exported(fig) {
   const keys = fig.panels.flatMap((p) => p.curves).filter((c) => !view.hidden.has(c.index));
   const rows = Math.ceil(keys.reduce((w, c) => w + widthOf(c.name, 12) + 46, 0) / (exportWidth - 80));
   const top = 46, foot = 22 * rows + 24, height = fig.height + top + foot;
-  const o = optionOf(fig, exportWidth, false, { top });
+  const o = optionOf(fig, exportWidth, false, { top, left: 12 });
   const tone = toneOf(false);
   o.backgroundColor = tone("@panel");
   o.title = [
-    { text: fig.title, left: 16, top: 12, textStyle: { fontSize: 17, fontWeight: 600, color: tone("@ink"), fontFamily: font } },
-    { text: page.label, left: 16, bottom: 6, textStyle: { fontSize: 11, fontWeight: 400, color: tone("@quiet"), fontFamily: font } },
+    { text: fig.title, left: 11, top: 8, textStyle: { fontSize: 17, fontWeight: 600, color: tone("@ink"), fontFamily: font } },
+    { text: page.label, left: 11, bottom: 6, textStyle: { fontSize: 11, fontWeight: 400, color: tone("@quiet"), fontFamily: font } },
   ];
-  o.legend = { show: true, bottom: 26, left: 60, right: 20, itemGap: 14, itemWidth: 22, itemHeight: 10, selectedMode: false, data: keys.map((c) => ({ name: c.name })), textStyle: { fontSize: 12, color: tone("@ink"), fontFamily: font } };
+  o.legend = { show: true, bottom: 28, left: 11, right: 20, itemGap: 14, itemWidth: 22, itemHeight: 10, selectedMode: false, data: keys.map((c) => (c.kind ? { name: c.name } : { name: c.name, itemStyle: { opacity: 0 } })), textStyle: { fontSize: 12, color: tone("@ink"), fontFamily: font } };
   return { option: o, height };
 }
 
