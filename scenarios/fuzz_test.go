@@ -26,6 +26,7 @@ func FuzzLoad(f *testing.F) {
 	f.Add(r.TOML(), "")
 	f.Add(Template("x"), "solver.guard=false")
 	f.Add("title = \"\\u202e<script>\"\nnotes = '''\n\"\\\n'''\n[orbit]\neccentricity = 0x1\n[pulse.3]\nsunlight = -1e-3\n", "orbit.distance=\"1 au\"")
+	f.Add(uncertainText, "planet.mass=1 M_E")
 	f.Add("weathering = {land = {law = \"berner1994\"}, limiter = \"1 mbar\"}\nbase = \"earth\"", "title='a'")
 	f.Fuzz(func(t *testing.T, text, set string) {
 		if strings.Contains(text, "_file") || strings.Contains(set, "_file") {
@@ -50,7 +51,7 @@ func FuzzLoad(f *testing.F) {
 		if err != nil {
 			t.Fatalf("the resolved scenario does not load: %v", err)
 		}
-		if back.Hash() != r.Hash() || back.Title != r.Title || back.Name != r.Name || back.Notes != r.Notes {
+		if back.Hash() != r.Hash() || back.EnsembleHash() != r.EnsembleHash() || back.Title != r.Title || back.Name != r.Name || back.Notes != r.Notes {
 			t.Fatalf("became another scenario:\n%s\n%s", r.TOML(), back.TOML())
 		}
 		for _, in := range r.Inputs() {

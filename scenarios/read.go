@@ -76,6 +76,7 @@ type layer struct {
 	file     string // for messages
 	dir      string // where relative paths start; "-" when there are none
 	settings []setting
+	data     []byte // the text, for the section [uncertain]
 }
 
 // readFile reads a regular file of bounded size. A pipe or a device could make
@@ -154,6 +155,7 @@ func parse(l *layer, data []byte, accept func(key string, header bool) *KeyError
 		return false
 	}
 	data = bytes.TrimPrefix(data, []byte("\ufeff"))
+	l.data = data
 	before := len(errs.List)
 	var p unstable.Parser
 	p.Reset(data)
@@ -206,6 +208,10 @@ func parse(l *layer, data []byte, accept func(key string, header bool) *KeyError
 		case unstable.Table:
 			var n *unstable.Node
 			prefix, n = keyOf(e.Key(), nil)
+			if isUncertain(prefix) { // read by uncertainFields
+				refused = false
+				continue
+			}
 			key, at := join(prefix), line(n)
 			bad := accept(key, true)
 			if refused = bad != nil; refused {
@@ -227,6 +233,9 @@ func parse(l *layer, data []byte, accept func(key string, header bool) *KeyError
 				continue
 			}
 			path, n := keyOf(e.Key(), prefix)
+			if isUncertain(path) {
+				continue
+			}
 			leafs(path, e.Value(), line(n))
 		}
 	}

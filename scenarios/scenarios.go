@@ -46,6 +46,8 @@ type Resolved struct {
 	File  string // as the user named it; empty for a built-in scenario
 	Setup *carbon.Setup
 
+	Uncertain *Uncertain // the section [uncertain]; nil when there is none
+
 	// Origins says who set a key; a key that is missing has its default.
 	Origins map[string]string
 
@@ -123,8 +125,9 @@ func explainRef(ref string, err error) error {
 
 // resolver applies layers to a setup.
 type resolver struct {
-	res  *Resolved
-	errs Errors
+	res    *Resolved
+	errs   Errors
+	layers []*layer // that spoke, in order
 }
 
 func resolve(top *layer, name, file string, data []byte, sets []string) (*Resolved, error) {
@@ -153,6 +156,7 @@ func resolve(top *layer, name, file string, data []byte, sets []string) (*Resolv
 	r.base(top, nil)
 	r.apply(top)
 	r.apply(flags)
+	r.uncertain(append(r.layers, top), flags)
 	if len(r.errs.List) == 0 {
 		r.finish()
 	}
@@ -187,6 +191,7 @@ func (r *resolver) base(l *layer, seen []string) {
 	b.settings = slices.DeleteFunc(b.settings, func(s setting) bool { return s.key == "title" || s.key == "name" || s.key == "notes" })
 	r.base(b, append(seen, s.val.text))
 	r.apply(b)
+	r.layers = append(r.layers, b)
 }
 
 // apply sets everything a layer says: laws first, since they decide which other

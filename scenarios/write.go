@@ -150,6 +150,7 @@ func (r *Resolved) TOML() string {
 		}
 		i = j
 	}
+	b.WriteString(r.uncertainTOML())
 	return b.String()
 }
 
