@@ -310,13 +310,8 @@ func (m *Model) start() (y State, words string) {
 	// Sunlight above what a warm surface can shed with the least CO₂ leaves no
 	// warm climate either; from the warm side that is a hot planet, even where a
 	// frozen one could reflect as much.
-	if p, _ := m.pressures(); s.StartSide != "cold" {
-		if t := math.Min(s.Strato.T, m.top()) - 1; m.imbalance(d.sun, t, p) > 0 {
-			y.T = t
-			y.Surface, y.Alk = m.carbonAt(p, t, m.ref.Total()*m.area)
-			y.Mantle = total - y.Surface
-			return y, "no warm climate at the start age: sunlight exceeds what a warm surface can shed"
-		}
+	if p, _ := m.pressures(); s.StartSide != "cold" && m.imbalance(d.sun, math.Min(s.Strato.T, m.top())-1, p) > 0 {
+		return m.hot(y, total), "no warm climate at the start age: sunlight exceeds what a warm surface can shed"
 	}
 	z, found, any = scan(s.FrozenBelow, lo, all)
 	if found || any {
@@ -329,18 +324,30 @@ func (m *Model) start() (y State, words string) {
 	return z, "no climate in balance at the start age inside the radiation law's range"
 }
 
+// hot is a surface that no radiation inside the law's box can cool: it starts,
+// and ends, at the hot edge, with the least CO₂.
+func (m *Model) hot(y State, total float64) State {
+	p, _ := m.pressures()
+	y.T = m.top()
+	y.Surface, y.Alk = m.carbonAt(p, y.T, m.ref.Total()*m.area)
+	y.Mantle = total - y.Surface
+	return y
+}
+
 // bare relaxes the temperature from the cold side at the least CO₂ pressure of
 // the radiation law's box, below which sunlight alone sets the climate. It is
-// where a history starts when no pressure inside the box is in balance.
+// where a history starts when no pressure inside the box is in balance; at the
+// edges of the box it is over at once.
 func (m *Model) bare(y State, d *memo, total float64) State {
 	p, _ := m.pressures()
-	lo, hi := math.Max(150, m.set.radiation.law.Box().T.Lo), m.top()
-	t := lo
-	for x := lo; x < hi; x += 0.5 {
-		if m.imbalance(d.sun, x, p) <= 0 {
+	t, top := math.Max(150, m.set.radiation.law.Box().T.Lo), m.top()
+	for ; t < top; t += 0.5 {
+		if m.imbalance(d.sun, t, p) <= 0 {
 			break
 		}
-		t = x
+	}
+	if t >= top {
+		return m.hot(y, total)
 	}
 	y.T = t
 	y.Surface, y.Alk = m.carbonAt(p, t, m.ref.Total()*m.area)
@@ -384,11 +391,15 @@ func (m *Model) strength(age float64, y State) strength {
 	return strength{gain: along(2) / along(3), response: -y.Surface / along(1)}
 }
 
-// sensitivityK returns the warming per doubling of CO₂ at the reference state, K.
+// sensitivityK returns the warming per doubling of CO₂ at the reference state, K;
+// NaN where outgoing radiation does not change with temperature.
 func (m *Model) sensitivityK() float64 {
 	s := m.set
 	sun := s.RefSun / 4
 	lam := fd.Derivative(func(t float64) float64 { return m.imbalance(sun, t, s.RefP) }, s.RefT, &fd.Settings{Formula: fd.Central, Step: 1e-3})
+	if lam == 0 {
+		return math.NaN()
+	}
 	return (m.imbalance(sun, s.RefT, 2*s.RefP) - m.imbalance(sun, s.RefT, s.RefP)) / -lam
 }
 

@@ -23,6 +23,7 @@ const (
 	endDry      = "the water is lost"
 	endCondense = "CO2 condenses at the coldest place"
 	endFreezes  = "the largest number of freezes was reached"
+	endSwings   = "the climate swings without an end in sight"
 	endSolver   = "the solver could not go on"
 )
 
@@ -53,6 +54,45 @@ const (
 	dry           = 0.01
 )
 
+// swings counts swings of the temperature that follow one another without a
+// freeze. Close to a fold a climate may swing within millennia, over and over:
+// to follow that for billions of years has no end.
+type swings struct {
+	start, last   float64 // first and last turn, yr
+	cold, warm    float64 // its extremes, K
+	count         int     // turns
+	extreme, sign float64 // since the last turn
+}
+
+// A turn counts when it leads back by swingKelvin within swingQuiet.
+const (
+	swingKelvin = 1.0
+	swingQuiet  = 10 * units.Myr
+)
+
+func (w *swings) reset(t, temp float64) {
+	*w = swings{start: t, last: t, cold: temp, warm: temp, extreme: temp, sign: w.sign}
+}
+
+// see takes the temperature at the end of a step.
+func (w *swings) see(t, temp float64) {
+	switch {
+	case w.extreme == 0 || t-w.last > swingQuiet:
+		w.reset(t, temp)
+	case w.sign == 0:
+		w.sign = math.Copysign(1, temp-w.extreme)
+	}
+	w.cold, w.warm = math.Min(w.cold, temp), math.Max(w.warm, temp)
+	if (temp-w.extreme)*w.sign >= 0 {
+		w.extreme = temp
+	} else if math.Abs(temp-w.extreme) > swingKelvin {
+		if w.count++; w.count == 1 {
+			w.start = t
+		}
+		w.last, w.extreme, w.sign = t, temp, -w.sign
+	}
+}
+
 // regainLasting is how long a regained stability must last for the loss before
 // it to be another matter, yr.
 const regainLasting = 10 * units.Myr
@@ -68,6 +108,7 @@ type history struct {
 	marks  []mark
 	frozen []span
 	moist  []span
+	swings swings
 	end    float64
 	reason string
 	cause  error // of endSolver
@@ -116,6 +157,9 @@ const (
 	evDry
 	evCount
 )
+
+// endOf names the end a terminal event brings.
+var endOf = [evCount]string{evHot: endHot, evCold: endCold, evDense: endDense, evCondense: endCondense, evDry: endDry}
 
 // lookup gives the CO₂ pressure of a state vector.
 type lookup struct{ m *Model }
@@ -269,6 +313,17 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 	keep(s.Start, y, true)
 	err = solver.Init(s.Start, end, y)
 	done := false
+	// A start at an edge or beyond it is the end: an event sees crossings only.
+	for i := range events {
+		e := &events[i]
+		if g := e.Func(s.Start, y); e.Terminal > 0 && (e.Direction == ode.Rising && g >= 0 || e.Direction == ode.Falling && g <= 0) {
+			h.reason, done = endOf[i], true
+			if i == evCondense {
+				once(record.MarkCondensation, s.Start)
+			}
+			break
+		}
+	}
 	for n := 0; err == nil && !done; n++ {
 		if n&255 == 0 && ctx.Err() != nil {
 			return nil, ctx.Err()
@@ -304,6 +359,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 					isFrozen = true
 					h.frozen = append(h.frozen, span{lost: lost, start: e.T, end: nan})
 					h.marks = append(h.marks, mark{record.MarkFroze, e.T})
+					h.swings.reset(e.T, y[0])
 					lost, regained = nan, nan
 				}
 			case evThaw:
@@ -315,8 +371,6 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 				}
 			case evSupply:
 				once(e.Name, e.T)
-			case evDry:
-				h.reason = endDry
 			case evC3, evC4:
 				if !isFrozen {
 					once(e.Name, e.T)
@@ -331,14 +385,10 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 					h.moist[len(h.moist)-1].end = e.T
 				}
 				lost, regained = nan, nan
-			case evHot:
-				h.reason = endHot
-			case evCold:
-				h.reason = endCold
-			case evDense:
-				h.reason = endDense
+			case evHot, evCold, evDense, evDry:
+				h.reason = endOf[e.Index]
 			case evCondense:
-				h.reason = endCondense
+				h.reason = endOf[e.Index]
 				once(record.MarkCondensation, e.T)
 			}
 		}
@@ -352,6 +402,10 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 		}
 		drift(y)
 		keep(t, y, force)
+		if h.swings.see(t, y[0]); h.swings.count >= 2*int(s.MaxFreezes) && !done {
+			h.reason = endSwings
+			break
+		}
 		if len(h.frozen) >= int(s.MaxFreezes) && isFrozen && !done {
 			h.reason = endFreezes
 			break
@@ -448,5 +502,12 @@ func (m *Model) anchor(ctx context.Context, rtol float64) (residual float64, err
 		}
 		b, fb = x, fx
 	}
+	if math.Abs(fb) > jump {
+		return fb, &SetupError{key: "carbon.solve", Reason: fmt.Sprintf("no value of the %s brings the history through %s at %s: it jumps past from ln(p/p0) = %.2g to %.2g", s.Solve, units.Pressure.Format(s.RefP, "ppm"), units.Time.Format(s.RefAge, "Gyr"), math.Min(fa, fb), math.Max(fa, fb))}
+	}
 	return fb, nil
 }
+
+// jump is the residual ln(p/p₀) above which a solve that cannot be narrowed
+// further has found a jump instead of a root.
+const jump = 1e-2

@@ -181,6 +181,9 @@ func NewModel(s *Setup) (*Model, error) {
 	if err := bind("star", s.star.law.Bind()); err != nil {
 		return nil, err
 	}
+	if end := s.star.law.End(); end <= s.Start {
+		return nil, &SetupError{key: "time.start", Reason: fmt.Sprintf("found %s, allowed is before the star leaves the main sequence or its table ends, %s", units.Time.Format(s.Start, "Gyr"), units.Time.Format(end, "Gyr"))}
+	}
 	if err := bind("radiation", s.radiation.law.Bind(cref)); err != nil {
 		return nil, err
 	}
@@ -196,6 +199,9 @@ func NewModel(s *Setup) (*Model, error) {
 		m.freeName, m.free = name, *v
 	}
 	if err := bind("interior", s.interior.law.Bind(m.planet, s.RefAge)); err != nil {
+		return nil, err
+	}
+	if err := m.magma(); err != nil {
 		return nil, err
 	}
 	if err := bind("sources", s.sources.law.Bind(m.ref)); err != nil {
@@ -223,6 +229,25 @@ func NewModel(s *Setup) (*Model, error) {
 	c, alk := m.carbonAt(s.RefP, s.RefT, s.OutgassingRef*m.area)
 	m.lnH0 = math.Log(s.ocean.law.Solve(c, alk, s.RefT).H)
 	return m, nil
+}
+
+// fastest is the crust production relative to the Earth's above which there is
+// no crust: at 10,000 all of it would be younger than some ten thousand years.
+const fastest = 1e4
+
+// magma refuses an interior that starts as a magma ocean.
+func (m *Model) magma() error {
+	law := m.set.interior.law
+	tm, tc := law.Start(m.set.Start)
+	crust := law.Flow(m.set.Start, tm, tc).Crust
+	if crust <= fastest {
+		return nil
+	}
+	key := "interior.crust_exponent"
+	if m.set.Number("interior.start_temperature") != nil {
+		key = "interior.start_temperature"
+	}
+	return &SetupError{key: key, Reason: fmt.Sprintf("found a crust made %.3g times as fast as the Earth's at the start, allowed is up to %g times: beyond, there is an ocean of magma", crust, float64(fastest))}
 }
 
 // carbonAt returns surface carbon and alkalinity, mol, at a CO₂ pressure in bar
@@ -285,6 +310,10 @@ func (m *Model) drive(age, mantleT, coreT float64) *memo {
 	return d
 }
 
+// limit is ℓ(p), 1 at the reference state: all that takes carbon from the
+// surface vanishes with it.
+func (m *Model) limit(p float64) float64 { return m.limNorm * p / (p + m.set.Limiter) }
+
 // weather fills the fluxes of both sinks at temperature t (K) and CO₂ pressure
 // p (bar) into a row that already has sunlight, albedo, land, biology and crust.
 //
@@ -296,7 +325,7 @@ func (m *Model) drive(age, mantleT, coreT float64) *memo {
 func (m *Model) weather(r *record.Row, lnp, lnh float64) {
 	s, env := m.set, &m.env
 	*env = weathering.Env{Age: r.Age, T: r.Temperature, P: r.PCO2, LnP: lnp - m.lnP0, Sun: r.Sunlight / 4, Alb: r.Albedo, Crust: r.Crust, LnH: lnh - m.lnH0}
-	lim := m.limNorm * r.PCO2 / (r.PCO2 + s.Limiter)
+	lim := m.limit(r.PCO2)
 	kinetic := r.Biology * m.iceNorm[0] * (1 - (1-s.LandIce)*r.Ice) * lim * s.land.law.Relative(env)
 	r.Land = m.ref.Land * m.area * r.LandFraction * s.supply.Of(kinetic)
 	r.SupplyUse = s.supply.Use(kinetic)
@@ -337,19 +366,31 @@ func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
 	f := s.sources.law.Fluxes(in)
 	r.Ridge, r.Arc, r.Metamorphic = f.Ridge, f.Arc, f.Metamorphic
 	r.Pulse = d.pulse
+	if r.Pulse < 0 {
+		r.Pulse *= m.limit(r.PCO2) // what is not there cannot be taken
+	}
 	r.Outgassing = f.Ridge + f.Arc + f.Metamorphic + r.Pulse
 	r.Burial = r.Land + r.Seafloor
 	r.Deposited = m.deposited * r.Land
 	if m.pair != nil {
 		// Carbonate leaves as it precipitates, shared as weathering would have it.
-		share := m.deposited * r.Land / r.Burial
+		weathered := r.Burial
 		r.Burial = m.pair.Precipitation(chem.Omega)
-		r.Deposited = share * r.Burial
+		r.Deposited *= part(r.Burial, weathered)
 	}
 	r.Imbalance = r.Outgassing - r.Burial
 	r.Subducted = f.Subducted
 	r.Foundered = f.Foundered
 	return chem
+}
+
+// part returns a/b, and 1 when b is 0: what is buried is then taken to be all
+// from the seafloor, which has a part of its own.
+func part(a, b float64) float64 {
+	if b == 0 {
+		return 1
+	}
+	return a / b
 }
 
 // derivative is the right-hand side: it calls diagnose and sums its fluxes.
@@ -363,6 +404,7 @@ func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
 //	dT_mantle/dt      from the interior
 //	dM_water/dt       = −escape through the stratosphere
 //
+// The escape of carbon and a pulse that takes carbon away end with it, as ℓ(p).
 // burial = W_land + W_sea unless alkalinity is a state; then it is the
 // precipitation of carbonate, and burial_land its share W_land/(W_land + W_sea).
 func (m *Model) derivative(dydt []float64, age float64, y []float64) {
@@ -373,7 +415,7 @@ func (m *Model) derivative(dydt []float64, age float64, y []float64) {
 	weathered := r.Land + r.Seafloor
 	land := r.Land
 	if m.pair != nil {
-		land *= r.Burial / weathered
+		land *= part(r.Burial, weathered)
 	}
 	rate := State{
 		T:           (r.Absorbed - r.Outgoing) * units.Year / m.set.HeatCapacity,
@@ -386,7 +428,7 @@ func (m *Model) derivative(dydt []float64, age float64, y []float64) {
 		Alk:         2 * (weathered - r.Burial),
 	}
 	if m.escape && !flow.Dynamo && st.Surface > 0 {
-		rate.Escaped = m.set.EscapeCO2
+		rate.Escaped = m.set.EscapeCO2 * m.limit(r.PCO2)
 		rate.Surface -= rate.Escaped
 	}
 	if m.set.WaterEscape && st.Water > 0 {

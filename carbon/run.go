@@ -100,7 +100,10 @@ func (m *Model) judge(h *history) verdict {
 	}
 	for i, f := range h.frozen {
 		lasts := f.end - f.start
-		if math.IsNaN(f.end) {
+		switch {
+		case math.IsNaN(f.end) && h.reason == endSolver:
+			lasts = h.end - f.start // what follows is not known
+		case math.IsNaN(f.end):
 			lasts = math.Inf(1)
 			if i > 1 { // the last of three freezes or more is one of the cycles
 				continue
@@ -116,7 +119,7 @@ func (m *Model) judge(h *history) verdict {
 		}
 	}
 	for _, w := range h.moist {
-		if w.end-w.start < moistLasting {
+		if w.end-w.start < moistLasting || math.IsNaN(w.end) && h.reason == endSolver && h.end-w.start < moistLasting {
 			continue
 		}
 		if quick := math.IsNaN(w.end) && h.end-w.start < 1*units.Myr; math.IsNaN(w.lost) && !quick {
@@ -133,6 +136,8 @@ func (m *Model) judge(h *history) verdict {
 		}
 	case endCold, endDense:
 		add(record.BeyondRange, h.end, span{})
+	case endSwings:
+		add(record.BeyondRange, h.swings.start, span{})
 	case endCondense:
 		add(record.Condensation, h.end, span{})
 	case endDry:
@@ -476,6 +481,9 @@ func (b *builder) episodes() {
 		}
 	}
 	sort.SliceStable(cs, func(i, j int) bool { return cs[i].t < cs[j].t })
+	if h.reason == endSwings && b.fail.kind == record.BeyondRange {
+		cs = append(cs, change{math.Max(h.swings.start, cs[len(cs)-1].t), record.StateBeyond})
+	}
 	if h.reason == endCold || h.reason == endDense || (h.reason == endHot && b.fail.kind == record.BeyondRange) {
 		cs = append(cs, change{h.end, record.StateBeyond})
 	}
@@ -491,7 +499,9 @@ func (b *builder) episodes() {
 		b.run.Episodes = append(b.run.Episodes, record.Episode{State: c.state, Start: gyr(c.t), End: gyr(end)})
 	}
 	b.run.Freezes = len(h.frozen)
-	b.run.FrozenShare = frozenShare / (h.end - s.Start)
+	if h.end > s.Start {
+		b.run.FrozenShare = frozenShare / (h.end - s.Start)
+	}
 }
 
 // marks dates the crossings, with the error against the tighter run.
@@ -693,6 +703,10 @@ func (b *builder) solver(tight float64) {
 		MinStepYr: st.MinStep, MaxStepYr: st.MaxStep, Limiting: lim, Guard: b.m.set.Guard, Status: b.h.reason, TightenedTol: tight}
 }
 
+// driftAllowed is the relative change of the total of carbon above which a
+// result says so.
+const driftAllowed = 1e-9
+
 // warnings collects the doubts of the result.
 func (b *builder) warnings(residual float64) {
 	s, h := b.m.set, b.h
@@ -701,6 +715,9 @@ func (b *builder) warnings(residual float64) {
 	}
 	if h.cause != nil {
 		b.warn("solver", "the solver stopped: "+b.stopped())
+	}
+	if h.reason == endSwings {
+		b.warn("solver", fmt.Sprintf("the history was stopped after %d swings of the temperature, at %.3g Gyr", h.swings.count/2, gyr(h.end)))
 	}
 	if h.reason == endFreezes {
 		b.warn("solver", fmt.Sprintf("the history was stopped at %d freezes, %.3g Gyr", len(h.frozen), gyr(h.end)))
@@ -713,6 +730,15 @@ func (b *builder) warnings(residual float64) {
 	}
 	if math.Abs(b.m.balanceResidual) > 0.05 {
 		b.warn("albedo", fmt.Sprintf("the energy balance at the reference state is left with %.2g W/m2", b.m.balanceResidual))
+	}
+	if h.drift > driftAllowed {
+		b.warn("carbon", fmt.Sprintf("the total of carbon drifts by %.2g of itself", h.drift))
+	}
+	for i := range h.rows {
+		if r := &h.rows[i]; r.Mantle < 0 {
+			b.warn("carbon", fmt.Sprintf("%s from %.4g Gyr on: outgassing is prescribed and takes no account of it", record.MantleEmpty, gyr(r.Age)))
+			break
+		}
 	}
 	for _, sec := range s.Sections() {
 		for _, f := range sec.Fields {

@@ -35,10 +35,14 @@ func (b *builder) outcome(check *history) {
 		}
 	case record.LimitCycles:
 		o.Sentence = fmt.Sprintf("From %s on the climate cycles between snowball and warm: %d freezes by %.3g Gyr, %.0f %% of the history under ice.", when, len(h.frozen), gyr(h.end), 100*b.run.FrozenShare)
-	case record.MoistGreen:
+	case record.MoistGreen, record.RunawayGreen:
 		o.Sentence = fmt.Sprintf("Surface water is safe for %.3g Gyr; at %s the stratosphere turns moist and the planet begins to lose its water.", liquid, when)
-	case record.RunawayGreen:
-		o.Sentence = fmt.Sprintf("Surface water stays liquid for %.3g Gyr; at %s sunlight exceeds what the planet can radiate: runaway greenhouse.", liquid, when)
+		if b.fail.kind == record.RunawayGreen {
+			o.Sentence = fmt.Sprintf("Surface water stays liquid for %.3g Gyr; at %s sunlight exceeds what the planet can radiate: runaway greenhouse.", liquid, when)
+		}
+		if liquid < 1e-3 {
+			o.Sentence = fmt.Sprintf("The planet has no temperate climate at its start, %.3g Gyr: it ends in a %s.", gyr(s.Start), b.fail.kind)
+		}
 	case record.Condensation:
 		o.Sentence = fmt.Sprintf("At %s, CO2 condenses at the coldest place before the greenhouse can act.", date(gyr(h.end), o.ErrorGyr))
 		if cold.start > 0 {
@@ -53,6 +57,10 @@ func (b *builder) outcome(check *history) {
 		}
 	case record.BeyondRange:
 		o.Sentence = fmt.Sprintf("At %s the climate leaves the range of the radiation law (%s): what follows is not known to this model.", when, beyond(h.reason))
+		if h.reason == endSwings {
+			w := &h.swings
+			o.Sentence = fmt.Sprintf("From %s on the climate swings between %.3g and %.3g K every %.2g kyr, %d times up to %.4g Gyr and without an end in sight: what follows is not known to this model.", when, w.cold, w.warm, (w.last-w.start)/float64(w.count-1)*2e-3, w.count/2, gyr(h.end))
+		}
 	case record.Undecided:
 		o.Sentence = fmt.Sprintf("Undecided: the solver could not go on at %.4g Gyr.", gyr(h.end))
 	}
@@ -142,6 +150,9 @@ func (b *builder) why() string {
 		return fmt.Sprintf("outgassing went from %.3g to %.3g Tmol/yr while sunlight went from %.0f to %.0f %% of the Earth's today and weatherable land from %.2g to %.2g%s",
 			r0.Outgassing/1e12, r.Outgassing/1e12, 100*r0.Flux, 100*r.Flux, r0.LandFraction*r0.Biology, r.LandFraction*r.Biology, needs)
 	case record.MoistGreen, record.RunawayGreen:
+		if b.fail.t <= r0.Age {
+			return fmt.Sprintf("at the start sunlight is %.0f %% of the Earth's today and outgassing %.3g Tmol/yr", 100*r0.Flux, r0.Outgassing/1e12)
+		}
 		if r.PCO2 > r0.PCO2 {
 			return fmt.Sprintf("outgassing of %.3g Tmol/yr exceeded the %.3g Tmol/yr that weathering took up, so CO2 rose from %s to %s at %.0f %% of the Earth's sunlight today",
 				r.Outgassing/1e12, (r.Land+r.Seafloor)/1e12, pressure(r0.PCO2), pressure(r.PCO2), 100*r.Flux)

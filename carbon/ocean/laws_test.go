@@ -95,7 +95,7 @@ func TestRoundTrip(t *testing.T) {
 				t.Fatalf("%s: %+v", name, s)
 			}
 		}
-		if name != "fraction" {
+		if sat, ok := l.(*Saturated); name != "fraction" && !(ok && c < (1+scarce)*sat.m*s.CO3) {
 			if total := MolesPerBar(pl)*s.P + pl.Mass*s.DIC; math.Abs(total/c-1) > 1e-12*(1+amplify*1e-2) {
 				t.Fatalf("%s: reservoirs hold %g of %g", name, total, c)
 			}
@@ -149,13 +149,35 @@ func TestNone(t *testing.T) {
 			}
 		}
 	}
+}
+
+// TestScarceCarbon: where a saturated ocean has hardly a state left, pressure
+// goes on positive, rising and smooth down to no carbon, and is below 3e-11 bar there.
+func TestScarceCarbon(t *testing.T) {
 	l := bound(t, Laws[0]).(*Saturated)
-	c, _ := l.Carbon(0, 288)
-	if s := l.Solve(0.999*c, 0, 288); !math.IsNaN(s.P) {
-		t.Errorf("less carbon than the carbonate ion holds gives %g bar", s.P)
-	}
-	if s := l.Solve(1.001*c, 0, 288); !(s.P > 0) {
-		t.Errorf("more carbon than the carbonate ion holds gives %g bar", s.P)
+	for T := 200.0; T <= 400; T += 25 {
+		full := l.m * l.at(T).co3
+		join := full * (1 + scarce)
+		at := func(c float64) float64 { return l.Solve(c, 0, T).P }
+		if p := at(join); !(p < 3e-11) {
+			t.Errorf("%g K: the hyperbola begins at %g bar", T, p)
+		}
+		before := 0.0
+		for c := 1e-9 * full; c < 1.1*full; c += full * min(1e-3, 0.1*c/full+1e-9) {
+			p := at(c)
+			if !(p > before) {
+				t.Fatalf("%g K: %g bar at %g of the carbonate ion, %g just below", T, p, c/full, before)
+			}
+			if back, _ := l.Carbon(p, T); math.Abs(back/c-1) > 1e-9 {
+				t.Fatalf("%g K: %g mol come back as %g", T, c, back)
+			}
+			before = p
+		}
+		const e = 1e-7
+		up, down := (at(join*(1+e))-at(join))/e, (at(join)-at(join*(1-e)))/e
+		if math.Abs(up/down-1) > 1e-3 {
+			t.Errorf("%g K: slope jumps from %g to %g", T, down, up)
+		}
 	}
 }
 

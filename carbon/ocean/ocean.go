@@ -33,7 +33,7 @@ type Law interface {
 	Bind(p Planet) error
 	// Solve returns the chemistry for surface carbon c in mol, ocean
 	// alkalinity alk in mol (ignored unless HasAlkalinity) and surface
-	// temperature t in K. P is NaN where no state holds so little carbon.
+	// temperature t in K. P is NaN where c ≤ 0.
 	Solve(c, alk, t float64) State
 	// Carbon returns the surface carbon in mol, and the alkalinity in mol,
 	// that belong to a CO₂ pressure in bar in saturation with calcite.

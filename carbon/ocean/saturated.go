@@ -19,7 +19,12 @@ import (
 //
 // with n of MolesPerBar and M the mass of the ocean. On the time scale of
 // carbonate compensation, 10 kyr, the seafloor keeps Ω; pH falls by 0.5 for
-// every tenfold pCO₂. No state holds less carbon than M [CO₃²⁻].
+// every tenfold pCO₂.
+//
+// Hardly any state is left where C falls to M [CO₃²⁻], for instance in an ocean
+// that cools with next to no CO₂ above it. Own choice: from 1.001 M [CO₃²⁻]
+// down, where p is below 3e-11 bar, the carbon above M [CO₃²⁻] is continued by a
+// hyperbola that ends at no carbon and no pressure.
 type Saturated struct {
 	Seawater
 	Omega float64 // Ω
@@ -48,13 +53,42 @@ func (l *Saturated) at(t float64) fixed {
 	}
 }
 
+// scarce is the carbon above M [CO₃²⁻], as a part of it, below which the
+// hyperbola goes on.
+const scarce = 1e-3
+
+// above returns (C − M [CO₃²⁻])/(M [CO₃²⁻]) for y = C/(M [CO₃²⁻]), continued
+// below 1 + ε by the hyperbola of the same slope through y = 0:
+//
+//	u²/(u + 1 + ε − y) − ε²,  u = ε (1 + ε)
+func above(y float64) float64 {
+	if y >= 1+scarce {
+		return y - 1
+	}
+	const u = scarce * (1 + scarce)
+	return scarce * scarce * y / (u + 1 + scarce - y)
+}
+
+// below is the inverse of above.
+func below(x float64) float64 {
+	if x >= scarce {
+		return x + 1
+	}
+	const u = scarce * (1 + scarce)
+	return x * (u + 1 + scarce) / (scarce*scarce + x)
+}
+
 // Solve returns the positive root of the quadratic; every field is NaN when
-// c ≤ M [CO₃²⁻].
+// c ≤ 0.
 func (l *Saturated) Solve(c, _, t float64) State {
-	k := l.at(t)
-	free := c - l.m*k.co3
-	if !(free > 0) {
+	if !(c > 0) {
 		return none()
+	}
+	k := l.at(t)
+	fixed := l.m * k.co3
+	free := c
+	if fixed > 0 {
+		free = fixed * above(c/fixed)
 	}
 	a, b := l.n+l.m*k.k0, l.m*k.root
 	return l.state(&k, 2*free/(b+math.Sqrt(b*b+4*a*free)))
@@ -72,7 +106,11 @@ func (l *Saturated) state(k *fixed, x float64) State {
 func (l *Saturated) Carbon(p, t float64) (c, alk float64) {
 	k := l.at(t)
 	s := l.state(&k, math.Sqrt(p))
-	return l.n*p + l.m*s.DIC, l.m * s.Alk
+	c = l.n*p + l.m*s.DIC
+	if fixed := l.m * k.co3; c-fixed < scarce*fixed {
+		c = fixed * below((l.n*p+l.m*(s.CO2+s.HCO3))/fixed)
+	}
+	return c, l.m * s.Alk
 }
 
 // Slope returns d ln C/d ln p at constant temperature.
