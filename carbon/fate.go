@@ -30,9 +30,9 @@ func Fate(ctx context.Context, s *Setup, ages []float64) (*record.Member, error)
 			var step *ode.StepError
 			switch {
 			case errors.As(err, &se):
-				return undecided(s, record.StatusUnanchored), nil
+				return Unrun(s, record.StatusUnanchored), nil
 			case errors.As(err, &step):
-				return undecided(s, record.StatusSolver), nil
+				return Unrun(s, record.StatusSolver), nil
 			}
 			return nil, err
 		}
@@ -44,8 +44,8 @@ func Fate(ctx context.Context, s *Setup, ages []float64) (*record.Member, error)
 	return m.member(h, residual, ages), nil
 }
 
-// undecided is the row of a member without a history.
-func undecided(s *Setup, status string) *record.Member {
+// Unrun is the row of a member without a history.
+func Unrun(s *Setup, status string) *record.Member {
 	nan := math.NaN()
 	u := &record.Member{Kind: record.Undecided, TimeGyr: gyr(s.Start), Status: status, EndGyr: gyr(s.Start),
 		EndT: nan, EndP: nan, EndPH: nan, ColdestK: nan, HottestK: nan, Solved: nan, Residual: nan, FrozenShare: nan, Drift: nan}

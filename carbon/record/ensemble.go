@@ -18,10 +18,11 @@ const (
 	StatusSolver     = "the solver could not go on"
 	StatusUnanchored = "no history through the reference state"
 	StatusImpossible = "the values do not fit together"
+	StatusFault      = "the program failed"
 )
 
-// Statuses lists them in the order they are shown; the last three have no outcome.
-var Statuses = []string{StatusEnd, StatusTable, StatusStar, StatusHot, StatusCold, StatusDense, StatusDry, StatusCondense, StatusFreezes, StatusSolver, StatusUnanchored, StatusImpossible}
+// Statuses lists them in the order they are shown; the last four have no outcome.
+var Statuses = []string{StatusEnd, StatusTable, StatusStar, StatusHot, StatusCold, StatusDense, StatusDry, StatusCondense, StatusFreezes, StatusSolver, StatusUnanchored, StatusImpossible, StatusFault}
 
 // Member is one member of an ensemble: what a row of members.parquet holds
 // besides the drawn values. What a history did not reach is NaN.
