@@ -641,13 +641,13 @@ func (x *explainer) distances(run *record.Run) {
 	}
 	add := func(r *record.Row) {
 		c := ConditionsOf(r)
-		for _, old := range x.out.Curves {
-			if old.AgeGyr == gyr(c.Age) {
+		for i := range x.out.Curves {
+			if x.out.Curves[i].AgeGyr == gyr(c.Age) {
 				return
 			}
 		}
 		m.memo.valid = false
-		x.out.Curves = append(x.out.Curves, m.equilibria(c).Record(r.Outgassing))
+		x.out.Curves = append(x.out.Curves, *m.equilibria(c).Record(r.Outgassing))
 	}
 	add(&rows[0])
 	for i := range rows {
@@ -757,6 +757,9 @@ func (x *explainer) margins(run *record.Run) {
 		}
 	}
 	add("warm branch", "cold", "% of sunlight", func(d *record.Distance) float64 { return d.ColdSun }, func(d *record.Distance) string {
+		if d.ColdSun == 0 {
+			return fmt.Sprintf("the warm state has no sunlight to lose from %.4g Gyr on", d.AgeGyr)
+		}
 		return fmt.Sprintf("closest to freezing by sunlight at %.4g Gyr: %.3g %% less would have ended the warm state", d.AgeGyr, d.ColdSun)
 	})
 	add("hot end of the warm branch", "hot", "times the outgassing", func(d *record.Distance) float64 { return d.HotFactor }, func(d *record.Distance) string {

@@ -26,7 +26,7 @@ type Steady struct {
 
 // Fold is a state at which the climate must jump.
 type Fold struct {
-	Steady
+	Steady     `json:"state"`
 	Name       string  `json:"name"`
 	GrowthWm2K float64 `json:"growth_w_m2_k"` // what is left of the growth rate at the located fold
 }

@@ -20,9 +20,9 @@ type Explanation struct {
 	Combinations []Combination `json:"combinations"` // of drivers that change and drivers held still
 	Cause        Cause         `json:"cause"`
 
-	Margins   []Margin      `json:"margins"`   // closest approach to every boundary
-	Distances []Distance    `json:"distances"` // to failure, through time
-	Curves    []*Equilibria `json:"curves"`    // of steady states at the start, at the failure and at the reference age
+	Margins   []Margin     `json:"margins"`   // closest approach to every boundary
+	Distances []Distance   `json:"distances"` // to failure, through time
+	Curves    []Equilibria `json:"curves"`    // of steady states at the start, at the failure and at the reference age
 
 	Rescues      []Rescue     `json:"rescues"`      // by smallness against the published uncertainty
 	Elasticities []Elasticity `json:"elasticities"` // by size

@@ -49,10 +49,15 @@ type options struct {
 	out   string
 	sets  []string
 	quiet bool
+
+	postpone string // explain
+	x, y     string // map
+	cells    int    // likewise
+	depth    int    // likewise
 }
 
 func commands() []command {
-	return []command{runCommand, checkCommand, keysCommand, newCommand, versionCommand, licencesCommand}
+	return []command{runCommand, explainCommand, mapCommand, compareCommand, checkCommand, keysCommand, newCommand, versionCommand, licencesCommand}
 }
 
 func setFlag(f *pflag.FlagSet, o *options) {

@@ -46,6 +46,23 @@ var Palette = map[string]Tone{
 	"pool.mantle":      {"#6b1f2a", "#b5545f"},
 	"pool.total":       {"#4b555b", "#a3a9b4"},
 
+	// scenarios side by side
+	"series.1": {"#2b2d6e", "#5a60c8"},
+	"series.2": {"#a8631b", "#c07c30"},
+	"series.3": {"#2c90a3", "#39a7ba"},
+	"series.4": {"#d0427a", "#d23c66"},
+	"series.5": {"#8258b3", "#9b7bd0"},
+
+	// dates on a map, early to late
+	"shade.1": {"#5b1a18", "#f6e3c5"},
+	"shade.2": {"#842f22", "#f0c89a"},
+	"shade.3": {"#a9482a", "#e4a873"},
+	"shade.4": {"#c76538", "#d1875a"},
+	"shade.5": {"#dc8551", "#b3694a"},
+	"shade.6": {"#e8a775", "#92503f"},
+	"shade.7": {"#f0c8a0", "#703a35"},
+	"shade.8": {"#f6e4cc", "#4f292b"},
+
 	// the zone
 	"zone.inner": {"#8fbf9f", "#3f6b50"},
 	"zone.outer": {"#cfe3d4", "#263a2e"},
