@@ -197,7 +197,10 @@ func (m *mapper) base(ctx context.Context, run *record.Run) error {
 	if m.steady {
 		m.out.Meant = fmt.Sprintf("each point is the planet under steady conditions for %.3g Gyr: sunlight, outgassing, land, biology and crust production as at %.4g Gyr unless an axis sets them", heldSpan/units.Gyr, gyr(row.Age))
 	} else {
-		m.out.Meant = fmt.Sprintf("each point is the history of the same planet with two values changed; its carbon content is %s and sources.scale = %.6g throughout", units.Content.Format(round(m.set.Content, 6), "mmol/kg"), m.set.OutgassingScale)
+		m.out.Meant = "each point is the history of the same planet with two values changed"
+		if on := m.ranges[0].Key + " " + m.ranges[1].Key; !strings.Contains(on, "carbon.content") {
+			m.out.Meant += "; its carbon content is " + units.Content.Format(round(m.set.Content, 6), "mmol/kg") + " throughout"
+		}
 	}
 	return nil
 }
@@ -322,9 +325,11 @@ func (m *mapper) refine(ctx context.Context) error {
 	for _, c := range leaves {
 		cell := record.FateCell{I: c.i, J: c.j, Size: c.size, Kind: m.known[[2]int{c.i, c.j}].Kind, Mixed: m.mixed(c)}
 		sum, n := 0.0, 0
-		for _, p := range c.corners() {
+		for k, p := range c.corners() {
+			cell.Corners[k] = math.NaN()
 			if q := m.known[p]; q.Kind == cell.Kind && !math.IsNaN(q.TimeGyr) {
 				sum, n = sum+q.TimeGyr, n+1
+				cell.Corners[k] = q.TimeGyr
 			}
 			area[m.known[p].Kind] += float64(c.size*c.size) / 4
 		}

@@ -44,6 +44,11 @@ func same(t *testing.T, what string, a, b *record.Map) {
 			if math.IsNaN(m.Cells[i].TimeGyr) {
 				m.Cells[i].TimeGyr = -1
 			}
+			for k := range m.Cells[i].Corners {
+				if math.IsNaN(m.Cells[i].Corners[k]) {
+					m.Cells[i].Corners[k] = -1
+				}
+			}
 		}
 		for i := range m.Lines {
 			for k := range m.Lines[i].Y {

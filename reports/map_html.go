@@ -73,8 +73,8 @@ func axisName(a *record.Axis) string {
 
 // frameOf sets an empty plot over the map's axes.
 func frameOf(m *record.Map, id, title string) *plot {
-	x := plotAxis{Name: upper(axisWords(&m.X)), Lo: m.X.Lo, Hi: m.X.Hi, Log: m.X.Log}
-	y := plotAxis{Name: upper(axisWords(&m.Y)), Lo: m.Y.Lo, Hi: m.Y.Hi, Log: m.Y.Log}
+	x := plotAxis{Name: axisWords(&m.X), Lo: m.X.Lo, Hi: m.X.Hi, Log: m.X.Log}
+	y := plotAxis{Name: axisWords(&m.Y), Lo: m.Y.Lo, Hi: m.Y.Hi, Log: m.Y.Log}
 	p := newPlot(id, title, x, y)
 	p.H = 560
 	p.B = p.H - 52
@@ -82,16 +82,16 @@ func frameOf(m *record.Map, id, title string) *plot {
 	return p
 }
 
-// cells joins the cells for which pick gives a name into one path for each name.
-func cells(p *plot, m *record.Map, pick func(c *record.FateCell) string) map[string]string {
+// cells joins the places of the lattice to which pick gives the same name into one
+// path. u and v tell where in its cell a place lies.
+func cells(p *plot, m *record.Map, pick func(c *record.FateCell, u, v float64) string) map[string]string {
 	// Rows of cells of one name are drawn as one rectangle.
 	name := make([]string, m.N*m.N)
 	for i := range m.Cells {
 		c := &m.Cells[i]
-		s := pick(c)
 		for x := c.I; x < c.I+c.Size; x++ {
 			for y := c.J; y < c.J+c.Size; y++ {
-				name[y*m.N+x] = s
+				name[y*m.N+x] = pick(c, (float64(x-c.I)+0.5)/float64(c.Size), (float64(y-c.J)+0.5)/float64(c.Size))
 			}
 		}
 	}
@@ -142,7 +142,7 @@ func equal(a, b []string) bool {
 func (b *mapBody) plots() {
 	m := b.Map
 	p := frameOf(m, "map", "Which fate where")
-	paths := cells(p, m, func(c *record.FateCell) string { return string(c.Kind) })
+	paths := cells(p, m, func(c *record.FateCell, _, _ float64) string { return string(c.Kind) })
 	for _, k := range record.Kinds {
 		if d := paths[string(k)]; d != "" {
 			p.Areas = append(p.Areas, plotPath{Role: outcomeRole(k), D: d, Pattern: kindPattern(k)})
@@ -172,11 +172,16 @@ func (b *mapBody) plots() {
 	}
 	const steps = 8
 	q := frameOf(m, "dates", "When it fails")
-	shade := cells(q, m, func(c *record.FateCell) string {
+	shade := cells(q, m, func(c *record.FateCell, u, v float64) string {
 		if !fails(c) {
 			return ""
 		}
-		return fmt.Sprint(min(int(steps*(c.TimeGyr-lo)/(hi-lo)), steps-1))
+		k := c.Corners
+		t := (1-v)*((1-u)*k[0]+u*k[1]) + v*((1-u)*k[2]+u*k[3])
+		if !known(t) {
+			t = c.TimeGyr
+		}
+		return fmt.Sprint(max(0, min(int(steps*(t-lo)/(hi-lo)), steps-1)))
 	})
 	for k := 0; k < steps; k++ {
 		role := fmt.Sprintf("shade.%d", k+1)
@@ -195,6 +200,7 @@ func (b *mapBody) plots() {
 func overlay(p *plot, m *record.Map) {
 	for i, l := range m.Lines {
 		dash := []string{"", "dashed", "dotted"}[i%3]
+		p.Lines = append(p.Lines, plotPath{Role: "paper", D: p.line(l.X, l.Y), Halo: true})
 		if p.curve("ink", dash, true, l.X, l.Y) {
 			p.Keys = append(p.Keys, plotKey{Role: "ink", Dash: dash, Name: "boundary: " + clean(l.Name)})
 		}
@@ -206,9 +212,13 @@ func overlay(p *plot, m *record.Map) {
 		}
 		p.curve("paper", "", true, xs, ys)
 		p.curve("flux.pulse", "", true, xs, ys)
-		for _, q := range []record.PathPoint{m.Path[0], m.Path[len(m.Path)-1]} {
-			p.dot("flux.pulse", num.Age(q.AgeGyr), q.X, q.Y, false)
+		first, last := m.Path[0], m.Path[len(m.Path)-1]
+		p.dot("flux.pulse", num.Age(first.AgeGyr), first.X, first.Y, false)
+		end := num.Age(last.AgeGyr)
+		if known(m.X.Own) && known(m.Y.Own) && math.Hypot(m.X.Part(last.X)-m.X.Part(m.X.Own), m.Y.Part(last.Y)-m.Y.Part(m.Y.Own)) < 0.08 {
+			end = ""
 		}
+		p.dot("flux.pulse", end, last.X, last.Y, false)
 		p.Keys = append(p.Keys, plotKey{Role: "flux.pulse", Name: "the scenario’s own path"})
 	}
 	if known(m.X.Own) && known(m.Y.Own) {

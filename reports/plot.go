@@ -37,7 +37,7 @@ type plotTick struct {
 
 type plotPath struct {
 	Role, D, Dash, Pattern string
-	Wide                   bool
+	Wide, Halo             bool
 }
 
 type plotDot struct {

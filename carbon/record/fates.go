@@ -28,7 +28,8 @@ type FatePoint struct {
 type FateCell struct {
 	I, J, Size int
 	Kind       Kind
-	TimeGyr    float64 // mean of the corners that share the kind
+	TimeGyr    float64    // mean of the corners that share the kind
+	Corners    [4]float64 // dates at (0,0), (1,0), (0,1), (1,1); NaN where the kind is another
 	Mixed      bool
 }
 
