@@ -16,6 +16,8 @@ var licenceFiles embed.FS
 // libraries lists what is linked in, in the order it is shown.
 var libraries = []struct{ module, file string }{
 	{"Go standard library", "go"},
+	{"github.com/VividCortex/ewma", "ewma"},
+	{"github.com/acarl005/stripansi", "stripansi"},
 	{"github.com/andybalholm/brotli", "brotli"},
 	{"github.com/clipperhouse/uax29/v2", "uax29"},
 	{"github.com/go-echarts/go-echarts/v2", "go-echarts"},
@@ -29,6 +31,8 @@ var libraries = []struct{ module, file string }{
 	{"github.com/pierrec/lz4/v4", "lz4"},
 	{"github.com/spf13/pflag", "pflag"},
 	{"github.com/twpayne/go-geom", "go-geom"},
+	{"github.com/vbauerster/cupwriter", "cupwriter"},
+	{"github.com/vbauerster/mpb/v8", "mpb"},
 	{"golang.org/x/sys", "sys"},
 	{"golang.org/x/term", "term"},
 	{"gonum.org/v1/gonum", "gonum"},
