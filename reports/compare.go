@@ -93,7 +93,11 @@ func CompareTerminal(w io.Writer, c *record.Comparison, opt TerminalOptions) err
 		rows = append(rows, row)
 	}
 	if len(rows) > 0 {
-		rows = append([][]string{append([]string{""}, c.Names...)}, rows...)
+		head := []string{""}
+		for _, n := range c.Names {
+			head = append(head, clean(n))
+		}
+		rows = append([][]string{head}, rows...)
 	}
 	t.table(fmt.Sprintf("What differs in input (%d agree)", c.Agree), rows)
 	rows = nil

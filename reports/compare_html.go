@@ -22,6 +22,9 @@ var comparePage = template.Must(page.Parse("compare", plotTemplate+compareTempla
 type compareBody struct {
 	*record.Comparison
 	Heading, AgreeWords string
+	Command             string
+	Names               []string
+	Differ              []record.Difference
 	Results             []comparedRow
 	MarginHeads         []string
 	Figures             []*page.Figure
@@ -45,7 +48,17 @@ func lineOf(i int) (role, dash string) {
 
 // CompareHTML writes the comparison as report.html.
 func CompareHTML(w io.Writer, c *record.Comparison) error {
-	b := &compareBody{Comparison: c, Licences: Licences()}
+	b := &compareBody{Comparison: c, Licences: Licences(), Command: clean(c.Command)}
+	for _, n := range c.Names {
+		b.Names = append(b.Names, clean(n))
+	}
+	for _, d := range c.Differ {
+		d := record.Difference{Key: clean(d.Key), Doc: typeset(clean(d.Doc)), Values: append([]string(nil), d.Values...)}
+		for i := range d.Values {
+			d.Values[i] = num.Unit(clean(d.Values[i]))
+		}
+		b.Differ = append(b.Differ, d)
+	}
 	b.Heading = clip(sentence(c.Words), 400)
 	b.AgreeWords = fmt.Sprintf("%d inputs are the same everywhere and are not shown.", c.Agree)
 	for _, m := range c.Margins {

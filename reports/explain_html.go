@@ -40,7 +40,8 @@ func blot(k record.Kind, gyr float64, censored bool) blotOf {
 
 type explainBody struct {
 	*record.Explanation
-	ShortTitle, Heading                  string
+	ShortTitle, Heading, Command         string
+	ElasticWords                         string
 	CauseWords, RescueWords, SpreadWords string
 	Doubts                               []record.Warning
 	DriverNames                          []string
@@ -121,7 +122,7 @@ func ExplainHTML(w io.Writer, e *record.Explanation) error {
 	if err := doc.Finish(); err != nil {
 		return err
 	}
-	b := &explainBody{Explanation: e, Figures: doc.Figures, Licences: Licences()}
+	b := &explainBody{Explanation: e, Figures: doc.Figures, Licences: Licences(), Command: clean(e.Command), ElasticWords: sentence(e.ElasticWords)}
 	if known(doc.Present) {
 		b.Clock = "before " + num.Short(doc.Present, 4) + " Gyr"
 	}

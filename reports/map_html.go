@@ -21,6 +21,7 @@ var mapPage = template.Must(page.Parse("map", plotTemplate+mapTemplate, plotFunc
 type mapBody struct {
 	*record.Map
 	ShortTitle, Heading, Meant, Made string
+	Command                          string
 	Plots                            []*plot
 	Shares                           []mapShare
 	LineNotes                        []string
@@ -36,7 +37,7 @@ type mapShare struct {
 
 // MapHTML writes the map as report.html.
 func MapHTML(w io.Writer, m *record.Map) error {
-	b := &mapBody{Map: m, Licences: Licences()}
+	b := &mapBody{Map: m, Licences: Licences(), Command: clean(m.Command)}
 	b.ShortTitle = clip(titleFor(m.Title, m.Name), 120)
 	b.Heading = sentence(fmt.Sprintf("which fate where: %s against %s", axisName(&m.Y), axisName(&m.X)))
 	b.Meant = sentence(m.Meant)

@@ -45,7 +45,11 @@ func text(v any) string {
 // CSV writes the sheet under a header row.
 func (s *sheet) csv(w io.Writer) error {
 	out := csv.NewWriter(w)
-	if err := out.Write(s.head); err != nil {
+	head := make([]string, len(s.head))
+	for i, h := range s.head {
+		head[i] = clean(h)
+	}
+	if err := out.Write(head); err != nil {
 		return err
 	}
 	for _, r := range s.rows {
@@ -126,11 +130,34 @@ func columns(width int, rows [][]string) []string {
 			wide[i] = max(wide[i], runewidth.StringWidth(c))
 		}
 	}
+	// The widest columns give way until the last has room.
+	room := func() int {
+		n := width
+		for i := range len(wide) - 1 {
+			n -= wide[i] + 2
+		}
+		return n
+	}
+	for room() < min(16, width/4) {
+		k := 0
+		for i := range len(wide) - 1 {
+			if wide[i] > wide[k] {
+				k = i
+			}
+		}
+		if wide[k] <= 4 {
+			break
+		}
+		wide[k]--
+	}
 	var out []string
 	for _, r := range rows {
 		var b strings.Builder
 		used := 0
 		for i, c := range r {
+			if i < len(r)-1 {
+				c = short(c, wide[i])
+			}
 			if i == len(r)-1 {
 				b.WriteString(short(c, max(width-used, 8)))
 				break
