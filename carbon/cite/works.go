@@ -3,10 +3,14 @@ package cite
 // The works, in order of first author. Titles, volumes and pages are from
 // memory unless a check elsewhere says otherwise.
 var (
+	AalenJohansen1978 = &Work{Key: "aalen1978", Authors: []string{"Aalen, O. O.", "Johansen, S."}, Year: 1978,
+		Title: "An empirical transition matrix for non-homogeneous Markov chains based on censored observations", Journal: "Scandinavian Journal of Statistics", Volume: "5", Pages: "141-150"}
 	Abbot2012 = &Work{Key: "abbot2012", Authors: []string{"Abbot, D. S.", "Cowan, N. B.", "Ciesla, F. J."}, Year: 2012,
 		Title: "Indication of insensitivity of planetary weathering behavior and habitable zone to surface land fraction", Journal: "The Astrophysical Journal", Volume: "756", Pages: "178"}
 	AltTeagle1999 = &Work{Key: "alt1999", Authors: []string{"Alt, J. C.", "Teagle, D. A. H."}, Year: 1999,
 		Title: "The uptake of carbon during alteration of ocean crust", Journal: "Geochimica et Cosmochimica Acta", Volume: "63", Pages: "1527-1535"}
+	Andersen2013 = &Work{Key: "andersen2013", Authors: []string{"Andersen, P. K."}, Year: 2013,
+		Title: "Decomposition of number of life years lost according to causes of death", Journal: "Statistics in Medicine", Volume: "32", Pages: "5278-5285"}
 	Bahcall2001 = &Work{Key: "bahcall2001", Authors: []string{"Bahcall, J. N.", "Pinsonneault, M. H.", "Basu, S."}, Year: 2001,
 		Title: "Solar models: current epoch and time dependences, neutrinos, and helioseismological properties", Journal: "The Astrophysical Journal", Volume: "555", Pages: "990-1012"}
 	Baumeister2023 = &Work{Key: "baumeister2023", Authors: []string{"Baumeister, P.", "Tosi, N.", "Brachmann, C.", "Grenfell, J. L.", "Noack, L."}, Year: 2023,
@@ -31,6 +35,24 @@ var (
 		Title: "The life span of the biosphere revisited", Journal: "Nature", Volume: "360", Pages: "721-723"}
 	CaldeiraKasting1992Ice = &Work{Key: "caldeira1992ice", Authors: []string{"Caldeira, K.", "Kasting, J. F."}, Year: 1992,
 		Title: "Susceptibility of the early Earth to irreversible glaciation caused by carbon dioxide clouds", Journal: "Nature", Volume: "359", Pages: "226-228"}
+	Efron1987 = &Work{Key: "efron1987", Authors: []string{"Efron, B."}, Year: 1987,
+		Title: "Better bootstrap confidence intervals", Journal: "Journal of the American Statistical Association", Volume: "82", Pages: "171-185"}
+	ImanConover1982 = &Work{Key: "iman1982", Authors: []string{"Iman, R. L.", "Conover, W. J."}, Year: 1982,
+		Title: "A distribution-free approach to inducing rank correlation among input variables", Journal: "Communications in Statistics - Simulation and Computation", Volume: "11", Pages: "311-334"}
+	Jansen1999 = &Work{Key: "jansen1999", Authors: []string{"Jansen, M. J. W."}, Year: 1999,
+		Title: "Analysis of variance designs for model output", Journal: "Computer Physics Communications", Volume: "117", Pages: "35-43"}
+	JoeKuo2008 = &Work{Key: "joe2008", Authors: []string{"Joe, S.", "Kuo, F. Y."}, Year: 2008,
+		Title: "Constructing Sobol sequences with better two-dimensional projections", Journal: "SIAM Journal on Scientific Computing", Volume: "30", Pages: "2635-2654"}
+	MarubiniValsecchi1995 = &Work{Key: "marubini1995", Authors: []string{"Marubini, E.", "Valsecchi, M. G."}, Year: 1995,
+		Title: "Analysing survival data from clinical trials and observational studies", Journal: "Wiley", Kind: "book"}
+	McKay1979 = &Work{Key: "mckay1979", Authors: []string{"McKay, M. D.", "Beckman, R. J.", "Conover, W. J."}, Year: 1979,
+		Title: "A comparison of three methods for selecting values of input variables in the analysis of output from a computer code", Journal: "Technometrics", Volume: "21", Pages: "239-245"}
+	Owen1995 = &Work{Key: "owen1995", Authors: []string{"Owen, A. B."}, Year: 1995,
+		Title: "Randomly permuted (t,m,s)-nets and (t,s)-sequences", Journal: "Monte Carlo and Quasi-Monte Carlo Methods in Scientific Computing, Springer", Pages: "299-317"}
+	Saltelli2010 = &Work{Key: "saltelli2010", Authors: []string{"Saltelli, A.", "Annoni, P.", "Azzini, I.", "Campolongo, F.", "Ratto, M.", "Tarantola, S."}, Year: 2010,
+		Title: "Variance based sensitivity analysis of model output. Design and estimator for the total sensitivity index", Journal: "Computer Physics Communications", Volume: "181", Pages: "259-270"}
+	Sudret2008 = &Work{Key: "sudret2008", Authors: []string{"Sudret, B."}, Year: 2008,
+		Title: "Global sensitivity analysis using polynomial chaos expansions", Journal: "Reliability Engineering & System Safety", Volume: "93", Pages: "964-979"}
 	CODATA2018 = &Work{Key: "codata2018", Authors: []string{"Tiesinga, E.", "Mohr, P. J.", "Newell, D. B.", "Taylor, B. N."}, Year: 2021,
 		Title: "CODATA recommended values of the fundamental physical constants: 2018", Journal: "Reviews of Modern Physics", Volume: "93", Pages: "025010"}
 	CooganDosso2015 = &Work{Key: "coogan2015", Authors: []string{"Coogan, L. A.", "Dosso, S. E."}, Year: 2015,
@@ -165,6 +187,8 @@ var (
 		Title: "Effects of climate on chemical weathering in watersheds", Journal: "Geochimica et Cosmochimica Acta", Volume: "59", Pages: "1729-1747"}
 	WilliamsKasting1997 = &Work{Key: "williams1997", Authors: []string{"Williams, D. M.", "Kasting, J. F."}, Year: 1997,
 		Title: "Habitable planets with high obliquities", Journal: "Icarus", Volume: "129", Pages: "254-267"}
+	Wilson1927 = &Work{Key: "wilson1927", Authors: []string{"Wilson, E. B."}, Year: 1927,
+		Title: "Probable inference, the law of succession, and statistical inference", Journal: "Journal of the American Statistical Association", Volume: "22", Pages: "209-212"}
 	Zeng2016 = &Work{Key: "zeng2016", Authors: []string{"Zeng, L.", "Sasselov, D. D.", "Jacobsen, S. B."}, Year: 2016,
 		Title: "Mass-radius relation for rocky planets based on PREM", Journal: "The Astrophysical Journal", Volume: "819", Pages: "127"}
 )

@@ -121,13 +121,12 @@ type Sensitivities struct {
 
 // Border is the closest pair of members with different outcomes.
 type Border struct {
-	A        Kind     `json:"a"`
-	B        Kind     `json:"b"`
-	MemberA  int      `json:"member_a"`
-	MemberB  int      `json:"member_b"`
-	Distance float64  `json:"distance"` // root mean square difference of the inputs, in quantiles
-	Apart    string   `json:"apart"`    // the input that differs most, in words
-	Differs  []string `json:"-"`
+	A        Kind    `json:"a"`
+	B        Kind    `json:"b"`
+	MemberA  int     `json:"member_a"`
+	MemberB  int     `json:"member_b"`
+	Distance float64 `json:"distance"` // root mean square difference of the inputs, in quantiles
+	Apart    string  `json:"apart"`    // the input that differs most, in words
 }
 
 // UncertainInput is one line of the section [uncertain].
@@ -154,17 +153,15 @@ type AtAge struct {
 
 // ByLaw are the dates of one outcome under one choice of law.
 type ByLaw struct {
-	Key      string   `json:"key"`
-	Choice   string   `json:"choice"`
-	Kind     Kind     `json:"kind"`
-	Count    int      `json:"count"`
-	Of       int      `json:"of"`
-	Share    Interval `json:"share"`
-	Median   float64  `json:"median_gyr"`
-	Low, Up  float64  `json:"-"` // 5 and 95 %
-	LowGyr   float64  `json:"q05_gyr"`
-	HighGyr  float64  `json:"q95_gyr"`
-	Restlife float64  `json:"-"`
+	Key     string   `json:"key"`
+	Choice  string   `json:"choice"`
+	Kind    Kind     `json:"kind"`
+	Count   int      `json:"count"`
+	Of      int      `json:"of"`
+	Share   Interval `json:"share"`
+	Median  float64  `json:"median_gyr"`
+	LowGyr  float64  `json:"q05_gyr"`
+	HighGyr float64  `json:"q95_gyr"`
 }
 
 // Typical is the history of a typical member.
@@ -192,6 +189,7 @@ type Ensemble struct {
 	EndGyr      float64          `json:"end_gyr"`
 	Sentence    string           `json:"sentence"` // the verdict in one sentence
 	Uncertain   []UncertainInput `json:"uncertain"`
+	Correlated  []string         `json:"correlations"`
 	Shares      []FateShare      `json:"shares"`
 	Liquid      Curve            `json:"liquid_water"` // probability that surface water is still liquid
 	Incidence   []Curve          `json:"cumulative_incidence"`

@@ -266,45 +266,10 @@ func readMembers(r io.ReaderAt, size int64, p *Plan, each func(rec []float64) er
 		all := make([][]float64, len(cols))
 		for i, chunk := range g.ColumnChunks() {
 			c := &p.columns[at[i]]
-			var vals []float64
-			pages := chunk.Pages()
-			buf := make([]parquet.Value, 1024)
-			for {
-				page, err := pages.ReadPage()
-				if err == io.EOF {
-					break
-				}
-				if err != nil {
-					pages.Close()
-					return err
-				}
-				vr := page.Values()
-				for {
-					m, err := vr.ReadValues(buf)
-					for _, v := range buf[:m] {
-						x := math.NaN()
-						switch {
-						case v.IsNull():
-						case c.words != nil:
-							x = float64(slices.Index(c.words, string(v.ByteArray())))
-						case c.integer:
-							x = float64(v.Int64())
-						default:
-							x = v.Double()*c.scale + c.offset
-						}
-						vals = append(vals, x)
-					}
-					if err == io.EOF {
-						break
-					}
-					if err != nil {
-						pages.Close()
-						return err
-					}
-				}
-				parquet.Release(page)
+			vals, err := appendChunk(nil, chunk, c)
+			if err != nil {
+				return err
 			}
-			pages.Close()
 			if len(vals) != n {
 				return fmt.Errorf("%d values of %s instead of %d", len(vals), c.name, n)
 			}
@@ -320,6 +285,47 @@ func readMembers(r io.ReaderAt, size int64, p *Plan, each func(rec []float64) er
 		}
 	}
 	return nil
+}
+
+// appendChunk appends the values of one column of a row group.
+func appendChunk(out []float64, chunk parquet.ColumnChunk, c *column) ([]float64, error) {
+	pages := chunk.Pages()
+	defer pages.Close()
+	buf := make([]parquet.Value, 1024)
+	for {
+		page, err := pages.ReadPage()
+		if err == io.EOF {
+			return out, nil
+		}
+		if err != nil {
+			return nil, err
+		}
+		values := page.Values()
+		for {
+			m, err := values.ReadValues(buf)
+			for _, v := range buf[:m] {
+				x := math.NaN()
+				switch {
+				case v.IsNull():
+				case c.words != nil:
+					x = float64(slices.Index(c.words, string(v.ByteArray())))
+				case c.integer:
+					x = float64(v.Int64())
+				default:
+					x = v.Double()*c.scale + c.offset
+				}
+				out = append(out, x)
+			}
+			if err == io.EOF {
+				break
+			}
+			if err != nil {
+				parquet.Release(page)
+				return nil, err
+			}
+		}
+		parquet.Release(page)
+	}
 }
 
 // row unpacks a record.
