@@ -80,6 +80,7 @@ type variant struct {
 	// Of a solve that is close to one known: ln of what is solved for over its
 	// start, and d ln p/d of it. A slope of 0 is not known.
 	guess, slope float64
+	rough        bool // a solve may miss by 3e-4 in ln p: enough to look for a change
 }
 
 // fate runs the variant once. Only ctx makes it fail.
@@ -94,11 +95,14 @@ func (v *variant) fate(ctx context.Context) (fate, error) {
 	m.hold = m.holdAtStart(v.still)
 	var h *history
 	if s.Solve != "nothing" && v.slope != 0 {
-		h, err = m.solvedNear(ctx, v.rtol, v.guess, v.slope)
+		h, err = m.solvedNear(ctx, v.rtol, v.guess, v.slope, v.rough)
 	}
 	if h == nil && err == nil {
-		*m.knob() *= math.Exp(math.Max(-3, math.Min(v.guess, 3)))
-		h, _, err = m.solved(ctx, v.rtol)
+		*m.knob() *= math.Exp(math.Max(-1, math.Min(v.guess, 1)))
+		var residual float64
+		if h, residual, err = m.solved(ctx, v.rtol); err == nil && math.Abs(residual) > 0.01 {
+			return fate{words: "nothing that may be solved for brings the history through the reference state"}, nil
+		}
 	}
 	if err != nil {
 		if ctx.Err() != nil {
@@ -130,11 +134,14 @@ func (m *Model) missed(h *history) (f float64, ok bool) {
 // solvedNear is solved for a planet whose solution is nearly known: the secant
 // method from a guess and a slope, on whole histories so that the last one is the
 // answer. It returns nil when that does not converge.
-func (m *Model) solvedNear(ctx context.Context, rtol, guess, slope float64) (*history, error) {
+func (m *Model) solvedNear(ctx context.Context, rtol, guess, slope float64, rough bool) (*history, error) {
 	s, knob := m.set, m.knob()
 	x0 := *knob
 	tol := math.Max(1e-8, 0.3*rtol)
-	x := guess
+	if rough {
+		tol = math.Max(tol, 3e-4)
+	}
+	x := math.Max(-3, math.Min(guess, 3))
 	var px, pf float64
 	for i := 0; i < 8; i++ {
 		*knob = x0 * math.Exp(x)
@@ -144,7 +151,7 @@ func (m *Model) solvedNear(ctx context.Context, rtol, guess, slope float64) (*hi
 		}
 		f, ok := m.missed(h)
 		switch {
-		case !ok || math.Abs(f) > 2:
+		case !ok || math.Abs(f) > 5:
 			*knob = x0
 			return nil, nil
 		case math.Abs(f) < tol:
@@ -263,6 +270,10 @@ func Explain(ctx context.Context, s *Setup, opt ExplainOptions) (*record.Explana
 	combos := make([]fate, 1<<len(active))
 	inputs := make([]inputResult, len(fields))
 	others := make([]fate, len(laws))
+	singles := 0
+	for singles < len(laws) && len(laws[singles].parts) == 1 {
+		singles++
+	}
 	total := len(combos) + len(fields) + len(laws) + 1
 	count := 0
 	done := func() {
@@ -271,23 +282,30 @@ func Explain(ctx context.Context, s *Setup, opt ExplainOptions) (*record.Explana
 			opt.Progress(count, total)
 		}
 	}
-	err = each(ctx, opt.Workers, total, done, func(i int) (err error) {
-		// The longest jobs first.
-		if i < len(fields) {
-			inputs[i], err = x.input(fields[i])
-			return err
-		}
-		if i -= len(fields); i < len(laws) {
-			others[i], err = x.underLaws(laws[i])
-			return err
-		}
-		if i -= len(laws); i < len(combos) {
-			combos[i], err = x.combination(active, i)
-			return err
-		}
-		x.distances(run)
-		return nil
+	err = each(ctx, opt.Workers, singles, done, func(i int) (err error) {
+		others[i], err = x.underLaws(laws[i])
+		return err
 	})
+	if err == nil {
+		x.guessPairs(laws, others, singles)
+		err = each(ctx, opt.Workers, total-singles, done, func(i int) (err error) {
+			// The longest jobs first.
+			if i < len(fields) {
+				inputs[i], err = x.input(fields[i])
+				return err
+			}
+			if i += singles - len(fields); i < len(laws) {
+				others[i], err = x.underLaws(laws[i])
+				return err
+			}
+			if i -= len(laws); i < len(combos) {
+				combos[i], err = x.combination(active, i)
+				return err
+			}
+			x.distances(run)
+			return nil
+		})
+	}
 	if err != nil {
 		return nil, err
 	}
@@ -487,7 +505,10 @@ func shapleyWeight(k, n int) float64 {
 }
 
 // lawVariant changes the law of one or two parts.
-type lawVariant struct{ parts, laws []string }
+type lawVariant struct {
+	parts, laws []string
+	guess       float64 // of ln of what is solved for, over that of the scenario
+}
 
 // lawParts are the parts of the model whose laws rival one another.
 var lawParts = []string{"weathering.land", "weathering.seafloor", "radiation"}
@@ -516,14 +537,14 @@ func (x *explainer) lawVariants() []lawVariant {
 	var out []lawVariant
 	for _, p := range lawParts {
 		for _, l := range x.published(p) {
-			out = append(out, lawVariant{[]string{p}, []string{l}})
+			out = append(out, lawVariant{parts: []string{p}, laws: []string{l}})
 		}
 	}
 	for i, p := range lawParts {
 		for _, q := range lawParts[i+1:] {
 			for _, l := range x.published(p) {
 				for _, k := range x.published(q) {
-					out = append(out, lawVariant{[]string{p, q}, []string{l, k}})
+					out = append(out, lawVariant{parts: []string{p, q}, laws: []string{l, k}})
 				}
 			}
 		}
@@ -535,13 +556,40 @@ func (x *explainer) lawVariants() []lawVariant {
 // state, the albedo closes the balance there anew, and what the scenario solves
 // for is solved again.
 func (x *explainer) underLaws(l lawVariant) (fate, error) {
-	v := variant{set: x.solvedClone(), slope: x.slope}
+	v := variant{set: x.solvedClone(), slope: x.slope, guess: l.guess}
 	for i, p := range l.parts {
 		if err := v.set.Choose(p, l.laws[i]); err != nil {
 			return fate{words: err.Error()}, nil
 		}
 	}
 	return x.run(&v)
+}
+
+// guessPairs starts the solve under two other laws from what each of them alone
+// needed.
+func (x *explainer) guessPairs(laws []lawVariant, fates []fate, singles int) {
+	if x.slope == 0 {
+		return
+	}
+	alone := map[string]float64{}
+	for i := range laws[:singles] {
+		if fates[i].kind != "" {
+			alone[laws[i].parts[0]+"="+laws[i].laws[0]] = x.moved(&fates[i])
+		}
+	}
+	for i := singles; i < len(laws); i++ {
+		for j := range laws[i].parts {
+			laws[i].guess += alone[laws[i].parts[j]+"="+laws[i].laws[j]]
+		}
+	}
+}
+
+// moved is ln of what was solved for, over that of the scenario.
+func (x *explainer) moved(f *fate) float64 {
+	if x.set.Solve == "outgassing" {
+		return math.Log(f.scale / x.base.scale)
+	}
+	return math.Log(f.content / x.base.content)
 }
 
 // solvedClone copies the setup with what was solved as the start of the next solve.

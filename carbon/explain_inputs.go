@@ -58,7 +58,7 @@ func (x *explainer) fields() []inputField {
 }
 
 // vary runs the planet with one input changed.
-func (x *explainer) vary(in *inputField, value float64) (fate, error) {
+func (x *explainer) vary(in *inputField, value float64, rough bool) (fate, error) {
 	s := x.solvedClone()
 	f := s.Number(in.key)
 	if err := f.Check(value); err != nil {
@@ -80,13 +80,9 @@ func (x *explainer) vary(in *inputField, value float64) (fate, error) {
 			}
 		}
 	}
-	r, err := x.run(&variant{set: s, guess: guess, slope: x.slope})
+	r, err := x.run(&variant{set: s, guess: guess, slope: x.slope, rough: rough})
 	if err == nil && r.kind != "" {
-		now, then := r.content, x.base.content
-		if x.set.Solve == "outgassing" {
-			now, then = r.scale, x.base.scale
-		}
-		in.known = append(in.known, solvedAt{value, math.Log(now / then)})
+		in.known = append(in.known, solvedAt{value, x.moved(&r)})
 	}
 	return r, err
 }
@@ -98,7 +94,9 @@ type solvedAt struct {
 }
 
 // sameDate tells that an input has no effect at all.
-func (x *explainer) sameDate(f *fate) bool { return f.t == x.base.t && f.kind == x.base.kind }
+func (x *explainer) sameDate(f *fate) bool {
+	return f.kind == x.base.kind && math.Abs(f.t-x.base.t) <= 1e-9*x.base.t
+}
 
 // input finds the elasticity and the rescue of one input.
 func (x *explainer) input(in inputField) (r inputResult, err error) {
@@ -120,6 +118,7 @@ func (x *explainer) input(in inputField) (r inputResult, err error) {
 const (
 	elasticityStep      = 0.01
 	elasticityTolerance = 0.01
+	elasticityFloor     = 2e-4 // absolute; what is smaller moves no date to speak of
 )
 
 // elasticity takes d ln t/d ln x by central differences at one and two steps,
@@ -130,7 +129,7 @@ func (x *explainer) elasticity(in *inputField, r *inputResult) error {
 	// date is ln(t/t₀) at a number of steps.
 	date := func(k float64) (float64, error) {
 		v := in.x0 * math.Exp(k*elasticityStep)
-		f, err := x.vary(in, v)
+		f, err := x.vary(in, v, false)
 		if err != nil {
 			return 0, err
 		}
@@ -219,7 +218,7 @@ func (x *explainer) elasticity(in *inputField, r *inputResult) error {
 			} else {
 				r.elasticity, r.err = d1, math.Abs(y[1]+y[0])/h
 			}
-			if r.err <= elasticityTolerance*math.Abs(r.elasticity) || h < elasticityStep/8 {
+			if r.err <= math.Max(elasticityTolerance*math.Abs(r.elasticity), elasticityFloor) || h < elasticityStep/8 {
 				break
 			}
 			// Half the step: the inner points become the outer ones.
@@ -270,7 +269,7 @@ func (x *explainer) rescue(in *inputField, r *inputResult) error {
 		if in.x0 > 0 && end > 0 && math.Abs(math.Log(end/in.x0)) > math.Log(4) && in.f.Kind != units.Temperature {
 			at = func(q float64) float64 { return in.x0 * math.Exp(math.Log(end/in.x0)*q) }
 		}
-		last, err := x.vary(in, end)
+		last, err := x.vary(in, end, true)
 		if err != nil {
 			return err
 		}
@@ -290,7 +289,7 @@ func (x *explainer) rescue(in *inputField, r *inputResult) error {
 				if math.Abs(at(q)-in.x0) > best {
 					break // a smaller change the other way is known
 				}
-				if f, err = x.vary(in, at(q)); err != nil {
+				if f, err = x.vary(in, at(q), true); err != nil {
 					return err
 				}
 			}
@@ -311,7 +310,7 @@ func (x *explainer) rescue(in *inputField, r *inputResult) error {
 			if a == 0 && b > 0.01 {
 				mid = b / 4
 			}
-			f, err := x.vary(in, at(mid))
+			f, err := x.vary(in, at(mid), true)
 			if err != nil {
 				return err
 			}
@@ -326,7 +325,7 @@ func (x *explainer) rescue(in *inputField, r *inputResult) error {
 		}
 		v := in.outward(at(b))
 		if d := math.Abs(v - in.x0); d < best {
-			f, err := x.vary(in, v)
+			f, err := x.vary(in, v, false)
 			if err != nil {
 				return err
 			}

@@ -6,9 +6,9 @@ import (
 	"fmt"
 	"math"
 
-	"cycle/carbon/climate"
 	"cycle/carbon/record"
 	"cycle/carbon/units"
+	"cycle/carbon/weathering"
 	"cycle/ode"
 )
 
@@ -124,7 +124,7 @@ type history struct {
 func (m *Model) atol(rtol float64) []float64 {
 	a := make([]float64, m.lay.n)
 	a[0] = rtol * 1 // K
-	a[m.lay.surface] = rtol * 1e15
+	a[m.lay.surface] = rtol * 1e12
 	a[m.lay.seafloor] = rtol * 1e17
 	a[m.lay.continental] = rtol * 1e18
 	a[m.lay.mantle] = rtol * 1e20
@@ -161,16 +161,41 @@ const (
 // endOf names the end a terminal event brings.
 var endOf = [evCount]string{evHot: endHot, evCold: endCold, evDense: endDense, evCondense: endCondense, evDry: endDry}
 
-// lookup gives the CO₂ pressure of a state vector.
-type lookup struct{ m *Model }
+// lookup gives the logarithm of the CO₂ pressure of a state vector. It does not
+// disturb what the model keeps: events ask between the states of a step.
+type lookup struct {
+	m         *Model
+	t, c, alk float64
+	lnp       float64
+}
 
-func (l lookup) pressure(y []float64) float64 {
+func (l *lookup) pressure(y []float64) float64 {
 	lay := &l.m.lay
-	alk := 0.0
+	t, c, alk := y[0], y[lay.surface], 0.0
 	if lay.alk >= 0 {
 		alk = y[lay.alk]
 	}
-	return l.m.breathe(y[0], y[lay.surface], alk).chem.P
+	if l.t != t || l.c != c || l.alk != alk {
+		p, _ := l.m.set.ocean.law.Pressure(present(c), alk, t)
+		l.t, l.c, l.alk, l.lnp = t, c, alk, math.Log(p)
+	}
+	return l.lnp
+}
+
+// supplyUse gives land weathering as a part of its supply limit.
+func (l *lookup) supplyUse(age float64, y []float64) float64 {
+	m := l.m
+	s := m.set
+	lnp := l.pressure(y)
+	t, p := y[0], math.Exp(lnp)
+	env := &m.env
+	*env = weathering.Env{Age: age, T: t, P: p, LnP: lnp - m.lnP0}
+	kinetic := 0.0
+	if s.supply.Limit > 0 {
+		env.Sun, env.Alb = m.sunlight(age)/4, s.albedo.law.Planetary(t, p)
+		kinetic = m.kinetic(env, s.Biology.at(m.hold.at(driveBiology, age)), s.albedo.law.IceFraction(t))
+	}
+	return m.supplyUse(env, kinetic)
 }
 
 // integrate runs the history from its start to an age in yr. With full, a row
@@ -179,7 +204,8 @@ func (l lookup) pressure(y []float64) float64 {
 func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (*history, error) {
 	s := m.set
 	h := &history{reason: endTime}
-	m.memo.valid, m.air.valid = false, false
+	m.memo.valid = false
+	m.airs.forget()
 	var st State
 	words := "a given state"
 	if m.from != nil {
@@ -200,12 +226,13 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 		}
 	}
 	box := s.radiation.law.Box()
-	look := lookup{m}
+	look := &lookup{m: m, t: math.NaN()}
 	limit := func(target float64, stated bool) func(float64, []float64) float64 {
 		if !stated {
 			return func(float64, []float64) float64 { return -1 }
 		}
-		return func(_ float64, y []float64) float64 { return math.Log(look.pressure(y) / target) }
+		ln := math.Log(target)
+		return func(_ float64, y []float64) float64 { return look.pressure(y) - ln }
 	}
 	below := func(x float64, stated bool) func(float64, []float64) float64 {
 		if !stated {
@@ -227,16 +254,14 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 	events[evCold] = ode.Event{Name: "cold edge", Func: below(box.T.Lo, box.T.Stated()), Direction: ode.Falling, Terminal: 1}
 	events[evDense] = ode.Event{Name: "dense edge", Func: limit(box.P.Hi, box.P.Stated()), Direction: ode.Rising, Terminal: 1}
 	events[evCondense] = ode.Event{Name: record.MarkCondensation, Direction: ode.Rising, Terminal: 1, Func: func(_ float64, y []float64) float64 {
-		return math.Log(look.pressure(y) / condense(y[0]-s.ColdContrast))
+		return look.pressure(y) - math.Log(condense(y[0]-s.ColdContrast))
 	}}
 
 	events[evSupply] = ode.Event{Name: record.MarkSupply, Direction: ode.Rising, Func: func(t float64, y []float64) float64 {
 		if s.supply.Limit == 0 && m.saturates == nil {
 			return -1
 		}
-		m.lay.unpack(&m.state, y)
-		m.diagnose(&m.row, t, &m.state)
-		return m.row.SupplyUse - supplyReached
+		return look.supplyUse(t, y) - supplyReached
 	}}
 	events[evDry] = ode.Event{Name: "dry", Direction: ode.Falling, Terminal: 1, Func: func(_ float64, y []float64) float64 {
 		return y[m.lay.water]/st.Water - dry
@@ -269,10 +294,8 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 		var z State
 		m.lay.unpack(&z, y)
 		var r record.Row
-		chem := m.diagnose(&r, t, &z)
-		r.PH = -math.Log10(chem.H)
-		r.Pressure = s.Nitrogen + r.PCO2 + climate.WaterPressure(r.Temperature)
-		r.Boiling = climate.BoilingPoint(r.Pressure)
+		m.diagnose(&r, t, &z)
+		m.describe(&r, &z)
 		works := m.memo.flow.Dynamo
 		if n := len(h.rows); n > 0 && !force {
 			l := &h.rows[n-1]
@@ -486,6 +509,10 @@ func (m *Model) anchor(ctx context.Context, rtol float64) (residual float64, err
 		step *= 1.6
 	}
 	for i := 0; i < 60 && math.Abs(fb) > tol && math.Abs(b-a) > 1e-13; i++ {
+		// A jump between a frozen and a hot history holds no root.
+		if math.Min(math.Abs(fa), math.Abs(fb)) > 0.1 && math.Abs(b-a) < 1e-6 {
+			break
+		}
 		// Illinois variant of regula falsi: b is the newest point.
 		x := b - fb*(b-a)/(fb-fa)
 		if math.Abs(fa) >= far || math.Abs(fb) >= far {

@@ -241,6 +241,9 @@ func (b *explainBody) rescues() {
 		what = "the smallest change of each parameter that brings a failure"
 	}
 	b.RescueNote = upper(what) + ", found on whole histories and sorted by its size against the published uncertainty. What has no published range is searched over all that is allowed and stands behind."
+	if e.Run != nil && e.Run.Reference.Solved != "" {
+		b.RescueNote += " What the scenario solves for, so that the history passes through the reference state, is solved again each time: " + typeset(clean(e.Run.Reference.Solved)) + " holds for the scenario itself."
+	}
 	var parts []float64
 	var found []*record.Rescue
 	for i := range e.Rescues {
