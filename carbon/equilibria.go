@@ -503,6 +503,13 @@ func (e *Equilibria) Boundaries() record.Boundaries {
 				b.HotWhy, b.HotEnd = string(record.RunawayGreen), f
 			} else {
 				b.HotWhy, b.HotEnd = string(record.BeyondRange), e.steady(hot)
+				// The most CO₂ the radiation law knows is in balance in between.
+				_, most := m.pressures()
+				f := func(t float64) float64 { return m.imbalance(e.d.sun, t, most) }
+				if fa, fb := f(hot.t), f(hot.t+curveStep); fa > 0 && fb < 0 {
+					n := e.node(0, bracketed(f, hot.t, hot.t+curveStep, fa, fb, 1e-12), most)
+					b.HotEnd = e.steady(&n)
+				}
 				if p, _ := m.pressures(); m.imbalance(e.d.sun, hot.t+curveStep, p) > 0 {
 					b.HotWhy = string(record.RunawayGreen)
 				}
@@ -624,8 +631,10 @@ func (e *Equilibria) Fate(b *record.Boundaries, v float64) record.Kind {
 		return record.Snowball
 	case b.ThawWhy == string(record.Condensation):
 		return record.Condensation
-	case b.ThawWhy == string(record.BeyondRange) || b.ThawWhy == "":
-		return record.BeyondRange
+	case b.ThawWhy == string(record.BeyondRange):
+		return record.Snowball // still frozen where the radiation law ends
+	case b.ThawWhy == "":
+		return record.BeyondRange // no frozen climate either
 	}
 	return record.LimitCycles
 }

@@ -35,6 +35,15 @@ func steadyPlanet(tb testing.TB, sun, v float64) *Setup {
 // against histories that start warm but far from any steady state. What is
 // predicted wrong is listed with its distance to the boundaries.
 func TestBoundariesPredictHistories(t *testing.T) {
+	for _, c := range []struct {
+		radiation string
+		ice       float64 // strength of the seafloor under ice
+	}{{"kadoya2019", 1}, {"williams1997", 0}, {"linear_byrne2014", 0.3}} {
+		t.Run(c.radiation, func(t *testing.T) { predict(t, c.radiation, c.ice) })
+	}
+}
+
+func predict(t *testing.T, radiation string, ice float64) {
 	total, hits := 0, 0
 	for i := 0; i < 16; i++ {
 		sun := 0.58 + 0.04*float64(i)
@@ -43,6 +52,10 @@ func TestBoundariesPredictHistories(t *testing.T) {
 		for j := 0; j < 14; j++ {
 			v := 0.3e12 * math.Pow(200, float64(j)/13)
 			s := steadyPlanet(t, sun, v)
+			s.SeafloorIce = ice
+			if err := s.Choose("radiation", radiation); err != nil {
+				t.Fatal(err)
+			}
 			if e == nil {
 				var err error
 				if e, err = NewEquilibria(s, Conditions{Age: s.Start, Sunlight: sun * units.SolarFlux, Land: 1, Biology: 1, Crust: 1}); err != nil {
