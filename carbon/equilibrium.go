@@ -48,6 +48,19 @@ func (m *Model) balance(sun, t float64) (p float64, low, high bool) {
 	return hi, false, true
 }
 
+// balanceNear is balance where the pressure next to it is known, by its
+// logarithm; it finds the same root while that moves by less than 0.3.
+func (m *Model) balanceNear(sun, t, near float64) (p float64, low, high bool) {
+	lo, hi := m.pressures()
+	g := func(x float64) float64 { return m.imbalance(sun, t, math.Exp(x)) }
+	if a, b := near-0.3, near+0.3; a > math.Log(lo) && b < math.Log(hi) && m.imbalance(sun, t, lo) <= 0 {
+		if ga, gb := g(a), g(b); ga <= 0 && gb > 0 {
+			return math.Exp(bracketed(g, a, b, ga, gb, 1e-13)), false, false
+		}
+	}
+	return m.balance(sun, t)
+}
+
 // bracketed finds a root of f between a and b, where it has opposite signs, by
 // the ITP method of Oliveira & Takahashi (2021), to |b − a| ≤ tol·max(1, |x|).
 func bracketed(f func(float64) float64, a, b, fa, fb, tol float64) float64 {
@@ -93,7 +106,8 @@ func bracketed(f func(float64) float64, a, b, fa, fb, tol float64) float64 {
 // ocean warms it gives off CO₂, which moves the fold towards the warm side.
 func (m *Model) growth(sun, t, p, c, alk float64) float64 {
 	return fd.Derivative(func(x float64) float64 {
-		return m.imbalance(sun, x, m.set.ocean.law.Solve(c, alk, x).P)
+		p, _ := m.set.ocean.law.Pressure(c, alk, x)
+		return m.imbalance(sun, x, p)
 	}, t, &fd.Settings{Formula: fivePoint, Step: 1e-2})
 }
 
@@ -122,10 +136,13 @@ func (m *Model) steadyWith(d *memo, t, p float64) (s steady) {
 	r.Albedo = m.set.albedo.law.Planetary(t, p)
 	r.Ice = m.set.albedo.law.IceFraction(t)
 	c, alk := m.carbonAt(p, t, m.ref.Total()*m.area)
-	m.weather(r, math.Log(p), math.Log(m.set.ocean.law.Solve(c, alk, t).H))
+	lnp := math.Log(p)
+	_, lnh := m.set.ocean.law.Pressure(c, alk, t)
+	m.weather(r, lnp, lnh)
 	if m.pair != nil {
 		c, alk = m.carbonAt(p, t, r.Land+r.Seafloor)
-		m.weather(r, math.Log(p), math.Log(m.set.ocean.law.Solve(c, alk, t).H))
+		_, lnh = m.set.ocean.law.Pressure(c, alk, t)
+		m.weather(r, lnp, lnh)
 	}
 	r.Surface, s.alk = c, alk
 	s.grow = m.growth(d.sun, t, p, c, alk)
@@ -249,11 +266,14 @@ func (m *Model) start() (y State, words string) {
 
 	lo, hi := math.Max(s.FrozenBelow-90, s.radiation.law.Box().T.Lo+1), m.top()-1
 	const step = 0.5
+	near := math.NaN()
 	at := func(t float64) (State, float64, float64, bool) {
-		st, low, high := m.steadyAt(d, t)
+		p, low, high := m.balanceNear(d.sun, t, near)
 		if low || high {
 			return State{}, 0, 0, false
 		}
+		near = math.Log(p)
+		st := m.steadyWith(d, t, p)
 		z, r := fill(&st)
 		return z, r, st.grow, true
 	}

@@ -46,6 +46,7 @@ type Model struct {
 	free            float64
 	balanceResidual float64 // W/m²
 
+	orbit  float64     // S of a star like today's Sun, W/m²
 	escape bool        // CO₂ escapes while there is no dynamo
 	hold   hold        // drivers that do not change
 	from   *State      // where a history starts; nil is the equilibrium of start
@@ -56,40 +57,79 @@ type Model struct {
 	}
 
 	memo   memo
-	air    air
+	airs   airs
 	row    record.Row     // scratch of the right-hand side
 	state  State          // likewise
 	env    weathering.Env // likewise
 	source outgas.Input   // likewise
 }
 
-// air keeps what depends on temperature and surface carbon alone: the columns
-// of the Jacobian for the deep reservoirs do not change it.
+// air keeps what depends on temperature, surface carbon and alkalinity alone: the
+// columns of the Jacobian for the deep reservoirs do not change it.
 type air struct {
 	t, c, alk        float64
-	chem             ocean.State
-	lnp, lnh         float64
+	p, lnp           float64
+	lnh              float64
 	albedo, ice, out float64
 	moisture         float64 // mixing ratio of water in the stratosphere
-	valid            bool
+	precipitation    float64 // of carbonate, mol/yr, where alkalinity is a state
+
+	// Weathering there, at one age and crust production.
+	age, crust          float64
+	land, seafloor, use float64 // mol/yr, mol/yr, part of the supply limit
 }
 
-// breathe fills the air for a temperature, surface carbon and alkalinity.
+// airs keeps the last few.
+type airs struct {
+	kept [3]air
+	turn int
+}
+
+// forget empties it.
+func (a *airs) forget() {
+	for i := range a.kept {
+		a.kept[i].t = math.NaN()
+	}
+}
+
+// present returns the surface carbon in mol that the ocean divides: c itself, but
+// positive where the solver, within its tolerance, leaves less than nothing.
+func present(c float64) float64 {
+	const trace = 1e3 // mol
+	if c > 1e12 {
+		return c // the rest is below the last bit
+	}
+	root := math.Sqrt(c*c + 4*trace*trace)
+	if c < 0 {
+		return 2 * trace * trace / (root - c)
+	}
+	return 0.5 * (c + root)
+}
+
+// breathe returns the air for a temperature, surface carbon and alkalinity.
 func (m *Model) breathe(t, c, alk float64) *air {
-	a := &m.air
-	if a.valid && a.t == t && a.c == c && a.alk == alk {
-		return a
+	for i := range m.airs.kept {
+		if a := &m.airs.kept[i]; a.t == t && a.c == c && a.alk == alk {
+			return a
+		}
 	}
 	s := m.set
-	a.t, a.c, a.alk, a.valid = t, c, alk, true
-	a.chem = s.ocean.law.Solve(c, alk, t)
-	p := a.chem.P
-	a.lnp, a.lnh = math.Log(p), math.Log(a.chem.H)
-	a.albedo = s.albedo.law.Planetary(t, p)
+	m.airs.turn = (m.airs.turn + 1) % len(m.airs.kept)
+	a := &m.airs.kept[m.airs.turn]
+	a.t, a.c, a.alk, a.age = t, c, alk, math.NaN()
+	if m.pair != nil {
+		var omega float64
+		a.p, a.lnh, omega = m.pair.Balance(present(c), alk, t)
+		a.precipitation = m.pair.Precipitation(omega)
+	} else {
+		a.p, a.lnh = s.ocean.law.Pressure(present(c), alk, t)
+	}
+	a.lnp = math.Log(a.p)
+	a.albedo = s.albedo.law.Planetary(t, a.p)
 	a.ice = s.albedo.law.IceFraction(t)
-	a.out = s.radiation.law.Outgoing(t, p, a.lnp)
+	a.out = s.radiation.law.Outgoing(t, a.p, a.lnp)
 	if s.WaterEscape {
-		a.moisture = s.Strato.Mixing(t, p+s.Nitrogen)
+		a.moisture = s.Strato.Mixing(t, a.p+s.Nitrogen)
 	}
 	return a
 }
@@ -165,6 +205,7 @@ func NewModel(s *Setup) (*Model, error) {
 	earth := interior.NewPlanet(1, earthCore)
 	m.area = m.planet.Area / earth.Area
 	m.dilution = m.area / (m.planet.MantleMass / earth.MantleMass)
+	m.orbit = star.Sunlight(1, s.Distance, s.Eccentricity)
 	m.escape = s.EscapeCO2 > 0 && s.interior.law.HasCore()
 	m.lay = newLayout(s.interior.law.HasCore(), s.ocean.law.HasAlkalinity(), m.escape)
 	m.pair, _ = s.ocean.law.(*ocean.Pair)
@@ -278,6 +319,23 @@ func (p *Step) at(age float64) float64 {
 	return p.Before + (p.After-p.Before)/(1+math.Exp(-2*(age-p.Middle)/p.Width))
 }
 
+// during tells whether a pulse is on.
+func (m *Model) during(p *Pulse, age float64) bool {
+	return !m.hold.still[drivePulses] && age >= p.Start && age < p.Start+p.Duration
+}
+
+// sunlight returns S in W/m², pulses included.
+func (m *Model) sunlight(age float64) float64 {
+	s := m.set
+	sun := m.orbit * s.star.law.Luminosity(m.hold.at(driveSun, age))
+	for _, p := range s.Pulses {
+		if m.during(p, age) {
+			sun *= 1 + p.Sunlight
+		}
+	}
+	return sun
+}
+
 // drive fills the memo for an age and the interior's temperatures.
 func (m *Model) drive(age, mantleT, coreT float64) *memo {
 	d := &m.memo
@@ -286,11 +344,10 @@ func (m *Model) drive(age, mantleT, coreT float64) *memo {
 	}
 	s := m.set
 	if !d.valid || d.age != age {
-		d.sun = star.Sunlight(s.star.law.Luminosity(m.hold.at(driveSun, age)), s.Distance, s.Eccentricity) / 4
+		d.sun = m.sunlight(age) / 4
 		d.pulse = 0
 		for _, p := range s.Pulses {
-			if !m.hold.still[drivePulses] && age >= p.Start && age < p.Start+p.Duration {
-				d.sun *= 1 + p.Sunlight
+			if m.during(p, age) {
 				d.pulse += p.Carbon / p.Duration
 			}
 		}
@@ -326,21 +383,34 @@ func (m *Model) weather(r *record.Row, lnp, lnh float64) {
 	s, env := m.set, &m.env
 	*env = weathering.Env{Age: r.Age, T: r.Temperature, P: r.PCO2, LnP: lnp - m.lnP0, Sun: r.Sunlight / 4, Alb: r.Albedo, Crust: r.Crust, LnH: lnh - m.lnH0}
 	lim := m.limit(r.PCO2)
-	kinetic := r.Biology * m.iceNorm[0] * (1 - (1-s.LandIce)*r.Ice) * lim * s.land.law.Relative(env)
+	kinetic := m.kinetic(env, r.Biology, r.Ice)
 	r.Land = m.ref.Land * m.area * r.LandFraction * s.supply.Of(kinetic)
-	r.SupplyUse = s.supply.Use(kinetic)
-	if m.saturates != nil {
-		r.SupplyUse = math.Max(r.SupplyUse, m.saturates.Saturation(env))
-	}
+	r.SupplyUse = m.supplyUse(env, kinetic)
 	r.Seafloor = 0
 	if m.ref.Seafloor > 0 {
 		r.Seafloor = m.ref.Seafloor * m.area * m.iceNorm[1] * (1 - (1-s.SeafloorIce)*r.Ice) * lim * s.seafloor.law.Relative(env)
 	}
 }
 
+// kinetic returns what the supply limit bounds: f_bio i_land ℓ(p) w_land(T, p).
+func (m *Model) kinetic(env *weathering.Env, biology, ice float64) float64 {
+	return biology * m.iceNorm[0] * (1 - (1-m.set.LandIce)*ice) * m.limit(env.P) * m.set.land.law.Relative(env)
+}
+
+// supplyUse returns land weathering as a part of its supply limit, that of the
+// wrapper or of the law itself; 0 without one.
+func (m *Model) supplyUse(env *weathering.Env, kinetic float64) float64 {
+	use := m.set.supply.Use(kinetic)
+	if m.saturates != nil {
+		use = math.Max(use, m.saturates.Saturation(env))
+	}
+	return use
+}
+
 // diagnose evaluates every law once: what it puts into the row is what the
-// derivative sums and what the tables print. It returns the chemistry.
-func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
+// derivative sums and what the tables print. The rest of the ocean's
+// chemistry is left to describe.
+func (m *Model) diagnose(r *record.Row, age float64, y *State) {
 	s := m.set
 	d := m.drive(age, y.MantleT, y.CoreT)
 	r.Age = age
@@ -355,11 +425,14 @@ func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
 	r.Total = y.Carbon()
 
 	a := m.breathe(y.T, y.Surface, y.Alk)
-	chem := a.chem
-	r.PCO2, r.DIC, r.Alk, r.Omega = chem.P, chem.DIC, chem.Alk, chem.Omega
+	r.PCO2 = a.p
 	r.Albedo, r.Ice, r.Outgoing, r.Moisture = a.albedo, a.ice, a.out, a.moisture
 	r.Absorbed = d.sun * (1 - r.Albedo)
-	m.weather(r, a.lnp, a.lnh)
+	if a.age != age || a.crust != r.Crust {
+		m.weather(r, a.lnp, a.lnh)
+		a.age, a.crust, a.land, a.seafloor, a.use = age, r.Crust, r.Land, r.Seafloor, r.SupplyUse
+	}
+	r.Land, r.Seafloor, r.SupplyUse = a.land, a.seafloor, a.use
 
 	in := &m.source
 	*in = outgas.Input{Age: m.hold.at(driveSources, age), Crust: r.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale, Mantle: y.Mantle, Seafloor: y.Seafloor, Continental: y.Continental}
@@ -375,13 +448,20 @@ func (m *Model) diagnose(r *record.Row, age float64, y *State) ocean.State {
 	if m.pair != nil {
 		// Carbonate leaves as it precipitates, shared as weathering would have it.
 		weathered := r.Burial
-		r.Burial = m.pair.Precipitation(chem.Omega)
+		r.Burial = a.precipitation
 		r.Deposited *= part(r.Burial, weathered)
 	}
 	r.Imbalance = r.Outgassing - r.Burial
 	r.Subducted = f.Subducted
 	r.Foundered = f.Foundered
-	return chem
+}
+
+// describe adds to a diagnosed row what no rate depends on.
+func (m *Model) describe(r *record.Row, y *State) {
+	chem := m.set.ocean.law.Solve(present(y.Surface), y.Alk, y.T)
+	r.DIC, r.Alk, r.Omega, r.PH = chem.DIC, chem.Alk, chem.Omega, -math.Log10(chem.H)
+	r.Pressure = m.set.Nitrogen + r.PCO2 + climate.WaterPressure(r.Temperature)
+	r.Boiling = climate.BoilingPoint(r.Pressure)
 }
 
 // part returns a/b, and 1 when b is 0: what is buried is then taken to be all

@@ -362,13 +362,15 @@ func TestRandomWalk(t *testing.T) {
 	wg.Wait()
 
 	kinds, refused := map[string]int{}, map[string]int{}
-	ran, undecided := 0, 0
+	ran, undecided, worst := 0, 0, 0
 	var slowest time.Duration
 	var total time.Duration
 	for i := range results {
 		res := &results[i]
 		total += res.took
-		slowest = max(slowest, res.took)
+		if res.took > slowest {
+			slowest, worst = res.took, first+i
+		}
 		if res.refused != "" {
 			refused[res.refused]++
 			continue
@@ -382,7 +384,7 @@ func TestRandomWalk(t *testing.T) {
 	}
 	t.Logf("%d draws, %d histories: %s", draws, ran, counts(kinds))
 	t.Logf("%d refused: %s", draws-ran, counts(refused))
-	t.Logf("%d undecided, %.3g %%; mean %v, slowest %v", undecided, 100*float64(undecided)/float64(max(ran, 1)), total/time.Duration(draws), slowest)
+	t.Logf("%d undecided, %.3g %%; mean %v, slowest %v, draw %d", undecided, 100*float64(undecided)/float64(max(ran, 1)), total/time.Duration(draws), slowest, worst)
 	if float64(undecided) >= 1e-3*float64(ran) && undecided > 0 {
 		t.Errorf("%d of %d undecided, want fewer than 0.1 %%", undecided, ran)
 	}

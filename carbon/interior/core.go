@@ -70,6 +70,8 @@ func (c *core) bind(p *Planet, beta, tRef, geometry float64) error {
 // temperature in K/yr, and whether it drives a dynamo.
 func (c *core) flow(mantle, tc float64) (q, rate float64, dynamo bool) {
 	x := (tc - mantle) / c.Excess
-	q = c.scale * x * math.Pow(math.Abs(x), c.beta)
+	if x != 0 {
+		q = c.scale * x * math.Exp(c.beta*math.Log(math.Abs(x)))
+	}
 	return q, c.cooling * q, q > c.adiabat*tc
 }

@@ -50,12 +50,14 @@ type sources struct {
 	weight [8]float64 // W at the age of zero
 	rate   [8]float64 // λ, 1/yr
 	n      int
+
+	age, heat float64 // the last age asked for, yr, and H there
 }
 
 // bind mixes the share w of the mantle of McDonough & Sun (1995), without the
 // continents, with the rest of Turcotte & Schubert (2002), for a mass in kg.
 func (s *sources) bind(w, factor, mass, now float64) {
-	s.n = 0
+	s.n, s.age = 0, math.NaN()
 	add := func(table *[4]isotope, share float64) {
 		if share == 0 {
 			return
@@ -72,9 +74,13 @@ func (s *sources) bind(w, factor, mass, now float64) {
 
 // at returns the heating in W at an age in yr.
 func (s *sources) at(age float64) float64 {
+	if age == s.age {
+		return s.heat
+	}
 	var h float64
 	for i := range s.n {
 		h += s.weight[i] * math.Exp(-s.rate[i]*age)
 	}
+	s.age, s.heat = age, h
 	return h
 }

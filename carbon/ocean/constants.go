@@ -25,6 +25,37 @@ type Seawater struct {
 	Boron    float64 // total boron, mol/kg
 
 	lnK0, lnK1, lnK2, lnKB, lnKW, lnCalcite, lnAragonite series // set by Bind
+
+	kept recent[Constants]
+}
+
+// recent keeps what was evaluated at the last two temperatures. A solver asks
+// for many states at one temperature and at one next to it.
+type recent[V any] struct {
+	t    [2]float64
+	v    [2]V
+	turn int
+}
+
+// forget empties it.
+func (r *recent[V]) forget() { r.t = [2]float64{math.NaN(), math.NaN()} }
+
+// at returns what is kept at t, or nil.
+func (r *recent[V]) at(t float64) *V {
+	if r.t[0] == t {
+		return &r.v[0]
+	}
+	if r.t[1] == t {
+		return &r.v[1]
+	}
+	return nil
+}
+
+// next returns the place to keep the values at t in.
+func (r *recent[V]) next(t float64) *V {
+	r.turn = 1 - r.turn
+	r.t[r.turn] = t
+	return &r.v[r.turn]
 }
 
 // newSeawater is today's mean seawater.
@@ -102,6 +133,7 @@ func (s series) times(f float64) series { return series{}.plus(f, s) }
 
 // Bind evaluates what depends on salinity.
 func (w *Seawater) Bind() {
+	w.kept.forget()
 	s := w.Salinity
 	w.lnK0 = lnK0(s)
 	w.lnK1, w.lnK2 = pK1(s).times(-math.Ln10), pK2(s).times(-math.Ln10)
@@ -110,10 +142,17 @@ func (w *Seawater) Bind() {
 }
 
 // At evaluates all constants at a surface temperature in K, held by Held.
-func (w *Seawater) At(t float64) Constants {
+func (w *Seawater) At(t float64) Constants { return *w.constants(t) }
+
+// constants is At by reference to what is kept.
+func (w *Seawater) constants(t float64) *Constants {
 	t = Held(t)
+	if k := w.kept.at(t); k != nil {
+		return k
+	}
 	inv, lnT := 1/t, math.Log(t)
-	return Constants{
+	k := w.kept.next(t)
+	*k = Constants{
 		K0:      math.Exp(w.lnK0.at(t, inv, lnT)),
 		K1:      math.Exp(w.lnK1.at(t, inv, lnT)),
 		K2:      math.Exp(w.lnK2.at(t, inv, lnT)),
@@ -121,6 +160,7 @@ func (w *Seawater) At(t float64) Constants {
 		KW:      math.Exp(w.lnKW.at(t, inv, lnT)),
 		Calcite: math.Exp(w.lnCalcite.at(t, inv, lnT)),
 	}
+	return k
 }
 
 // Aragonite returns the solubility product of aragonite in mol²/kg².

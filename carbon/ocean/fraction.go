@@ -22,6 +22,7 @@ type Fraction struct {
 	K     float64 // k
 
 	m, air, sea float64 // kg; C₀ φ and C₀ (1 − φ), mol
+	acid        recent[acid]
 }
 
 func newFraction() Law { return &Fraction{Seawater: newSeawater(), Share: 0.0103, P0: 280e-6, K: 1} }
@@ -31,11 +32,52 @@ func (l *Fraction) Solve(c, _, t float64) State {
 	if !(c > 0) {
 		return none()
 	}
-	x := c / (l.air + l.sea) // p/p₀
+	return l.state(l.relative(c), t)
+}
+
+// relative returns p/p₀ for c > 0.
+func (l *Fraction) relative(c float64) float64 {
+	x := c / (l.air + l.sea)
 	if l.K != 1 {
 		x = l.invert(x)
 	}
-	return l.state(x, t)
+	return x
+}
+
+// Pressure returns P and ln [H⁺].
+func (l *Fraction) Pressure(c, _, t float64) (p, lnH float64) {
+	if !(c > 0) {
+		return math.NaN(), math.NaN()
+	}
+	x := l.relative(c)
+	t = Held(t)
+	k := l.acid.at(t)
+	if k == nil {
+		inv, lnT := 1/t, math.Log(t)
+		k = l.acid.next(t)
+		*k = acid{math.Exp(l.lnK0.at(t, inv, lnT)), math.Exp(l.lnK1.at(t, inv, lnT)), math.Exp(l.lnK2.at(t, inv, lnT))}
+	}
+	p = l.P0 * x
+	return p, math.Log(l.hydrogen(x, k.k0/units.BarPerAtm*p, k.k1, k.k2))
+}
+
+// acid is what [H⁺] depends on at one temperature.
+type acid struct{ k0, k1, k2 float64 }
+
+// hydrogen returns [H⁺] at x = p/p₀ and [CO₂]; it is not let above 1e-3 mol/kg.
+//
+//	K1 K2/h² + K1/h = DIC/[CO₂] − 1
+func (l *Fraction) hydrogen(x, co2, k1, k2 float64) float64 {
+	const sour = 1e-3 // mol/kg
+	if l.m == 0 {
+		return sour
+	}
+	// The ratio is bounded where next to nothing is left.
+	e := math.Min(l.sea*l.root(x)/(l.m*co2)-1, 1e250)
+	if !(e > 0) {
+		return sour
+	}
+	return math.Min(sour, k1*(1+math.Sqrt(1+4*e*k2/k1))/(2*e))
 }
 
 // invert solves φ x + (1 − φ) x^(1/k) = y by Newton's method in ln x, where
@@ -67,18 +109,10 @@ func (l *Fraction) root(x float64) float64 {
 
 // state returns the chemistry implied at x = p/p₀.
 func (l *Fraction) state(x, t float64) State {
-	k := l.At(t)
+	k := l.constants(t)
 	p := l.P0 * x
 	co2 := k.K0 / units.BarPerAtm * p
-	const sour = 1e-3 // mol/kg
-	h := sour
-	if l.m > 0 {
-		// K1 K2/h² + K1/h = DIC/[CO₂] − 1
-		if e := l.sea*l.root(x)/(l.m*co2) - 1; e > 0 {
-			h = math.Min(sour, k.K1*(1+math.Sqrt(1+4*e*k.K2/k.K1))/(2*e))
-		}
-	}
-	return l.speciate(&k, p, co2, h)
+	return l.speciate(k, p, co2, l.hydrogen(x, co2, k.K1, k.K2))
 }
 
 // Carbon returns C(p) and the alkalinity implied; T matters to the latter only.
@@ -99,6 +133,7 @@ func (l *Fraction) Fields() []units.Field {
 // Bind fixes the reservoirs.
 func (l *Fraction) Bind(p Planet) error {
 	l.Seawater.Bind()
+	l.acid.forget()
 	l.m = p.Mass
 	l.air = MolesPerBar(p) * l.P0
 	l.sea = l.air * (1 - l.Share) / l.Share

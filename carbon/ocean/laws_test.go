@@ -103,6 +103,33 @@ func TestRoundTrip(t *testing.T) {
 	})
 }
 
+// TestPressure: what the rates are given is what Solve says, at temperatures in
+// any order.
+func TestPressure(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		name, l, _ := drawn(t)
+		for range 6 {
+			T := rapid.SampledFrom([]float64{200, 250, 268, 288, 288.001, 310, 350, 400}).Draw(t, "T")
+			p := math.Exp(rapid.Float64Range(math.Log(1e-9), math.Log(100)).Draw(t, "p"))
+			c, alk := l.Carbon(p, T)
+			s := l.Solve(c, alk, T)
+			gp, lnH := l.Pressure(c, alk, T)
+			omega := s.Omega
+			if pair, ok := l.(*Pair); ok {
+				_, _, omega = pair.Balance(c, alk, T)
+			}
+			if math.Abs(gp/s.P-1) > 1e-12 || math.Abs(lnH-math.Log(s.H)) > 1e-12 || math.Abs(omega/s.Omega-1) > 1e-11 {
+				t.Fatalf("%s at %g K: %g bar, ln h %g, Ω %g; Solve has %g, %g, %g", name, T, gp, lnH, omega, s.P, math.Log(s.H), s.Omega)
+			}
+		}
+		for _, c := range []float64{-1, 0, math.NaN()} {
+			if p, _ := l.Pressure(c, 1e18, 288); !math.IsNaN(p) {
+				t.Fatalf("%s: %g mol give %g bar", name, c, p)
+			}
+		}
+	})
+}
+
 // TestDefaultsRoundTrip pins the accuracy with default parameters.
 func TestDefaultsRoundTrip(t *testing.T) {
 	for _, e := range Laws {

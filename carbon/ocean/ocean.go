@@ -35,6 +35,9 @@ type Law interface {
 	// alkalinity alk in mol (ignored unless HasAlkalinity) and surface
 	// temperature t in K. P is NaN where c ≤ 0.
 	Solve(c, alk, t float64) State
+	// Pressure returns P and ln [H⁺] of Solve, which is all most rates need, at
+	// less cost.
+	Pressure(c, alk, t float64) (p, lnH float64)
 	// Carbon returns the surface carbon in mol, and the alkalinity in mol,
 	// that belong to a CO₂ pressure in bar in saturation with calcite.
 	Carbon(p, t float64) (c, alk float64)

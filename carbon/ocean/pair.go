@@ -46,13 +46,34 @@ func (l *Pair) Solve(c, alk, t float64) State {
 	if !(c > 0) || math.IsNaN(alk) {
 		return none()
 	}
-	k := l.At(t)
-	k0 := k.K0 / units.BarPerAtm
-	r := 1 + l.n/(l.m*k0)
-	dic, a := c/l.m, alk/l.m
-	h := l.hydrogen(&k, r, dic, a)
-	co2 := dic / (r + k.K1/h*(1+k.K2/h))
-	return l.speciate(&k, co2/k0, co2, h)
+	k := l.constants(t)
+	h, co2 := l.dissolved(k, c, alk)
+	return l.speciate(k, co2*units.BarPerAtm/k.K0, co2, h)
+}
+
+// dissolved returns h and [CO₂].
+func (l *Pair) dissolved(k *Constants, c, alk float64) (h, co2 float64) {
+	r := 1 + l.n/l.m*(units.BarPerAtm/k.K0)
+	dic := c / l.m
+	h = l.hydrogen(k, r, dic, alk/l.m)
+	x := k.K1 / h
+	return h, dic / (r + x*(1+k.K2/h))
+}
+
+// Pressure returns P and ln h.
+func (l *Pair) Pressure(c, alk, t float64) (p, lnH float64) {
+	p, lnH, _ = l.Balance(c, alk, t)
+	return p, lnH
+}
+
+// Balance returns P, ln h and Ω.
+func (l *Pair) Balance(c, alk, t float64) (p, lnH, omega float64) {
+	if !(c > 0) || math.IsNaN(alk) {
+		return math.NaN(), math.NaN(), math.NaN()
+	}
+	k := l.constants(t)
+	h, co2 := l.dissolved(k, c, alk)
+	return co2 * units.BarPerAtm / k.K0, math.Log(h), l.Calcium * k.K2 * k.K1 * co2 / (h * h * k.Calcite)
 }
 
 // hydrogen solves the alkalinity balance for h, with the carbon of air and
@@ -61,22 +82,31 @@ func (l *Pair) hydrogen(k *Constants, r, dic, alk float64) float64 {
 	lo := 0.5 * k.KW / (math.Abs(alk) + 1)
 	hi := 2*(math.Abs(alk)+dic) + l.Boron + 10
 	h := guess(k, r, dic, alk)
+	if h > lo && h < hi {
+		// Again, without the alkalinity of boron and water at the first guess.
+		if next := guess(k, r, dic, alk-l.Boron*k.KB/(k.KB+h)-k.KW/h+h); next > 0.1*h && next < 10*h {
+			h = next
+		}
+	}
 	if !(h > lo && h < hi) {
 		h = math.Sqrt(lo * hi)
 	}
+	k12 := k.K1 * k.K2
 	for range 200 {
-		x, y := k.K1/h, k.K1*k.K2/(h*h)
-		den, num := r+x+y, x+2*y
-		b := l.Boron * k.KB / (k.KB + h)
-		f := dic*num/den + b + k.KW/h - h - alk
-		df := dic*(num*num-(x+4*y)*den)/(den*den) - b*h/(k.KB+h) - k.KW/h - h // df/d ln h < 0
+		u := 1 / h
+		x, y, w := k.K1*u, k12*u*u, k.KW*u
+		den, num := 1/(r+x+y), x+2*y
+		share := 1 / (k.KB + h)
+		b := l.Boron * k.KB * share
+		f := dic*num*den + b + w - h - alk
+		df := dic*(num*num*den-(x+4*y))*den - b*h*share - w - h // df/d ln h < 0
 		if f > 0 {
 			lo = h
 		} else {
 			hi = h
 		}
 		step := -f / df
-		next := h * math.Exp(step)
+		next := h * grow(step)
 		if !(next > lo && next < hi) {
 			if math.Abs(step) < 1e-12 {
 				return h
@@ -85,11 +115,19 @@ func (l *Pair) hydrogen(k *Constants, r, dic, alk float64) float64 {
 			step = 1
 		}
 		h = next
-		if math.Abs(step) < 1e-8 { // the error left is of the order of its square
+		if math.Abs(step) < 1e-6 { // the error left is of the order of its square
 			break
 		}
 	}
 	return h
+}
+
+// grow returns exp(x), by its series where x is small enough for the last digit.
+func grow(x float64) float64 {
+	if math.Abs(x) < 0.03 {
+		return 1 + x*(1+x*(1./2+x*(1./6+x*(1./24+x*(1./120+x*(1./720+x*(1./5040)))))))
+	}
+	return math.Exp(x)
 }
 
 // guess solves the balance without boron and water, a quadratic in h:
@@ -112,10 +150,10 @@ func guess(k *Constants, r, d, a float64) float64 {
 
 // Carbon returns carbon and alkalinity at the reference saturation.
 func (l *Pair) Carbon(p, t float64) (c, alk float64) {
-	k := l.At(t)
+	k := l.constants(t)
 	co2 := k.K0 / units.BarPerAtm * p
 	co3 := l.Omega * k.Calcite / l.Calcium
-	s := l.speciate(&k, p, co2, math.Sqrt(co2*k.K1*k.K2/co3))
+	s := l.speciate(k, p, co2, math.Sqrt(co2*k.K1*k.K2/co3))
 	return l.n*p + l.m*s.DIC, l.m * s.Alk
 }
 

@@ -32,25 +32,31 @@ type Saturated struct {
 	n, m float64 // mol/bar, kg
 
 	lnRoot, lnH, lnCO3 series // ln of [HCO₃⁻]/√p, h/√p and [CO₃²⁻], p in bar
+
+	kept recent[fixed]
 }
 
 func newSaturated() Law { return &Saturated{Seawater: newSeawater(), Omega: 5} }
 
-// fixed is what saturation fixes at one temperature.
-type fixed struct{ k0, co3, root, h, kb, kw float64 }
+// fixed is what saturation fixes at one temperature: K0 in mol/kg/bar, [CO₃²⁻],
+// [HCO₃⁻]/√p, ln (h/√p), and the temperature held, its inverse and logarithm.
+type fixed struct{ k0, co3, root, lnH, t, inv, lnT float64 }
 
-// at evaluates K0 in mol/kg/bar, [CO₃²⁻], [HCO₃⁻]/√p, h/√p, KB and KW.
-func (l *Saturated) at(t float64) fixed {
+func (l *Saturated) at(t float64) *fixed {
 	t = Held(t)
+	if k := l.kept.at(t); k != nil {
+		return k
+	}
 	inv, lnT := 1/t, math.Log(t)
-	return fixed{
+	k := l.kept.next(t)
+	*k = fixed{
 		k0:   math.Exp(l.lnK0.at(t, inv, lnT)) / units.BarPerAtm,
 		co3:  math.Exp(l.lnCO3.at(t, inv, lnT)),
 		root: math.Exp(l.lnRoot.at(t, inv, lnT)),
-		h:    math.Exp(l.lnH.at(t, inv, lnT)),
-		kb:   math.Exp(l.lnKB.at(t, inv, lnT)),
-		kw:   math.Exp(l.lnKW.at(t, inv, lnT)),
+		lnH:  l.lnH.at(t, inv, lnT),
+		t:    t, inv: inv, lnT: lnT,
 	}
+	return k
 }
 
 // scarce is the carbon above M [CO₃²⁻], as a part of it, below which the
@@ -85,27 +91,43 @@ func (l *Saturated) Solve(c, _, t float64) State {
 		return none()
 	}
 	k := l.at(t)
+	return l.state(k, l.root(k, c))
+}
+
+// root returns √p for c > 0.
+func (l *Saturated) root(k *fixed, c float64) float64 {
 	fixed := l.m * k.co3
 	free := c
 	if fixed > 0 {
 		free = fixed * above(c/fixed)
 	}
 	a, b := l.n+l.m*k.k0, l.m*k.root
-	return l.state(&k, 2*free/(b+math.Sqrt(b*b+4*a*free)))
+	return 2 * free / (b + math.Sqrt(b*b+4*a*free))
+}
+
+// Pressure returns P and ln h.
+func (l *Saturated) Pressure(c, _, t float64) (p, lnH float64) {
+	if !(c > 0) {
+		return math.NaN(), math.NaN()
+	}
+	k := l.at(t)
+	x := l.root(k, c)
+	return x * x, k.lnH + math.Log(x)
 }
 
 // state fills in the chemistry at x = √p.
 func (l *Saturated) state(k *fixed, x float64) State {
-	s := State{P: x * x, H: k.h * x, CO2: k.k0 * x * x, HCO3: k.root * x, CO3: k.co3, Omega: l.Omega}
+	s := State{P: x * x, H: math.Exp(k.lnH) * x, CO2: k.k0 * x * x, HCO3: k.root * x, CO3: k.co3, Omega: l.Omega}
+	kb, kw := math.Exp(l.lnKB.at(k.t, k.inv, k.lnT)), math.Exp(l.lnKW.at(k.t, k.inv, k.lnT))
 	s.DIC = s.CO2 + s.HCO3 + s.CO3
-	s.Alk = s.HCO3 + 2*s.CO3 + l.Boron*k.kb/(k.kb+s.H) + k.kw/s.H - s.H
+	s.Alk = s.HCO3 + 2*s.CO3 + l.Boron*kb/(kb+s.H) + kw/s.H - s.H
 	return s
 }
 
 // Carbon returns C(p, T) and the alkalinity.
 func (l *Saturated) Carbon(p, t float64) (c, alk float64) {
 	k := l.at(t)
-	s := l.state(&k, math.Sqrt(p))
+	s := l.state(k, math.Sqrt(p))
 	c = l.n*p + l.m*s.DIC
 	if fixed := l.m * k.co3; c-fixed < scarce*fixed {
 		c = fixed * below((l.n*p+l.m*(s.CO2+s.HCO3))/fixed)
@@ -133,6 +155,7 @@ func omegaField(v *float64) units.Field {
 // Bind fixes the size of the two reservoirs.
 func (l *Saturated) Bind(p Planet) error {
 	l.Seawater.Bind()
+	l.kept.forget()
 	l.n, l.m = MolesPerBar(p), p.Mass
 	l.lnCO3 = l.lnCalcite
 	l.lnCO3.one += math.Log(l.Omega / l.Calcium)

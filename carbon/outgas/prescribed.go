@@ -54,6 +54,8 @@ type PowerLaw struct {
 	prescribed
 	N, M float64
 	t0   float64 // yr
+
+	age, relative float64 // the last age asked for, yr, and F/F₀ there
 }
 
 func newPowerLaw() Law {
@@ -70,14 +72,17 @@ func (l *PowerLaw) Fields() []units.Field {
 
 // Bind fixes t₀.
 func (l *PowerLaw) Bind(ref Reference) error {
-	l.t0 = ref.Age
+	l.t0, l.age = ref.Age, math.NaN()
 	return l.prescribed.Bind(ref)
 }
 
 // Fluxes returns the fluxes.
 func (l *PowerLaw) Fluxes(in *Input) Fluxes {
-	x := math.Max(in.Age/l.t0, 0.05)
-	return l.fluxes(in, math.Exp(-l.N*l.M*math.Log(x)))
+	if in.Age != l.age {
+		x := math.Max(in.Age/l.t0, 0.05)
+		l.age, l.relative = in.Age, math.Exp(-l.N*l.M*math.Log(x))
+	}
+	return l.fluxes(in, l.relative)
 }
 
 // Table is total outgassing from a user's CSV with the columns age_gyr and
