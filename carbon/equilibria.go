@@ -424,38 +424,42 @@ func (e *Equilibria) Jacobian(s *record.Steady) [2][2]float64 {
 	return [2][2]float64{part(heat), part(sinks)}
 }
 
-// warmBranch returns the stable warm climates of the sheet on which CO₂ warms:
-// from the hottest below the moist threshold down to the end of the branch.
-// which says why there is none: "hot" when even the least CO₂ is too warm,
-// "cold" when no CO₂ is warm enough or no warm climate is stable.
+// warmBranch returns the stable warm climates of the sheet on which CO₂ warms,
+// from the end of the branch up to the hottest below the moist threshold: the
+// longest stretch, where the hot side folds back on itself. why says why there is
+// none: "hot" when even the least CO₂ is too warm, "cold" when no CO₂ is warm
+// enough or no warm climate is stable.
 func (e *Equilibria) warmBranch() (branch []node, why string) {
 	s := e.m.set
 	moist := math.Min(s.Strato.T, e.m.top())
-	stable := -1
 	warmest := -1
-	for i := range e.curve {
-		n := &e.curve[i]
-		if n.sheet != 0 || n.t > moist {
-			continue
+	from := -1
+	for i := 0; i <= len(e.curve); i++ {
+		var n *node
+		if i < len(e.curve) && e.curve[i].sheet == 0 && e.curve[i].t <= moist {
+			n = &e.curve[i]
+			warmest = i
 		}
-		warmest = i
-		if n.t >= s.FrozenBelow && n.grow < 0 {
-			stable = i
+		in := n != nil && n.t >= s.FrozenBelow && n.grow < 0
+		if from >= 0 && (!in || n.t-e.curve[i-1].t > 1.5*curveStep) {
+			if i-from > len(branch) {
+				branch = e.curve[from:i]
+			}
+			from = -1
+		}
+		if in && from < 0 {
+			from = i
 		}
 	}
-	if stable < 0 {
-		// Nothing stable and warm: is the least CO₂ too warm, or the most too cold?
-		lo, _ := e.m.pressures()
-		if e.m.imbalance(e.d.sun, moist, lo) > 0 && (warmest < 0 || e.curve[warmest].t < moist-2*curveStep) {
-			return nil, "hot"
-		}
-		return nil, "cold"
+	if branch != nil {
+		return branch, ""
 	}
-	j := stable
-	for j > 0 && e.curve[j-1].sheet == 0 && e.curve[j-1].grow < 0 && e.curve[j].t-e.curve[j-1].t < 1.5*curveStep && e.curve[j-1].t >= s.FrozenBelow {
-		j--
+	// Nothing stable and warm: is the least CO₂ too warm, or the most too cold?
+	lo, _ := e.m.pressures()
+	if e.m.imbalance(e.d.sun, moist, lo) > 0 && (warmest < 0 || e.curve[warmest].t < moist-2*curveStep) {
+		return nil, "hot"
 	}
-	return e.curve[j : stable+1], ""
+	return nil, "cold"
 }
 
 // Boundaries returns the limits that decide the fate under these conditions.

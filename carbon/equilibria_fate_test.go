@@ -96,6 +96,36 @@ func predict(t *testing.T, radiation string, ice float64) {
 	}
 }
 
+// TestFoldedHotSide: where the hot side folds back on itself a second stable
+// stretch lies above the warm one. A planet without an equilibrium there starts
+// on the warm one, and what becomes of it is what the boundaries say.
+func TestFoldedHotSide(t *testing.T) {
+	for _, sun := range []float64{1500, 1540, 1553, 1565, 1580} {
+		s := steadyPlanet(t, sun/units.SolarFlux, 7e12)
+		e, err := NewEquilibria(s, Conditions{Age: s.Start, Sunlight: sun, Land: 1, Biology: 1, Crust: 1})
+		if err != nil {
+			t.Fatal(err)
+		}
+		b := e.Boundaries()
+		want := record.Temperate
+		if sun > 1570 {
+			want = record.RunawayGreen
+		}
+		m, err := NewModel(s)
+		if err != nil {
+			t.Fatal(err)
+		}
+		h, err := m.integrate(context.Background(), s.End, 1e-5, true)
+		if err != nil {
+			t.Fatal(err)
+		}
+		got := m.judge(h)
+		if f := e.Fate(&b, 7e12); f != want || got.kind != want {
+			t.Errorf("%g W/m2: predicted %s, integrated %s at %.4g Gyr, want %s", sun, f, got.kind, gyr(got.t), want)
+		}
+	}
+}
+
 // sameFate compares outcomes as far as the equilibrium analysis tells them
 // apart: it does not say how a hot end goes on.
 func sameFate(a, b record.Kind) bool {

@@ -291,8 +291,10 @@ func (m *Model) start() (y State, words string) {
 			z, r, grow, ok := at(t)
 			if !ok || grow >= 0 {
 				have = false
-				if any && h < 0 {
-					return best, false, true // end of the warm branch
+				// The end of the warm branch; far above ice another stretch of
+				// it may follow, where the hot side folds back on itself.
+				if any && h < 0 && t <= s.ThawedAbove {
+					return best, false, true
 				}
 				continue
 			}

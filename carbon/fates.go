@@ -608,20 +608,21 @@ func (m *mapper) lines(ctx context.Context) error {
 		return err
 	}
 	nan := math.NaN()
-	add := func(name, words string, get func(b *record.Boundaries) float64) {
+	// there tells whether a boundary exists at all; where it ends for good, the line
+	// goes down to the edge of the map.
+	add := func(name, words string, get func(b *record.Boundaries) float64, there func(b *record.Boundaries) bool) {
 		l := record.BoundaryLine{Name: name, Words: words, AgeGyr: gyr(m.cond.Age)}
 		any := false
 		for i := range bounds {
 			v := shown(get(&bounds[i]))
-			if v <= 0 || v < out.Lo*1e-3 && out.Log {
+			if !(v > 0) || v < out.Lo*1e-3 && out.Log {
 				v = nan
 			}
-			// Where the warm climate ends for good, the line goes down to the edge.
-			if i > 0 && (bounds[i].NoWarm == "hot") != (bounds[i-1].NoWarm == "hot") && name == "too hot" {
+			if i > 0 && there(&bounds[i]) != there(&bounds[i-1]) {
 				a, b := float64(i-1)/(linePoints-1), float64(i)/(linePoints-1)
-				hot := bounds[i].NoWarm == "hot"
+				gone := !there(&bounds[i])
 				last := bounds[i-1]
-				if hot != true {
+				if !gone {
 					last = bounds[i]
 				}
 				for k := 0; k < 24; k++ {
@@ -630,17 +631,17 @@ func (m *mapper) lines(ctx context.Context) error {
 					if err != nil {
 						break
 					}
-					if (e.NoWarm == "hot") == hot {
+					if !there(&e) == gone {
 						b = c
 					} else {
 						a = c
 					}
-					if e.NoWarm != "hot" {
+					if there(&e) {
 						last = e
 					}
 				}
 				ends := []float64{shown(get(&last)), out.Lo}
-				if !hot {
+				if !gone {
 					ends[0], ends[1] = ends[1], ends[0]
 				}
 				for _, v := range ends {
@@ -659,9 +660,9 @@ func (m *mapper) lines(ctx context.Context) error {
 		m.out.Lines = append(m.out.Lines, l)
 	}
 	when := fmt.Sprintf("under the conditions of %.4g Gyr", gyr(m.cond.Age))
-	add("warm state lost", "outgassing below which the warm state is lost, "+when, func(b *record.Boundaries) float64 { return b.WarmNeeds })
-	add("snowball thaws", "outgassing above which no snowball lasts, "+when, func(b *record.Boundaries) float64 { return b.ThawsAbove })
-	add("too hot", "outgassing, or sunlight, above which the warm state is too hot, "+when, func(b *record.Boundaries) float64 { return b.HotAbove })
+	add("warm state lost", "outgassing below which the warm state is lost, "+when, func(b *record.Boundaries) float64 { return b.WarmNeeds }, func(b *record.Boundaries) bool { return !(b.NoWarm == "" && b.WarmNeeds == 0) && b.NoWarm != "hot" })
+	add("snowball thaws", "outgassing above which no snowball lasts, "+when, func(b *record.Boundaries) float64 { return b.ThawsAbove }, func(*record.Boundaries) bool { return true })
+	add("too hot", "outgassing, or sunlight, above which the warm state is too hot, "+when, func(b *record.Boundaries) float64 { return b.HotAbove }, func(b *record.Boundaries) bool { return b.NoWarm != "hot" })
 	return nil
 }
 
