@@ -103,25 +103,58 @@ func (p *plot) ticks(a *plotAxis, across bool) []plotTick {
 
 func round1(v float64) float64 { return math.Round(v*10) / 10 }
 
-// line makes the path of a curve; it breaks where there is no value and at the
-// frame.
+// line makes the path of a curve, cut at the frame and broken where there is no
+// value.
 func (p *plot) line(xs, ys []float64) string {
 	var b strings.Builder
-	down := false
-	for i := range xs {
-		qx, qy := part(&p.X, xs[i]), part(&p.Y, ys[i])
-		if math.IsNaN(qx) || math.IsNaN(qy) || math.IsInf(qx, 0) || math.IsInf(qy, 0) || qx < -0.001 || qx > 1.001 || qy < -0.001 || qy > 1.001 {
-			down = false
+	endX, endY := nan(), nan()
+	for i := 1; i < len(xs); i++ {
+		ax, ay, bx, by, ok := cut(part(&p.X, xs[i-1]), part(&p.Y, ys[i-1]), part(&p.X, xs[i]), part(&p.Y, ys[i]))
+		if !ok {
 			continue
 		}
-		c := "L"
-		if !down {
-			c = "M"
+		at := func(x, y float64) string {
+			return fmt.Sprintf("%.1f %.1f", p.L+(p.R-p.L)*x, p.B-(p.B-p.T)*y)
 		}
-		down = true
-		fmt.Fprintf(&b, "%s%.1f %.1f", c, p.px(xs[i]), p.py(ys[i]))
+		if ax != endX || ay != endY {
+			b.WriteString("M" + at(ax, ay))
+		}
+		b.WriteString("L" + at(bx, by))
+		endX, endY = bx, by
 	}
 	return b.String()
+}
+
+// cut keeps the part of a segment inside the unit square (Liang-Barsky).
+func cut(ax, ay, bx, by float64) (x0, y0, x1, y1 float64, ok bool) {
+	for _, v := range []float64{ax, ay, bx, by} {
+		if math.IsNaN(v) || math.IsInf(v, 0) {
+			return 0, 0, 0, 0, false
+		}
+	}
+	t0, t1 := 0.0, 1.0
+	for _, e := range [4][2]float64{{ax - bx, ax}, {bx - ax, 1 - ax}, {ay - by, ay}, {by - ay, 1 - ay}} {
+		d, q := e[0], e[1]
+		switch {
+		case d == 0 && q < 0:
+			return 0, 0, 0, 0, false
+		case d < 0:
+			t0 = math.Max(t0, q/d)
+		case d > 0:
+			t1 = math.Min(t1, q/d)
+		}
+	}
+	if t0 > t1 {
+		return 0, 0, 0, 0, false
+	}
+	x0, y0, x1, y1 = ax, ay, bx, by
+	if t0 > 0 {
+		x0, y0 = ax+t0*(bx-ax), ay+t0*(by-ay)
+	}
+	if t1 < 1 {
+		x1, y1 = ax+t1*(bx-ax), ay+t1*(by-ay)
+	}
+	return x0, y0, x1, y1, true
 }
 
 func (p *plot) curve(role, dash string, wide bool, xs, ys []float64) bool {

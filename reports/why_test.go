@@ -272,3 +272,23 @@ func TestMapAreas(t *testing.T) {
 		}
 	}
 }
+
+// Curves are cut at the frame, not dropped there.
+func TestCurvesAreCutAtTheFrame(t *testing.T) {
+	p := newPlot("x", "x", plotAxis{Lo: 0, Hi: 10}, plotAxis{Lo: 1, Hi: 100, Log: true})
+	p.L, p.R, p.T, p.B = 0, 100, 0, 100
+	for _, c := range []struct {
+		x, y []float64
+		want string
+	}{
+		{[]float64{5, 5}, []float64{1e4, 1e-2}, "M50.0 0.0L50.0 100.0"},
+		{[]float64{-10, 20}, []float64{10, 10}, "M0.0 50.0L100.0 50.0"},
+		{[]float64{0, 5, 10}, []float64{10, 100, 10}, "M0.0 50.0L50.0 0.0L100.0 50.0"},
+		{[]float64{0, math.NaN(), 10, 10}, []float64{10, 10, 10, 1}, "M100.0 50.0L100.0 100.0"},
+		{[]float64{20, 30}, []float64{10, 10}, ""},
+	} {
+		if got := p.line(c.x, c.y); got != c.want {
+			t.Errorf("%v, %v: %q, want %q", c.x, c.y, got, c.want)
+		}
+	}
+}
