@@ -26,10 +26,14 @@ func TestFate(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		if x.Kind != run.Outcome.Kind || x.TimeGyr != run.Outcome.TimeGyr {
+		// An anchored row meets the reference CO2 to 0.01 %, a run more closely.
+		same := func(a, b float64) bool {
+			return a == b || s.Solve != "nothing" && math.Abs(a-b) < 1e-5*b || math.IsNaN(a) && math.IsNaN(b)
+		}
+		if x.Kind != run.Outcome.Kind || !same(x.TimeGyr, run.Outcome.TimeGyr) {
 			t.Errorf("row says %s at %v, run %s at %v", x.Kind, x.TimeGyr, run.Outcome.Kind, run.Outcome.TimeGyr)
 		}
-		if x.Freezes != run.Freezes || math.Abs(x.FrozenShare-run.FrozenShare) > 1e-12 || x.Steps != run.Solver.Steps {
+		if x.Freezes != run.Freezes || math.Abs(x.FrozenShare-run.FrozenShare) > 1e-12 || s.Solve == "nothing" && x.Steps != run.Solver.Steps {
 			t.Errorf("row has %d freezes, %v frozen, %d steps; run %d, %v, %d", x.Freezes, x.FrozenShare, x.Steps, run.Freezes, run.FrozenShare, run.Solver.Steps)
 		}
 		for i, c := range record.Clocks {
@@ -45,7 +49,7 @@ func TestFate(t *testing.T) {
 			if math.IsNaN(want) && c == record.MarkFroze && run.Freezes > 0 {
 				continue // born frozen: no mark
 			}
-			if got := x.Clocks[i]; got != want && !(math.IsNaN(got) && math.IsNaN(want)) {
+			if got := x.Clocks[i]; !same(got, want) {
 				t.Errorf("%s: row %v, run %v", c, got, want)
 			}
 		}

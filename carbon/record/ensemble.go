@@ -15,6 +15,7 @@ const (
 	StatusDry        = "water lost"
 	StatusCondense   = "CO2 condenses"
 	StatusFreezes    = "largest number of freezes"
+	StatusMissed     = "froze instead of reaching the reference state"
 	StatusSolver     = "the solver could not go on"
 	StatusUnanchored = "no history through the reference state"
 	StatusImpossible = "the values do not fit together"
@@ -22,7 +23,7 @@ const (
 )
 
 // Statuses lists them in the order they are shown; the last four have no outcome.
-var Statuses = []string{StatusEnd, StatusTable, StatusStar, StatusHot, StatusCold, StatusDense, StatusDry, StatusCondense, StatusFreezes, StatusSolver, StatusUnanchored, StatusImpossible, StatusFault}
+var Statuses = []string{StatusEnd, StatusTable, StatusStar, StatusHot, StatusCold, StatusDense, StatusDry, StatusCondense, StatusFreezes, StatusMissed, StatusSolver, StatusUnanchored, StatusImpossible, StatusFault}
 
 // Member is one member of an ensemble: what a row of members.parquet holds
 // besides the drawn values. What a history did not reach is NaN.

@@ -54,10 +54,12 @@ type options struct {
 	x, y     string // map
 	cells    int    // likewise
 	depth    int    // likewise
+
+	ensemble ensembleFlags
 }
 
 func commands() []command {
-	return []command{runCommand, explainCommand, mapCommand, compareCommand, checkCommand, keysCommand, newCommand, versionCommand, licencesCommand}
+	return []command{runCommand, explainCommand, mapCommand, ensembleCommand, compareCommand, gatherCommand, checkCommand, keysCommand, newCommand, versionCommand, licencesCommand}
 }
 
 func setFlag(f *pflag.FlagSet, o *options) {

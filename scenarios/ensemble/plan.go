@@ -210,3 +210,52 @@ func (p *Plan) fieldOf(pr *scenarios.Prior) *units.Field {
 	}
 	return nil
 }
+
+// Alone returns the setup of one member to be run in full: the planet of its row,
+// with what was solved for as a number. The only error is that of ctx.
+func (p *Plan) Alone(ctx context.Context, i int) (*carbon.Setup, error) {
+	s, _ := p.Setup(i)
+	if s.Solve == "nothing" {
+		return s, nil
+	}
+	row, err := p.Member(ctx, i)
+	if err != nil || math.IsNaN(row.Solved) {
+		return s, err
+	}
+	if s.Solve == "total" {
+		s.Content = row.Solved / s.Mass
+	} else {
+		s.OutgassingScale = row.Solved
+	}
+	s.Solve = "nothing"
+	return s, nil
+}
+
+// Resolved returns one member as a scenario of its own, every drawn value spelled
+// out to the last bit. The only error is that of ctx.
+func (p *Plan) Resolved(ctx context.Context, i int) (*scenarios.Resolved, error) {
+	r := p.Scenario
+	_, values := p.Setup(i)
+	s, err := p.Alone(ctx, i)
+	if err != nil {
+		return nil, err
+	}
+	origins := map[string]string{}
+	for k, o := range r.Origins {
+		origins[k] = o
+	}
+	for q := range p.priors {
+		if !math.IsNaN(values[q]) {
+			origins[p.priors[q].Key] = Drawn
+		}
+	}
+	if was := r.Setup.Solve; was != s.Solve {
+		origins["carbon.solve"] = Drawn
+		origins[map[string]string{"total": "carbon.content", "outgassing": "sources.scale"}[was]] = "solved"
+	}
+	s.Title = fmt.Sprintf("%s, member %d of seed %d", r.Title, i, p.Seed)
+	return &scenarios.Resolved{Name: fmt.Sprintf("%s-member-%d", r.Name, i), Title: s.Title, Notes: r.Notes, File: r.File, Setup: s, Origins: origins}, nil
+}
+
+// Drawn is the origin of a value that an ensemble drew.
+const Drawn = "drawn"

@@ -709,7 +709,10 @@ func (s *summary) typical(ctx context.Context) error {
 				least, sh.Typical = d, s.keep[m.j]
 			}
 		}
-		setup, _ := s.p.Setup(sh.Typical)
+		setup, err := s.p.Alone(ctx, sh.Typical)
+		if err != nil {
+			return err
+		}
 		run, err := carbon.Run(ctx, setup)
 		if ctx.Err() != nil {
 			return ctx.Err()
