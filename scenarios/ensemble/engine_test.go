@@ -3,11 +3,14 @@ package ensemble
 import (
 	"bytes"
 	"context"
+	"io"
+	"math"
 	"os"
 	"path/filepath"
 	"strings"
 	"testing"
 
+	"cycle/carbon"
 	"cycle/carbon/record"
 	"cycle/scenarios"
 )
@@ -329,5 +332,113 @@ func TestTwice(t *testing.T) {
 	}
 	if !bytes.Equal(members(t, dir), members(t, want)) {
 		t.Error("other bytes when a shard runs twice")
+	}
+}
+
+// A full disk is an error that says so; what was written stays good.
+func TestDiskFull(t *testing.T) {
+	p := smallPlan(t, 20, Sobol)
+	full, err := os.OpenFile("/dev/full", os.O_WRONLY, 0)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer full.Close()
+	j := &journal{layout: newLayout(p.identity(1, 1)), file: full}
+	err = p.compute(context.Background(), j, 0, 20, 0, Options{Workers: 2})
+	if err == nil || !strings.Contains(err.Error(), "no space left on device") {
+		t.Errorf("%v", err)
+	}
+	// A result that cannot be written leaves the one before it.
+	dir := t.TempDir()
+	path := filepath.Join(dir, "x")
+	if err := os.WriteFile(path, []byte("old"), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	if err := replace(path, func(w io.Writer) error { w.Write([]byte("new")); return io.ErrShortWrite }); err == nil {
+		t.Error("no error")
+	}
+	if b, _ := os.ReadFile(path); string(b) != "old" {
+		t.Errorf("the old file is %q", b)
+	}
+	if left, _ := os.ReadDir(dir); len(left) != 1 {
+		t.Errorf("%d files left", len(left))
+	}
+	// A folder that cannot be made.
+	if err := p.Prepare(filepath.Join(path, "below"), 1); err == nil {
+		t.Error("a folder below a file")
+	}
+}
+
+// Values that do not fit together and a fault of the program are rows.
+func TestEveryMemberIsARow(t *testing.T) {
+	r, err := scenarios.Parse("x.toml", []byte("[uncertain]\n\"sources.arc\" = { distribution = \"uniform\", low = \"1 Tmol/yr\", high = \"100 Tmol/yr\" }\nages = [\"1 Gyr\"]\n"), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	p, err := NewPlan(r, "test", 1, Sobol, 64)
+	if err != nil {
+		t.Fatal(err)
+	}
+	bad := 0
+	for i := range 8 {
+		row, err := p.Member(context.Background(), i)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if len(p.numbers(&row)) != len(p.columns) {
+			t.Error("a row of another length")
+		}
+		if row.Status == record.StatusImpossible {
+			bad++
+		}
+		back := p.row(p.numbers(&row))
+		if back.Kind != row.Kind || back.Status != row.Status || back.Steps != row.Steps {
+			t.Errorf("%+v came back as %+v", row, back)
+		}
+	}
+	if bad == 0 {
+		t.Error("no member drew more from arcs than there is")
+	}
+	s := r.Setup.Clone()
+	s.Pulses = []*carbon.Pulse{nil}
+	x, err := fate(context.Background(), s, nil) // a fault
+	if err != nil || x.Status != record.StatusFault {
+		t.Errorf("%+v, %v", x, err)
+	}
+}
+
+// A table is read back to the bit.
+func TestTable(t *testing.T) {
+	dir := t.TempDir()
+	p := smallPlan(t, 24, Latin)
+	runAll(t, p, dir, 1, 2)
+	i := 0
+	err := p.Each(dir, func(rec []float64) error {
+		row, err := p.Member(context.Background(), i)
+		if err != nil {
+			return err
+		}
+		for c, want := range p.numbers(&row) {
+			got := rec[c]
+			if p.columns[c].scale != 1 && math.Abs(got-want) <= 4e-16*math.Abs(want) {
+				continue // shown in another unit
+			}
+			if got != want && !(math.IsNaN(got) && math.IsNaN(want)) {
+				t.Errorf("member %d, %s: %v, want %v", i, p.columns[c].name, got, want)
+			}
+		}
+		i++
+		return nil
+	})
+	if err != nil || i != 24 {
+		t.Fatal(i, err)
+	}
+	text, err := os.ReadFile(filepath.Join(dir, MembersCSV))
+	if err != nil {
+		t.Fatal(err)
+	}
+	lines := strings.Split(strings.TrimSpace(string(text)), "\n")
+	if len(lines) != 25 || !strings.HasPrefix(lines[0], "member,orbit_distance_au,weathering_land_efold_K,") {
+		t.Errorf("%d lines, %q", len(lines), lines[0])
 	}
 }

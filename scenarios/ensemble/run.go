@@ -399,6 +399,11 @@ func (p *Plan) compute(ctx context.Context, j *journal, lo, hi, next int, o Opti
 				wanted++
 				<-tokens
 			}
+			if werr == nil && len(results) == 0 {
+				if werr = j.flush(); werr != nil { // what is written survives a kill
+					stop()
+				}
+			}
 		case <-tick.C:
 			if werr == nil {
 				if werr = j.flush(); werr == nil && time.Since(synced) > 5*time.Second {
