@@ -5,6 +5,7 @@ import (
 
 	"gonum.org/v1/gonum/diff/fd"
 
+	"cycle/carbon/climate"
 	"cycle/carbon/outgas"
 	"cycle/carbon/record"
 	"cycle/carbon/units"
@@ -387,42 +388,61 @@ type strength struct {
 //
 //	λ = ∂Ċ/∂C − (∂Ċ/∂T)(∂Ṫ/∂C)/(∂Ṫ/∂T),  response = −1/λ
 //
-// and the gain takes W = W_land + W_sea along the same line.
+// and the gain takes W = W_land + W_sea along the same line. Where alkalinity is a
+// state, λ is the slower of the two rates at which carbon and alkalinity return,
+// and the gain is taken along its direction.
 func (m *Model) strength(age float64, y State) strength {
-	eval := func(t, c float64) (heat, carbon, lnw, lnp float64) {
+	type rates struct{ heat, carbon, alk, lnW, lnP float64 }
+	eval := func(t, c, a float64) rates {
 		z := y
-		z.T, z.Surface = t, c
+		z.T, z.Surface, z.Alk = t, c, a
 		var r record.Row
 		m.diagnose(&r, age, &z)
-		return r.Absorbed - r.Outgoing, r.Imbalance, math.Log(r.Land + r.Seafloor), math.Log(r.PCO2)
+		w := r.Land + r.Seafloor
+		return rates{r.Absorbed - r.Outgoing, r.Imbalance, 2 * (w - r.Burial), math.Log(w), math.Log(r.PCO2)}
 	}
-	set := &fd.Settings{Formula: fd.Central, Step: 1e-4}
-	part := func(pick int, byT bool) float64 {
-		return fd.Derivative(func(x float64) float64 {
-			var h, c, w, p float64
-			if byT {
-				h, c, w, p = eval(y.T+x, y.Surface)
-			} else {
-				h, c, w, p = eval(y.T, y.Surface*(1+x))
-			}
-			return [...]float64{h, c, w, p}[pick]
-		}, 0, set)
+	// Slopes by central differences, carbon and alkalinity by their logarithms.
+	const step = 1e-4
+	slope := func(dt, dc, da float64) rates {
+		up := eval(y.T+step*dt, y.Surface*(1+step*dc), y.Alk*(1+step*da))
+		dn := eval(y.T-step*dt, y.Surface*(1-step*dc), y.Alk*(1-step*da))
+		const k = 1 / (2 * step)
+		return rates{k * (up.heat - dn.heat), k * (up.carbon - dn.carbon), k * (up.alk - dn.alk), k * (up.lnW - dn.lnW), k * (up.lnP - dn.lnP)}
 	}
-	slope := -part(0, false) / part(0, true) // dT/d ln C along the energy balance
-	along := func(pick int) float64 { return part(pick, false) + part(pick, true)*slope }
-	return strength{gain: along(2) / along(3), response: -y.Surface / along(1)}
+	byT := slope(1, 0, 0)
+	// along lets T follow.
+	along := func(x rates) rates {
+		f := -x.heat / byT.heat
+		return rates{0, x.carbon + f*byT.carbon, x.alk + f*byT.alk, x.lnW + f*byT.lnW, x.lnP + f*byT.lnP}
+	}
+	c := along(slope(0, 1, 0))
+	if m.pair == nil {
+		return strength{gain: c.lnW / c.lnP, response: -y.Surface / c.carbon}
+	}
+	a := along(slope(0, 0, 1))
+	// The rates of ln C and ln A: a matrix whose slower eigenvalue counts.
+	cc, ca, ac, aa := c.carbon/y.Surface, a.carbon/y.Surface, c.alk/y.Alk, a.alk/y.Alk
+	half, det := 0.5*(cc+aa), cc*aa-ca*ac
+	disc := half*half - det
+	if disc < 0 {
+		return strength{gain: math.NaN(), response: -1 / half} // a damped oscillation
+	}
+	fast := half + math.Copysign(math.Sqrt(disc), half)
+	slow := det / fast
+	// Its direction: (cc − λ) + ca·v = 0.
+	v := (slow - cc) / ca
+	return strength{gain: (c.lnW + v*a.lnW) / (c.lnP + v*a.lnP), response: -1 / slow}
 }
 
 // sensitivityK returns the warming per doubling of CO₂ at the reference state, K;
-// NaN where outgoing radiation does not change with temperature.
+// NaN where that state does not damp.
 func (m *Model) sensitivityK() float64 {
 	s := m.set
-	sun := s.RefSun / 4
-	lam := fd.Derivative(func(t float64) float64 { return m.imbalance(sun, t, s.RefP) }, s.RefT, &fd.Settings{Formula: fd.Central, Step: 1e-3})
-	if lam == 0 {
+	k, err := climate.Sensitivity(s.radiation.law, s.albedo.law, climate.Reference{T: s.RefT, P: s.RefP, Sun: s.RefSun / 4})
+	if err != nil {
 		return math.NaN()
 	}
-	return (m.imbalance(sun, s.RefT, 2*s.RefP) - m.imbalance(sun, s.RefT, s.RefP)) / -lam
+	return k
 }
 
 // gyr converts years for messages.

@@ -158,6 +158,9 @@ const (
 	evCount
 )
 
+// afterPulse is how long after the end of a pulse every step is kept, yr.
+const afterPulse = 3 * units.Myr
+
 // endOf names the end a terminal event brings.
 var endOf = [evCount]string{evHot: endHot, evCold: endCold, evDense: endDense, evCondense: endCondense, evDry: endDry}
 
@@ -416,7 +419,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 			}
 		}
 		for _, p := range s.Pulses {
-			force = force || t >= p.Start && t <= p.Start+p.Duration
+			force = force || t >= p.Start && t <= p.Start+p.Duration+afterPulse
 		}
 		if t == s.RefAge {
 			m.lay.unpack(&h.atRef, y)

@@ -189,7 +189,7 @@ func (b *builder) dates(check *history) {
 
 func (b *builder) warn(about, words string) {
 	for _, w := range b.run.Warnings {
-		if w.Words == words {
+		if w.About == about && w.Words == words {
 			return
 		}
 	}
@@ -580,7 +580,8 @@ func (b *builder) recoveries(ctx context.Context) error {
 		rec.Pulse = fmt.Sprintf("pulse %d: %s over %s", i+1, strings.Join(what, " and "), units.Time.Format(p.Duration, "kyr"))
 		j = 0
 		peak, peakAge := 0.0, p.Start
-		next := math.Inf(1) // what happens after the next pulse is that pulse's
+		before, beforeAge := 0.0, p.Start // the row before
+		next := math.Inf(1)               // what happens after the next pulse is that pulse's
 		for _, q := range pulses {
 			if q.Start > p.Start {
 				next = math.Min(next, q.Start)
@@ -596,11 +597,17 @@ func (b *builder) recoveries(ctx context.Context) error {
 			if math.Abs(dt) > math.Abs(rec.PeakKelvin) {
 				rec.PeakKelvin = dt
 			}
-			if math.Abs(dl) > math.Abs(peak) {
+			if left := math.Abs(peak) / math.E; math.Abs(dl) > math.Abs(peak) {
 				peak, peakAge, rec.RecoveryKyr = dl, r.Age, math.NaN()
-			} else if math.IsNaN(rec.RecoveryKyr) && r.Age > p.Start+p.Duration && math.Abs(dl) < math.Abs(peak)/math.E {
-				rec.RecoveryKyr = (r.Age - peakAge) / 1e3
+			} else if math.IsNaN(rec.RecoveryKyr) && r.Age > p.Start+p.Duration && math.Abs(dl) < left {
+				// Between the rows the rest decays as an exponential.
+				w := 1.0
+				if dl*before > 0 && math.Abs(before) > left {
+					w = math.Log(math.Abs(before)/left) / math.Log(before/dl)
+				}
+				rec.RecoveryKyr = (beforeAge + w*(r.Age-beforeAge) - peakAge) / 1e3
 			}
+			before, beforeAge = dl, r.Age
 		}
 		rec.PeakLnCO2 = peak
 		b.run.Recoveries = append(b.run.Recoveries, rec)

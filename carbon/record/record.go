@@ -100,7 +100,7 @@ type State struct {
 type Feedback struct {
 	Gain        float64 `json:"gain"`                       // d ln W/d ln pCO2 along the energy balance
 	ResponseKyr float64 `json:"response_time_kyr"`          // e-folding time of surface carbon
-	Sensitivity float64 `json:"sensitivity_k_per_doubling"` // at fixed sunlight, with the ice-albedo feedback; NaN where radiation does not change with temperature
+	Sensitivity float64 `json:"sensitivity_k_per_doubling"` // at fixed sunlight, with the ice-albedo feedback; NaN where the reference state does not damp
 	Forcing     float64 `json:"forcing_w_m2_per_doubling"`  // of CO2
 	AtStateOf   string  `json:"at"`                         // the state it is evaluated at
 }
