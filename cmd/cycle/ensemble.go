@@ -236,6 +236,7 @@ func (u *ui) finishEnsemble(ctx context.Context, o *options, dir string, p *ense
 func ensembleFiles(s *record.Ensemble) []outFile {
 	return []outFile{
 		{"summary.json", func(w io.Writer) error { return reports.EnsembleJSON(w, s) }},
+		{"report.html", func(w io.Writer) error { return reports.EnsembleHTML(w, s) }},
 	}
 }
 
