@@ -57,14 +57,18 @@ func Fate(ctx context.Context, s *Setup, ages []float64) (*record.Member, error)
 //
 // Where less carbon gives a planet that is frozen at the reference age, or has
 // cycled before it, and any more gives one with too much CO₂, no warm planet has the reference CO₂: the one that would have it freezes.
-// The history is then that of the most carbon that still freezes, and missed is
-// true.
+// The history is then that of the carbon at which the warm ones, extrapolated,
+// would have it, and missed is true. Likewise on the hot side: the one with enough
+// carbon overheats before.
 func (m *Model) settle(ctx context.Context) (h *history, residual float64, missed bool, err error) {
 	const (
-		far   = 50
-		gap   = 0.02          // width in ln carbon at which a jump is one
-		slope = 1.5           // d ln p/d ln carbon to start with
-		most  = 5.70378247466 // ln 300
+		far    = 50
+		gap    = 0.02          // width in ln carbon at which a jump is one
+		close  = 0.35          // ln(p/p₀) of a warm planet, and
+		narrow = 0.1           // width, from which one is told by extrapolation
+		slope  = 1.5           // d ln p/d ln carbon to start with
+		near   = 3e-3          // |ln(p/p₀)| at which the loose search ends
+		most   = 5.70378247466 // ln 300
 	)
 	s := m.set
 	knob := &m.content
@@ -125,7 +129,7 @@ func (m *Model) settle(ctx context.Context) (h *history, residual float64, misse
 				}
 			}
 			px, pf = x, f
-			if math.Abs(f) < 0.3*tol || math.Abs(f) < 30*tol && n > 0 {
+			if math.Abs(f) < near/100 || math.Abs(f) < near && n > 0 {
 				x -= f / d
 				break
 			}
@@ -135,13 +139,11 @@ func (m *Model) settle(ctx context.Context) (h *history, residual float64, misse
 		} else {
 			hi, fhi = x, f
 		}
-		if hi-lo < gap || n > 60 {
-			if flo != -far || fhi == far {
-				return robust()
-			}
-			// In short steps the edge may lie a little lower.
+		// A warm planet close above a frozen one points at the carbon it takes.
+		jump := flo == -far && fhi > 0 && fhi < far && (hi-lo < gap || hi-fhi/d <= lo && (fhi < close || hi-lo < narrow))
+		if jump {
 			for k := range 12 {
-				*knob = x0 * math.Exp(lo-gap*float64(k*k))
+				*knob = x0 * math.Exp(math.Min(hi-fhi/d, lo)-gap*float64(k*k))
 				if h, err = whole(); err != nil {
 					return nil, 0, false, err
 				}
@@ -156,6 +158,19 @@ func (m *Model) settle(ctx context.Context) (h *history, residual float64, misse
 			}
 			return robust()
 		}
+		if hi-lo < gap/2 && flo < 0 && fhi == far {
+			*knob = x0 * math.Exp(hi)
+			if h, err = whole(); err != nil {
+				return nil, 0, false, err
+			}
+			if f, err := value(h); err == nil && f == far {
+				return h, math.NaN(), true, nil
+			}
+			return robust()
+		}
+		if hi-lo < 1e-3 || n > 60 {
+			return robust()
+		}
 		next := x - f/d
 		switch {
 		case math.IsInf(lo, 0) || math.IsInf(hi, 0):
@@ -166,6 +181,8 @@ func (m *Model) settle(ctx context.Context) (h *history, residual float64, misse
 			if math.Abs(next) > most {
 				return robust()
 			}
+		case flo == -far && fhi < far && hi-fhi/d > lo && hi-fhi/d < hi-gap/2:
+			next = hi - fhi/d
 		case math.Abs(f) >= far || !(next > lo+0.05*(hi-lo) && next < hi-0.05*(hi-lo)) && math.Abs(f) > 0.3:
 			next = 0.5 * (lo + hi)
 		}
@@ -178,7 +195,11 @@ func (m *Model) settle(ctx context.Context) (h *history, residual float64, misse
 		}
 		f, err := value(h)
 		switch {
-		case err != nil || math.Abs(f) > 0.3:
+		case err != nil:
+			return robust()
+		case math.Abs(f) == far: // in short steps it freezes or overheats
+			return h, math.NaN(), true, nil
+		case math.Abs(f) > 0.3:
 			return robust() // a jump is close
 		case math.Abs(f) <= tol:
 			return h, f, false, nil

@@ -15,7 +15,7 @@ const (
 	StatusDry        = "water lost"
 	StatusCondense   = "CO2 condenses"
 	StatusFreezes    = "largest number of freezes"
-	StatusMissed     = "froze instead of reaching the reference state"
+	StatusMissed     = "froze or overheated instead of reaching the reference state"
 	StatusSolver     = "the solver could not go on"
 	StatusUnanchored = "no history through the reference state"
 	StatusImpossible = "the values do not fit together"

@@ -800,6 +800,8 @@ func (s *summary) words() {
 		switch c.Status {
 		case record.StatusImpossible:
 			warn("%d members drew values that do not fit together, such as more outgassing from arcs than in all", c.Count)
+		case record.StatusMissed:
+			warn("%d members (%.3g %%) freeze or overheat before they can have the reference CO2 at the reference age: they count with the outcome they come to", c.Count, 100*float64(c.Count)/float64(s.Independent))
 		case record.StatusUnanchored:
 			warn("%d members cannot be brought through the reference state", c.Count)
 		case record.StatusFault:
