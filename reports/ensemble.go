@@ -53,7 +53,7 @@ func EnsembleTerminal(w io.Writer, e *record.Ensemble, opt TerminalOptions) erro
 	t.line(t.bold(title) + strings.Repeat(" ", max(1, t.width-runewidth.StringWidth(title)-runewidth.StringWidth(right))) + t.dim(right))
 	t.line(clean(fmt.Sprintf("%d members, seed %d, %s", e.Members, e.Seed, e.Design)))
 	t.line("")
-	t.line(t.dim(fmt.Sprintf("%-28s %8s  %-15s  %s", "outcome", "share", "95 %", "5, 50, 95 % of the dates, Gyr")))
+	t.line(t.dim(fmt.Sprintf("%-28s %8s  %-15s  %s", "outcome", "share", "95 %", "dates: 5, 50, 95 %, Gyr")))
 	order := append([]record.FateShare(nil), e.Shares...)
 	sort.SliceStable(order, func(i, j int) bool { return order[i].Count > order[j].Count })
 	for _, s := range order {

@@ -303,7 +303,7 @@ func ensembleFigures(e *record.Ensemble) []*page.Figure {
 	}
 	band := func(i int, role string) []page.Curve {
 		n := curveName(i)
-		return []page.Curve{{Column: n + "_low", Upper: n + "_high", Name: "95 % band", Role: role, Kind: page.Band}, {Column: n, Role: role, Wide: true}}
+		return []page.Curve{{Column: n + "_low", Upper: n + "_high", Name: "95 % band", Role: role, Kind: page.Band}, {Column: n, Role: "ink"}}
 	}
 	final := func(q *record.Curve) string {
 		n := len(q.Value) - 1
