@@ -138,7 +138,8 @@ type UncertainInput struct {
 	Column       string `json:"column"` // of members.parquet
 }
 
-// AtAge is the spread of the climate at one age.
+// AtAge is the spread of the climate at one age, among the members that have not
+// failed by then.
 type AtAge struct {
 	AgeGyr   float64 `json:"age_gyr"`
 	Quantity string  `json:"quantity"`

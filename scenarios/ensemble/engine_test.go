@@ -21,6 +21,8 @@ const small = `
 [time]
 start = "4 Gyr"
 end = "4.6 Gyr"
+[solver]
+max_freezes = 3
 [land]
 before = 1
 [biology]

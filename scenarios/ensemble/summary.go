@@ -367,6 +367,8 @@ func (s *summary) byLaw() {
 	}
 }
 
+// ages gives the spread of the climate at the ages asked for, among the members
+// that have not failed by then.
 func (s *summary) ages() error {
 	for _, age := range s.p.Scenario.Uncertain.Ages {
 		at := strings.ReplaceAll(units.Time.Format(age, "Gyr"), " ", "")
@@ -376,8 +378,8 @@ func (s *summary) ages() error {
 				return err
 			}
 			var x []float64
-			for _, v := range s.pick(all) {
-				if !math.IsNaN(v) {
+			for j, v := range s.pick(all) {
+				if !math.IsNaN(v) && !(lost(s.is(j)) && s.time[j] <= age/units.Gyr) {
 					x = append(x, v)
 				}
 			}
