@@ -347,10 +347,17 @@ func (m *Model) start() (y State, words string) {
 	return z, "no climate in balance at the start age inside the radiation law's range"
 }
 
+// least is the least CO₂ pressure a history starts with, bar: just above the
+// edge of the radiation law's box, so that the start does not sit on a threshold.
+func (m *Model) least() float64 {
+	p, _ := m.pressures()
+	return 1.001 * p
+}
+
 // hot is a surface that no radiation inside the law's box can cool: it starts,
 // and ends, at the hot edge, with the least CO₂.
 func (m *Model) hot(y State, total float64) State {
-	p, _ := m.pressures()
+	p := m.least()
 	y.T = m.top()
 	y.Surface, y.Alk = m.carbonAt(p, y.T, m.ref.Total()*m.area)
 	y.Mantle = total - y.Surface
@@ -362,7 +369,7 @@ func (m *Model) hot(y State, total float64) State {
 // where a history starts when no pressure inside the box is in balance; at the
 // edges of the box it is over at once.
 func (m *Model) bare(y State, d *memo, total float64) State {
-	p, _ := m.pressures()
+	p := m.least()
 	t, top := math.Max(150, m.set.radiation.law.Box().T.Lo), m.top()
 	for ; t < top; t += 0.5 {
 		if m.imbalance(d.sun, t, p) <= 0 {

@@ -480,7 +480,7 @@ func (m *Model) anchor(ctx context.Context, rtol float64) (residual float64, err
 		case err != nil:
 			return 0, err
 		case h.hasRef && h.atRef.T > s.FrozenBelow:
-			return math.Log(s.ocean.law.Solve(h.atRef.Surface, h.atRef.Alk, h.atRef.T).P / s.RefP), nil
+			return math.Log(s.ocean.law.Solve(present(h.atRef.Surface), h.atRef.Alk, h.atRef.T).P / s.RefP), nil
 		case h.hasRef || h.reason == endCondense || h.reason == endCold || h.reason == endFreezes:
 			return -far, nil // frozen: too little
 		case h.reason == endSolver:

@@ -3,6 +3,7 @@ package carbon
 import (
 	"context"
 	"math"
+	"strings"
 	"testing"
 
 	"cycle/carbon/climate"
@@ -273,5 +274,167 @@ func TestWaterLeaves(t *testing.T) {
 	s.WaterEscape = false
 	if r := ran(t, s); r.Rows[len(r.Rows)-1].Water != first || r.Outcome.Kind == record.WaterLost {
 		t.Errorf("water leaves though it may not: %s", r.Outcome.Sentence)
+	}
+}
+
+// TestNothingLeftAtTheSurface: a planet whose outgassing has ceased runs out of
+// surface carbon; its history goes on, with a CO₂ pressure above zero.
+func TestNothingLeftAtTheSurface(t *testing.T) {
+	for _, land := range []string{"west2012", "walker1981", "arrhenius_runoff"} {
+		s := planet(t, map[string]string{"interior": "stagnant", "ocean": "fraction", "weathering.land": land})
+		s.Distance = 0.95 * units.AU
+		r := ran(t, s)
+		if r.Outcome.Kind != record.RunawayGreen {
+			t.Errorf("%s: %s", land, r.Outcome.Sentence)
+		}
+		for i := range r.Rows {
+			if x := &r.Rows[i]; !(x.PCO2 > 0) || x.Surface < -1e-9*r.CarbonMol {
+				t.Fatalf("%s: %.4g mol and %.4g bar at %.4g Gyr", land, x.Surface, x.PCO2, gyr(x.Age))
+			}
+		}
+		if last := r.Rows[len(r.Rows)-1].Surface; last > 1e12 {
+			t.Errorf("%s: %.3g mol are left: this planet does not test it", land, last)
+		}
+	}
+	before := 0.0
+	for _, c := range []float64{-1e12, -1e9, -1e3, -1, 0, 1, 1e3, 1e9, 9.99e11, 1.01e12, 1e18} {
+		x := present(c)
+		if !(x > before) || c > 1e9 && math.Abs(x/c-1) > 1e-15 {
+			t.Errorf("%g mol count as %g, less than that as %g", c, x, before)
+		}
+		before = x
+	}
+}
+
+// TestPairOffBalance: where burial is not what weathers, each reservoir of
+// carbonate gets its share of what is buried, and alkalinity the rest.
+func TestPairOffBalance(t *testing.T) {
+	s := planet(t, map[string]string{"ocean": "pair"})
+	m, err := NewModel(s)
+	if err != nil {
+		t.Fatal(err)
+	}
+	st, _ := m.start()
+	st.Alk *= 1.02 // more saturated than weathering calls for
+	y, dy := make([]float64, m.lay.n), make([]float64, m.lay.n)
+	m.lay.pack(y, &st)
+	m.derivative(dy, s.Start, y)
+	r := &m.row
+	weathered := r.Land + r.Seafloor
+	if !(r.Burial > 1.1*weathered) {
+		t.Fatalf("burial %.4g of %.4g mol/yr: not off balance", r.Burial, weathered)
+	}
+	for name, x := range map[string][2]float64{
+		"alkalinity":  {dy[m.lay.alk], 2 * (weathered - r.Burial)},
+		"surface":     {dy[m.lay.surface], r.Outgassing - r.Burial},
+		"continental": {dy[m.lay.continental], (1-m.deposited)*r.Land*r.Burial/weathered - r.Metamorphic},
+		"seafloor":    {dy[m.lay.seafloor], (r.Seafloor+m.deposited*r.Land)*r.Burial/weathered - r.Subducted},
+	} {
+		if math.Abs(x[0]/x[1]-1) > 1e-12 {
+			t.Errorf("%s: %.6g mol/yr, want %.6g", name, x[0], x[1])
+		}
+	}
+}
+
+// TestSolveFromTooLittleCarbon: a history that stops at its last freeze before the
+// reference age asks for more carbon, and the solve finds it.
+func TestSolveFromTooLittleCarbon(t *testing.T) {
+	for _, content := range []float64{0.5e-3, 2e-3} {
+		s := NewSetup()
+		s.Solve, s.Content, s.MaxFreezes = "total", content, 3
+		s.Land, s.Biology = Step{Before: 1, After: 1, Width: 1e9}, Step{Before: 1, After: 1, Width: 1e9}
+		m, err := NewModel(s)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if h, err := m.integrate(context.Background(), s.RefAge, 1e-5, false); err != nil || h.reason != endFreezes {
+			t.Fatalf("content %g: %v, %v: this planet does not test it", content, h.reason, err)
+		}
+		if r := ran(t, s); math.Abs(r.Reference.PCO2Bar/s.RefP-1) > 1e-5 {
+			t.Errorf("content %g: %.6g bar at the reference age", content, r.Reference.PCO2Bar)
+		}
+	}
+}
+
+// TestVerdictOfAStoppedHistory: a stay that had just begun when the solver stopped
+// is no lasting failure; one that lasted is.
+func TestVerdictOfAStoppedHistory(t *testing.T) {
+	m, err := NewModel(planet(t, nil))
+	if err != nil {
+		t.Fatal(err)
+	}
+	open := func(start float64) []span { return []span{{lost: start, start: start, end: math.NaN()}} }
+	for _, c := range []struct {
+		h    history
+		want record.Kind
+	}{
+		{history{end: 3e9, reason: endSolver, frozen: open(2.9e9)}, record.Undecided},
+		{history{end: 3e9, reason: endSolver, frozen: open(1.9e9)}, record.Snowball},
+		{history{end: 3e9, reason: endTime, frozen: open(2.9e9)}, record.Snowball},
+		{history{end: 3e9, reason: endSolver, moist: open(2.999e9)}, record.Undecided},
+		{history{end: 3e9, reason: endSolver, moist: open(2.9e9)}, record.MoistGreen},
+		{history{end: 3e9, reason: endCondense, frozen: open(2.9e9)}, record.Condensation},
+		{history{end: 3e9, reason: endSwings, swings: swings{start: 2.5e9}}, record.BeyondRange},
+		{history{end: 3e9, reason: endSwings, swings: swings{start: 2.5e9}, frozen: open(1e9)}, record.Snowball},
+		{history{end: 3e9, reason: endDry}, record.WaterLost},
+		{history{end: 3e9, reason: endStar}, record.StarLeft},
+		{history{end: 3e9, reason: endTable}, record.Temperate},
+	} {
+		if got := m.judge(&c.h); got.kind != c.want {
+			t.Errorf("%s with %d freezes, %d moist stays: %q, want %q", c.h.reason, len(c.h.frozen), len(c.h.moist), got.kind, c.want)
+		}
+	}
+}
+
+// TestSwingsAreCounted: swings that follow one another count, a trend and swings
+// far apart or of less than a kelvin do not.
+func TestSwingsAreCounted(t *testing.T) {
+	count := func(f func(t float64) float64, step float64) int {
+		var w swings
+		for i := 0; i < 4000; i++ {
+			t := 1e9 + step*float64(i)
+			w.see(t, f(t))
+		}
+		return w.count
+	}
+	wave := func(amplitude, period float64) func(float64) float64 {
+		return func(t float64) float64 { return 300 + amplitude*math.Sin(2*math.Pi*t/period) }
+	}
+	// 4000 steps of 250 yr are 100 periods of 10 kyr.
+	if n := count(wave(5, 1e4), 250); n < 195 || n > 205 {
+		t.Errorf("%d turns of 100 swings", n)
+	}
+	if n := count(wave(0.4, 1e4), 250); n != 0 {
+		t.Errorf("%d turns of swings of less than a kelvin", n)
+	}
+	if n := count(wave(5, 1e8), 2.5e6); n > 2 {
+		t.Errorf("%d turns of swings of 100 Myr", n)
+	}
+	if n := count(func(t float64) float64 { return 280 + 20*(t-1e9)/1e6 }, 250); n != 0 {
+		t.Errorf("%d turns of a trend", n)
+	}
+}
+
+// TestEndlessSwings: a warm climate may swing by a few kelvin within millennia, as
+// the ocean gives off CO₂ where it warms. It does not freeze; the history is cut
+// after as many swings as it may have freezes, and says so.
+func TestEndlessSwings(t *testing.T) {
+	s := planet(t, map[string]string{"albedo": "williams1997", "sources": "powerlaw", "weathering.land": "graham2020"})
+	s.OutgassingScale, s.MaxFreezes = 20, 8
+	r := ran(t, s)
+	t.Logf("%s (%d steps)", r.Outcome.Sentence, r.Solver.Steps)
+	if r.Outcome.Kind != record.BeyondRange || !strings.Contains(r.Outcome.Sentence, "swings between") || !warned(r, "solver", "8 swings") {
+		t.Errorf("%+v, %+v", r.Outcome, r.Warnings)
+	}
+	if r.Freezes != 0 || r.Solver.Steps > 3000 {
+		t.Errorf("%d freezes, %d steps", r.Freezes, r.Solver.Steps)
+	}
+	if n := len(r.Episodes); n == 0 || r.Episodes[n-1].State != record.StateBeyond {
+		t.Errorf("episodes %+v", r.Episodes)
+	}
+	for _, row := range r.Rows {
+		if row.Temperature < 273.15 || row.Temperature > 340 {
+			t.Fatalf("%.4g K at %.4g Gyr", row.Temperature, gyr(row.Age))
+		}
 	}
 }

@@ -299,6 +299,7 @@ func TestSupplyLimitedPlanetEndsHot(t *testing.T) {
 // snowball otherwise (Menou 2015; Abbot 2016).
 func TestSnowballCyclesIfItsWeatheringIsWeak(t *testing.T) {
 	const sun = 0.8
+	thaws := map[float64]float64{}
 	for _, under_ice := range []float64{1, 0.3} {
 		planet := func(v float64) *Setup {
 			s := steadyPlanet(t, sun, v)
@@ -328,6 +329,10 @@ func TestSnowballCyclesIfItsWeatheringIsWeak(t *testing.T) {
 			}
 		}
 		t.Logf("under ice %g: thaws above %.3g, warm needs %.3g Tmol/yr", under_ice, b.ThawsAbove, b.WarmNeeds)
+		thaws[under_ice] = b.ThawsAbove
+	}
+	if x := thaws[0.3] / thaws[1]; !(x > 0.25 && x < 0.7) {
+		t.Errorf("weathering under the ice at 0.3 of its strength is %.3g of that at full strength", x)
 	}
 }
 
