@@ -10,6 +10,7 @@ import (
 	"os/signal"
 	"path/filepath"
 	"runtime"
+	"runtime/debug"
 	"strconv"
 	"strings"
 	"syscall"
@@ -106,7 +107,12 @@ same, byte for byte, as that of one run without shards.
 `,
 }
 
+// memoryLimit is where the collector of garbage begins to work harder. The columns
+// of a million members take half of it.
+const memoryLimit = 180 << 20
+
 func runEnsemble(u *ui, o *options, args []string) int {
+	defer debug.SetMemoryLimit(debug.SetMemoryLimit(memoryLimit))
 	ctx, stop := signal.NotifyContext(context.Background(), syscall.SIGINT, syscall.SIGTERM)
 	defer stop()
 	e := &o.ensemble
@@ -170,6 +176,7 @@ func runEnsemble(u *ui, o *options, args []string) int {
 func gather(u *ui, o *options, args []string) int {
 	ctx, stop := signal.NotifyContext(context.Background(), syscall.SIGINT, syscall.SIGTERM)
 	defer stop()
+	defer debug.SetMemoryLimit(debug.SetMemoryLimit(memoryLimit))
 	dir := args[0]
 	p, shards, err := ensemble.Open(dir, version)
 	if err != nil {

@@ -220,26 +220,12 @@ func (s *summary) failures() []record.Kind {
 func (s *summary) curves() {
 	kinds := s.failures()
 	events := make([]estimate.Event, 0, len(s.kind))
-	water := make([]estimate.Event, 0, len(s.kind))
 	for j := range s.kind {
-		k := s.is(j)
-		events = append(events, estimate.Event{Time: s.time[j], Cause: slices.Index(kinds, k)})
-		e := estimate.Event{Time: s.time[j], Cause: -1}
-		if lost(k) {
-			e.Cause = 0
-		}
-		water = append(water, e)
+		events = append(events, estimate.Event{Time: s.time[j], Cause: slices.Index(kinds, s.is(j))})
 	}
-	by, _ := estimate.Incidence(events, len(kinds))
-	// One grid for all, so that the curves can be stacked: steps at equal counts of
-	// events, and the ends.
-	var grid []float64
-	if len(by) > 0 {
-		t := by[0].Time
-		for _, i := range thin(len(t), curvePoints) {
-			grid = append(grid, t[i])
-		}
-	}
+	// One grid for all, so that the curves can be stacked.
+	by, all := estimate.Incidence(events, len(kinds), curvePoints)
+	grid := all.Time
 	ends := func(g []float64) []float64 {
 		if len(g) == 0 || g[0] > s.StartGyr {
 			g = append([]float64{s.StartGyr}, g...)
@@ -261,11 +247,16 @@ func (s *summary) curves() {
 	for i, k := range kinds {
 		s.Incidence = append(s.Incidence, on(&by[i], string(k), grid))
 	}
-	_, free := estimate.Incidence(water, 1)
-	var g []float64
-	for _, i := range thin(len(free.Time), curvePoints) {
-		g = append(g, free.Time[i])
+	events = events[:0]
+	for j := range s.kind {
+		e := estimate.Event{Time: s.time[j], Cause: -1}
+		if lost(s.is(j)) {
+			e.Cause = 0
+		}
+		events = append(events, e)
 	}
+	_, free := estimate.Incidence(events, 1, curvePoints)
+	g := free.Time
 	g = ends(g)
 	s.Liquid = on(&free, "liquid water", g)
 	for i, t := range g {

@@ -54,7 +54,7 @@ func TestWilson(t *testing.T) {
 // Six histories by hand: cause 0 at 1, censored at 2, cause 1 at 3, both causes at
 // 4, cause 0 at 6. Exact fractions.
 func TestIncidenceByHand(t *testing.T) {
-	by, free := Incidence([]Event{{4, 1}, {1, 0}, {6, 0}, {2, -1}, {3, 1}, {4, 0}}, 2)
+	by, free := Incidence([]Event{{4, 1}, {1, 0}, {6, 0}, {2, -1}, {3, 1}, {4, 0}}, 2, 0)
 	if !slices.Equal(free.Time, []float64{1, 3, 4, 6}) {
 		t.Fatal(free.Time)
 	}
@@ -72,24 +72,44 @@ func TestIncidenceReference(t *testing.T) {
 	for _, r := range table(t, "aj_data.csv") {
 		e = append(e, Event{r[0], int(r[1]) - 1})
 	}
-	by, free := Incidence(e, 2)
+	by, free := Incidence(e, 2, 0)
 	for _, r := range table(t, "aj_etm.csv") {
 		for i, c := range []Curve{free, by[0], by[1]} {
 			j, found := slices.BinarySearch(c.Time, r[0])
 			if !found {
 				j--
 			}
-			v, x := 0.0, c.Value[0]
-			if j < 0 { // before the first event
-				x = 0
-				if i == 0 {
-					x = 1
-				}
-			} else {
+			v, x := 0.0, 0.0
+			switch {
+			case j >= 0:
 				v, x = c.Var[j], c.Value[j]
+			case i == 0: // before the first event
+				x = 1
 			}
 			if math.Abs(x-r[1+i]) > 1e-12 || math.Abs(v-r[4+i]) > 1e-12 {
 				t.Errorf("t = %v, curve %d: %.12f variance %.3e, reference %.12f %.3e", r[0], i, x, v, r[1+i], r[4+i])
+			}
+		}
+	}
+}
+
+// Keeping fewer points changes none of them.
+func TestIncidenceThinned(t *testing.T) {
+	rng := rand.New(rand.NewSource(4))
+	var e []Event
+	for range 1000 {
+		e = append(e, Event{float64(rng.Intn(5000)), rng.Intn(4) - 1})
+	}
+	all, whole := Incidence(slices.Clone(e), 3, 0)
+	some, free := Incidence(e, 3, 40)
+	if n := len(free.Time); n != 40 || free.Time[0] != whole.Time[0] || free.Time[n-1] != whole.Time[len(whole.Time)-1] {
+		t.Errorf("%d points from %v to %v", n, free.Time[0], free.Time[n-1])
+	}
+	for k := range some {
+		for i, at := range some[k].Time {
+			v, lo, hi := all[k].At(at)
+			if some[k].Value[i] != v || some[k].Low[i] != lo || some[k].High[i] != hi {
+				t.Fatalf("cause %d at %v: %v, whole %v", k, at, some[k].Value[i], v)
 			}
 		}
 	}
@@ -101,7 +121,7 @@ func TestIncidenceShare(t *testing.T) {
 	for i := range 100 {
 		e = append(e, Event{float64(i + 1), i % 3})
 	}
-	by, _ := Incidence(e, 3)
+	by, _ := Incidence(e, 3, 0)
 	v, _, _ := by[1].At(50)
 	if v != 0.17 && math.Abs(v-0.17) > 1e-12 {
 		t.Errorf("%v of 100 at 50", v)
@@ -125,7 +145,7 @@ func TestIncidenceCoverage(t *testing.T) {
 			x := min(a, b, c)
 			e = append(e, Event{x, map[float64]int{a: 0, b: 1, c: -1}[x]})
 		}
-		by, _ := Incidence(e, 2)
+		by, _ := Incidence(e, 2, 0)
 		truth := 1. / 3 * (1 - math.Exp(-1.5*0.8))
 		if _, lo, hi := by[1].At(0.8); lo <= truth && truth <= hi {
 			in++

@@ -44,8 +44,11 @@ func (c *Curve) At(t float64) (v, lo, hi float64) {
 //
 // The band is that of the transform log(−log(1 − F)) (Kalbfleisch & Prentice
 // 1980). free is S, the probability of no event yet, with Greenwood's variance.
-func Incidence(events []Event, n int) (by []Curve, free Curve) {
-	e := slices.Clone(events)
+//
+// All is computed at every event, but no more than some points of the curves are
+// kept, evenly spread over the times of events, the first and the last among them;
+// 0 keeps all. The events are put in order of time.
+func Incidence(e []Event, n, points int) (by []Curve, free Curve) {
 	slices.SortFunc(e, func(a, b Event) int {
 		switch {
 		case a.Time < b.Time:
@@ -60,6 +63,24 @@ func Incidence(events []Event, n int) (by []Curve, free Curve) {
 	// of C = S d_k/r², C F.
 	type sums struct{ f, aF, aFF, b, c, cF float64 }
 	acc := make([]sums, n)
+	steps, at := 0, 0 // times with events, and the one we are at
+	for i := 0; i < len(e); {
+		j, any := i, false
+		for ; j < len(e) && e[j].Time == e[i].Time; j++ {
+			any = any || e[j].Cause >= 0
+		}
+		if any {
+			steps++
+		}
+		i = j
+	}
+	keep := func(k int) bool {
+		if points < 2 || steps <= points || k == steps-1 {
+			return true
+		}
+		// One of every bucket of times: where the count of buckets goes up.
+		return k*(points-1)/(steps-1) != (k-1)*(points-1)/(steps-1) || k == 0
+	}
 	a, s := 0.0, 1.0
 	risk := float64(len(e))
 	d := make([]float64, n)
@@ -74,6 +95,8 @@ func Incidence(events []Event, n int) (by []Curve, free Curve) {
 		}
 		if all > 0 {
 			t := e[i].Time
+			kept := keep(at)
+			at++
 			ai := 0.0
 			if all < risk {
 				ai = all / (risk * (risk - all))
@@ -88,11 +111,16 @@ func Incidence(events []Event, n int) (by []Curve, free Curve) {
 				ci := s * d[k] / (risk * risk)
 				x.c += ci
 				x.cF += ci * x.f
+				if !kept {
+					continue
+				}
 				v := x.f*x.f*a - 2*x.f*x.aF + x.aFF + x.b - 2*(x.f*x.c-x.cF)
 				by[k].add(t, x.f, math.Max(v, 0), float64(len(e)))
 			}
 			s *= 1 - all/risk
-			free.add(t, s, s*s*a, float64(len(e)))
+			if kept {
+				free.add(t, s, s*s*a, float64(len(e)))
+			}
 		}
 		risk -= float64(j - i)
 		i = j
