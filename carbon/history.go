@@ -193,12 +193,12 @@ func (l *lookup) supplyUse(age float64, y []float64) float64 {
 	t, p := y[0], math.Exp(lnp)
 	env := &m.env
 	*env = weathering.Env{Age: age, T: t, P: p, LnP: lnp - m.lnP0}
-	kinetic := 0.0
-	if s.supply.Limit > 0 {
-		env.Sun, env.Alb = m.sunlight(age)/4, s.albedo.law.Planetary(t, p)
-		kinetic = m.kinetic(env, s.Biology.at(m.hold.at(driveBiology, age)), s.albedo.law.IceFraction(t))
+	if s.supply.Limit == 0 {
+		return m.supplyUse(s.land.law.Relative(env), 0)
 	}
-	return m.supplyUse(env, kinetic)
+	env.Sun, env.Alb = m.sunlight(age)/4, s.albedo.law.Planetary(t, p)
+	relative := s.land.law.Relative(env)
+	return m.supplyUse(relative, m.kinetic(relative, p, s.Biology.at(m.hold.at(driveBiology, age)), s.albedo.law.IceFraction(t)))
 }
 
 // integrate runs the history from its start to an age in yr. With full, a row

@@ -52,9 +52,9 @@ type Model struct {
 	from   *State      // where a history starts; nil is the equilibrium of start
 	pair   *ocean.Pair // nil when alkalinity is no state
 
-	saturates interface { // a law of land with a supply limit of its own, or nil
-		Saturation(*weathering.Env) float64
-	}
+	acidic     bool               // the law of the seafloor looks at [H⁺]
+	saturates  weathering.Limited // a law of land with a supply limit of its own, or nil
+	saturation float64            // its part of that limit at the reference state
 
 	memo   memo
 	airs   airs
@@ -118,8 +118,11 @@ func (m *Model) breathe(t, c, alk float64) *air {
 	a := &m.airs.kept[m.airs.turn]
 	a.t, a.c, a.alk, a.age = t, c, alk, math.NaN()
 	if m.pair != nil {
-		var omega float64
-		a.p, a.lnh, omega = m.pair.Balance(present(c), alk, t)
+		var h, omega float64
+		a.p, h, omega = m.pair.Balance(present(c), alk, t)
+		if m.acidic {
+			a.lnh = math.Log(h)
+		}
 		a.precipitation = m.pair.Precipitation(omega)
 	} else {
 		a.p, a.lnh = s.ocean.law.Pressure(present(c), alk, t)
@@ -209,9 +212,8 @@ func NewModel(s *Setup) (*Model, error) {
 	m.escape = s.EscapeCO2 > 0 && s.interior.law.HasCore()
 	m.lay = newLayout(s.interior.law.HasCore(), s.ocean.law.HasAlkalinity(), m.escape)
 	m.pair, _ = s.ocean.law.(*ocean.Pair)
-	m.saturates, _ = s.land.law.(interface {
-		Saturation(*weathering.Env) float64
-	})
+	m.saturates, _ = s.land.law.(weathering.Limited)
+	_, m.acidic = s.seafloor.law.(weathering.Acidic)
 
 	m.ref = s.reference()
 	m.deposited = m.ref.Deposited()
@@ -255,6 +257,9 @@ func NewModel(s *Setup) (*Model, error) {
 	wref := weathering.Reference{T: s.RefT, P: s.RefP, Sun: sun, Alb: alb, Flux: m.ref.Land, Land: 0.3 * units.EarthArea}
 	if err := bind("weathering.land", s.land.law.Bind(wref)); err != nil {
 		return nil, err
+	}
+	if m.saturates != nil {
+		m.saturation = m.saturates.Saturation(&weathering.Env{Age: s.RefAge, T: s.RefT, P: s.RefP, Sun: sun, Alb: alb})
 	}
 	s.supply.Law = s.land.law
 	if err := bind("weathering.land", s.supply.Bind(wref)); err != nil {
@@ -383,9 +388,10 @@ func (m *Model) weather(r *record.Row, lnp, lnh float64) {
 	s, env := m.set, &m.env
 	*env = weathering.Env{Age: r.Age, T: r.Temperature, P: r.PCO2, LnP: lnp - m.lnP0, Sun: r.Sunlight / 4, Alb: r.Albedo, Crust: r.Crust, LnH: lnh - m.lnH0}
 	lim := m.limit(r.PCO2)
-	kinetic := m.kinetic(env, r.Biology, r.Ice)
+	relative := s.land.law.Relative(env)
+	kinetic := m.kinetic(relative, r.PCO2, r.Biology, r.Ice)
 	r.Land = m.ref.Land * m.area * r.LandFraction * s.supply.Of(kinetic)
-	r.SupplyUse = m.supplyUse(env, kinetic)
+	r.SupplyUse = m.supplyUse(relative, kinetic)
 	r.Seafloor = 0
 	if m.ref.Seafloor > 0 {
 		r.Seafloor = m.ref.Seafloor * m.area * m.iceNorm[1] * (1 - (1-s.SeafloorIce)*r.Ice) * lim * s.seafloor.law.Relative(env)
@@ -393,18 +399,14 @@ func (m *Model) weather(r *record.Row, lnp, lnh float64) {
 }
 
 // kinetic returns what the supply limit bounds: f_bio i_land ℓ(p) w_land(T, p).
-func (m *Model) kinetic(env *weathering.Env, biology, ice float64) float64 {
-	return biology * m.iceNorm[0] * (1 - (1-m.set.LandIce)*ice) * m.limit(env.P) * m.set.land.law.Relative(env)
+func (m *Model) kinetic(relative, p, biology, ice float64) float64 {
+	return biology * m.iceNorm[0] * (1 - (1-m.set.LandIce)*ice) * m.limit(p) * relative
 }
 
 // supplyUse returns land weathering as a part of its supply limit, that of the
 // wrapper or of the law itself; 0 without one.
-func (m *Model) supplyUse(env *weathering.Env, kinetic float64) float64 {
-	use := m.set.supply.Use(kinetic)
-	if m.saturates != nil {
-		use = math.Max(use, m.saturates.Saturation(env))
-	}
-	return use
+func (m *Model) supplyUse(relative, kinetic float64) float64 {
+	return math.Max(m.set.supply.Use(kinetic), m.saturation*relative)
 }
 
 // diagnose evaluates every law once: what it puts into the row is what the

@@ -255,6 +255,17 @@ func TestBisection(t *testing.T) {
 	})
 }
 
+// TestPower: square roots and logarithms agree.
+func TestPower(t *testing.T) {
+	for _, nu := range []float64{1, 1.25, 1.5, 1.75, 2, 2.5, 4, 1.7} {
+		for x := 1e-9; x < 1e6; x *= 3.7 {
+			if got, want := power(x, nu), math.Pow(x, nu); math.Abs(got/want-1) > 1e-13 {
+				t.Errorf("%g^%g = %g, want %g", x, nu, got, want)
+			}
+		}
+	}
+}
+
 // TestSlope holds the derivative to finite differences.
 func TestSlope(t *testing.T) {
 	l := bound(t, Laws[0]).(*Saturated)

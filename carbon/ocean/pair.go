@@ -62,18 +62,18 @@ func (l *Pair) dissolved(k *Constants, c, alk float64) (h, co2 float64) {
 
 // Pressure returns P and ln h.
 func (l *Pair) Pressure(c, alk, t float64) (p, lnH float64) {
-	p, lnH, _ = l.Balance(c, alk, t)
-	return p, lnH
+	p, h, _ := l.Balance(c, alk, t)
+	return p, math.Log(h)
 }
 
-// Balance returns P, ln h and Ω.
-func (l *Pair) Balance(c, alk, t float64) (p, lnH, omega float64) {
+// Balance returns P, h and Ω.
+func (l *Pair) Balance(c, alk, t float64) (p, h, omega float64) {
 	if !(c > 0) || math.IsNaN(alk) {
 		return math.NaN(), math.NaN(), math.NaN()
 	}
 	k := l.constants(t)
 	h, co2 := l.dissolved(k, c, alk)
-	return co2 * units.BarPerAtm / k.K0, math.Log(h), l.Calcium * k.K2 * k.K1 * co2 / (h * h * k.Calcite)
+	return co2 * units.BarPerAtm / k.K0, h, l.Calcium * k.K2 * k.K1 * co2 / (h * h * k.Calcite)
 }
 
 // hydrogen solves the alkalinity balance for h, with the carbon of air and
@@ -162,7 +162,25 @@ func (l *Pair) Precipitation(omega float64) float64 {
 	if !(omega > 1) {
 		return 0
 	}
-	return l.rate * math.Exp(l.Order*math.Log(omega-1))
+	return l.rate * power(omega-1, l.Order)
+}
+
+// power returns x^ν for x > 0. Where ν is a number of quarters, as its default
+// is, square roots do it.
+func power(x, nu float64) float64 {
+	n := 4 * nu
+	if n != math.Trunc(n) {
+		return math.Exp(nu * math.Log(x))
+	}
+	root := math.Sqrt(math.Sqrt(x))
+	y := 1.0
+	for i := int(n); i > 0; i >>= 1 {
+		if i&1 == 1 {
+			y *= root
+		}
+		root *= root
+	}
+	return y
 }
 
 // Fields lists Ω₀, F₀, ν and the composition of seawater.

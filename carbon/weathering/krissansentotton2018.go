@@ -34,6 +34,9 @@ func (l *KrissansenTotton2018) Relative(e *Env) float64 {
 	return power(e.Crust, l.Beta) * math.Exp(l.Gamma*e.LnH-l.er*(1/l.Temperature(e.T)-l.invTp0))
 }
 
+// Acidic says that [H⁺] matters.
+func (l *KrissansenTotton2018) Acidic() {}
+
 // Fields lists E, γ, β and the pore-water temperature.
 func (l *KrissansenTotton2018) Fields() []units.Field {
 	mid := cite.Ref{Work: cite.Lehmer2020, Where: "table 1", Note: "middle of the range", Trust: cite.Derived}

@@ -432,3 +432,58 @@ func BenchmarkRelative(b *testing.B) {
 		}
 	}
 }
+
+// TestSaturationGoesWithRelative: the supply limit of a law is the same in all states.
+func TestSaturationGoesWithRelative(t *testing.T) {
+	n := 0
+	for _, e := range Land {
+		l := e.New()
+		if err := l.Bind(earth); err != nil {
+			t.Fatal(err)
+		}
+		s, ok := l.(Limited)
+		if !ok {
+			continue
+		}
+		n++
+		at := func(temp, p float64) *Env {
+			return &Env{T: temp, P: p, LnP: math.Log(p / earth.P), Sun: earth.Sun, Alb: earth.Alb, Crust: 1}
+		}
+		ref := s.Saturation(at(earth.T, earth.P))
+		for temp := 230.0; temp < 360; temp += 13 {
+			for p := 1e-6; p < 20; p *= 7 {
+				e := at(temp, p)
+				if got, want := s.Saturation(e), ref*l.Relative(e); math.Abs(got-want) > 1e-12*want {
+					t.Errorf("%T at %g K, %g bar: %.15g of the limit, want %.15g", l, temp, p, got, want)
+				}
+			}
+		}
+	}
+	if n < 2 {
+		t.Errorf("%d laws know a supply limit", n)
+	}
+}
+
+// TestAcidic: exactly the laws of the seafloor that look at [H⁺] say so.
+func TestAcidic(t *testing.T) {
+	n := 0
+	for _, e := range Seafloor {
+		l := e.New()
+		if err := l.Bind(earth); err != nil {
+			t.Fatal(err)
+		}
+		at := func(lnH float64) float64 {
+			return l.Relative(&Env{T: earth.T, P: earth.P, Sun: earth.Sun, Alb: earth.Alb, Crust: 1, LnH: lnH})
+		}
+		_, says := l.(Acidic)
+		if looks := at(2) != at(-1); looks != says {
+			t.Errorf("%s looks at [H+]: %v, says so: %v", e.Name, looks, says)
+		}
+		if says {
+			n++
+		}
+	}
+	if n == 0 {
+		t.Error("no law looks at [H+]")
+	}
+}

@@ -14,7 +14,7 @@ type Env struct {
 	Sun   float64 // mean top-of-atmosphere sunlight S/4, W/m²
 	Alb   float64 // planetary albedo
 	Crust float64 // crust production per area relative to the reference, seafloor laws only
-	LnH   float64 // ln([H⁺]/[H⁺]₀) of the ocean, seafloor laws only
+	LnH   float64 // ln([H⁺]/[H⁺]₀) of the ocean, seafloor laws that are Acidic only
 }
 
 // Reference is the state at which every relative flux is 1.
@@ -51,9 +51,13 @@ type Hydrologic interface {
 
 // Limited is a law of land that knows the supply of fresh rock.
 type Limited interface {
-	// Saturation returns the flux as a part of the supply limit, in [0, 1].
+	// Saturation returns the flux as a part of the supply limit, in [0, 1]. The
+	// limit is the same in all states: Saturation goes with Relative.
 	Saturation(e *Env) float64
 }
+
+// Acidic marks a law of the seafloor that looks at LnH, which costs time to know.
+type Acidic interface{ Acidic() }
 
 // Range is the published range of a law; a zero range is not stated.
 type Range struct {
