@@ -250,8 +250,18 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 	events := make([]ode.Event, evCount)
 	events[evFreeze] = ode.Event{Name: record.MarkFroze, Func: temp(s.FrozenBelow), Direction: ode.Falling}
 	events[evThaw] = ode.Event{Name: record.MarkThawed, Func: temp(s.ThawedAbove), Direction: ode.Rising}
-	events[evC3] = ode.Event{Name: record.MarkC3, Func: limit(150e-6, true), Direction: ode.Falling}
-	events[evC4] = ode.Event{Name: record.MarkC4, Func: limit(10e-6, true), Direction: ode.Falling}
+	// What is marked once is not looked at again: a climate may rest on it.
+	var passed [evCount]bool
+	first := func(i int, f func(float64, []float64) float64) func(float64, []float64) float64 {
+		return func(t float64, y []float64) float64 {
+			if passed[i] {
+				return -1
+			}
+			return f(t, y)
+		}
+	}
+	events[evC3] = ode.Event{Name: record.MarkC3, Func: first(evC3, limit(150e-6, true)), Direction: ode.Falling}
+	events[evC4] = ode.Event{Name: record.MarkC4, Func: first(evC4, limit(10e-6, true)), Direction: ode.Falling}
 	events[evMoist] = ode.Event{Name: record.MarkMoist, Func: temp(s.Strato.T)}
 	events[evHot] = ode.Event{Name: "hot edge", Func: temp(m.top()), Direction: ode.Rising, Terminal: 1}
 	events[evCold] = ode.Event{Name: "cold edge", Func: below(box.T.Lo, box.T.Stated()), Direction: ode.Falling, Terminal: 1}
@@ -400,6 +410,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 			case evC3, evC4:
 				if !isFrozen {
 					once(e.Name, e.T)
+					passed[e.Index] = true
 				}
 			case evMoist:
 				if e.Rising && !isMoist {
