@@ -481,8 +481,8 @@ func (s *Solver) logR(z complex128) float64 {
 }
 
 // resolve returns the longest step not above h that resolves the growth in
-// st: the factor by which the method multiplies the mode is at least the
-// square root of the true one, and real growth is below exp(2) a step. Modes
+// st: the growth rate of the method is at least 99 % of the true one, and the
+// growth in a step is at most exp(limit). Modes
 // that cannot grow by e before the end of the run do not matter.
 func (s *Solver) resolve(st []blockState, h float64) float64 {
 	if s.gd.released {
@@ -501,7 +501,7 @@ func (s *Solver) resolve(st []blockState, h float64) float64 {
 			continue
 		}
 		for range 200 {
-			if s.logR(complex(h*b.re, h*b.im)) >= 0.5*h*b.re {
+			if s.logR(complex(h*b.re, h*b.im)) >= 0.99*h*b.re {
 				break
 			}
 			h *= 0.8

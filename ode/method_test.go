@@ -307,12 +307,12 @@ func TestOrder(t *testing.T) {
 	exact2 := func(t float64, y []float64) { y[0], y[1] = math.Exp(math.Sin(t)), 1/(1+t) }
 	f2 := func(d []float64, t float64, y []float64) {
 		d[0] = y[0] * math.Cos(t) * (1 + t) * y[1]
-		d[1] = -y[1] * y[1] + 0.1*(y[0]-math.Exp(math.Sin(t)))
+		d[1] = -y[1]*y[1] + 0.1*(y[0]-math.Exp(math.Sin(t)))
 	}
 	exact3 := func(t float64, y []float64) { y[0], y[1], y[2] = math.Exp(math.Sin(t)), 1/(1+t), t }
 	f3 := func(d []float64, _ float64, y []float64) {
 		d[0] = y[0] * math.Cos(y[2]) * (1 + y[2]) * y[1]
-		d[1] = -y[1] * y[1] + 0.1*(y[0]-math.Exp(math.Sin(y[2])))
+		d[1] = -y[1]*y[1] + 0.1*(y[0]-math.Exp(math.Sin(y[2])))
 		d[2] = 1
 	}
 	for _, c := range []struct {

@@ -1,0 +1,5 @@
+//go:build race
+
+package ode
+
+const raceEnabled = true
