@@ -2,7 +2,6 @@ package carbon
 
 import (
 	"context"
-	"fmt"
 	"math"
 	"testing"
 
@@ -90,7 +89,7 @@ func predict(t *testing.T, radiation string, ice float64) {
 				sun, v/1e12, want, got.kind, gyr(got.t), h.reason, len(h.frozen), b.WarmNeeds, b.ThawsAbove, b.ThawWhy, b.HotAbove, b.HotWhy)
 		}
 	}
-	t.Log(fmt.Sprintf("%d of %d predicted", hits, total))
+	t.Logf("%d of %d predicted", hits, total)
 	if total < 200 || float64(hits) < 0.98*float64(total) {
 		t.Errorf("%d of %d predicted, want 98 %% of at least 200", hits, total)
 	}

@@ -66,44 +66,40 @@ type Solver struct {
 	logErrOld, hOld float64 // of the last accepted step, for the controller
 	rejectedLast    bool
 
-	tPrev          float64
-	y, yPrev       []float64
-	y1, f1, errv   []float64
-	f0, dfdt       []float64
-	jac            []float64
-	dfdt1, jac1    []float64
-	haveF, haveJ   bool
-	rs             []float64 // row scales for pivoting
-	w              []float64
-	piv, ipiv      []int
-	rsFac, scaled  []float64
-	inc, rhsW      []float64
-	band           *Band
-	rad            *radau
-	limit          float64 // largest growth exponent of a step
-	arg, rhs, sol  []float64
-	fs             []float64
-	u, dense       []float64
-	denseReady     bool
-	clip           bool // times of stages at the end are moved just before it
-	tClip          float64
-	errNorm        float64
-	errComp        int
-	lastH          float64
-	lastOutcome    outcome
-	stats          Stats
-	limiting       []int
-	interp         []float64
-	haveDense      bool
-	denseWanted    bool // hold the dense output to the tolerance
-	denseAlways    bool
-	ev             eventState
-	gd             guardState
-	stepErr        StepError
-	outDst         []float64
-	outTimes       []float64
-	outNext        int
-	initialGrowing int
+	tPrev         float64
+	y, yPrev      []float64
+	y1, f1, errv  []float64
+	f0, dfdt      []float64
+	jac           []float64
+	dfdt1, jac1   []float64
+	haveF, haveJ  bool
+	rs            []float64 // row scales for pivoting
+	w             []float64
+	piv, ipiv     []int
+	rsFac, scaled []float64
+	inc, rhsW     []float64
+	band          *Band
+	rad           *radau
+	limit         float64 // largest growth exponent of a step
+	arg, rhs, sol []float64
+	fs            []float64
+	u, dense      []float64
+	denseReady    bool
+	clip          bool // times of stages at the end are moved just before it
+	tClip         float64
+	errNorm       float64
+	errComp       int
+	lastH         float64
+	lastOutcome   outcome
+	stats         Stats
+	limiting      []int
+	interp        []float64
+	haveDense     bool
+	denseWanted   bool // hold the dense output to the tolerance
+	denseAlways   bool
+	ev            eventState
+	gd            guardState
+	stepErr       StepError
 }
 
 // NewSolver checks p and s and makes all memory a run needs. A nil s means the

@@ -74,7 +74,6 @@ type run struct {
 	err            float64
 	late           int
 	s              *ode.Solver
-	allOK          bool
 }
 
 func (p *problem) solver(m ode.Method, rtol float64, analytic, guard bool) *ode.Solver {
