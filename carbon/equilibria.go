@@ -28,12 +28,6 @@ func ConditionsOf(r *record.Row) Conditions {
 	return Conditions{Age: r.Age, Sunlight: r.Sunlight, Land: r.LandFraction, Biology: r.Biology, Crust: r.Crust}
 }
 
-// ReferenceConditions are those at which the laws are normalised, with the
-// planet's own sunlight at the reference age.
-func (s *Setup) referenceConditions(m *Model) Conditions {
-	return Conditions{Age: s.RefAge, Sunlight: 4 * m.drive(s.RefAge, 0, 0).sun, Land: s.Land.at(s.RefAge), Biology: s.Biology.at(s.RefAge), Crust: 1}
-}
-
 func (c *Conditions) memo() *memo {
 	return &memo{age: c.Age, sun: c.Sunlight / 4, land: c.Land, biology: c.Biology, flow: interior.Flow{Crust: c.Crust}}
 }
