@@ -35,3 +35,6 @@ bench:
 
 fuzz:
 	$(GO) test ./scenarios -run '^$$' -fuzz FuzzLoad -fuzztime 1000000x
+
+walk:
+	CYCLE_WALK=10000 $(GO) test ./carbon -run RandomWalk -v -timeout 60m
