@@ -172,6 +172,20 @@ func TestIndependentOfTheStart(t *testing.T) {
 	}
 }
 
+// TestTroubleWhileSolvingIsUndecided: numerical trouble while solving for the
+// reference state is an outcome, not an error.
+func TestTroubleWhileSolvingIsUndecided(t *testing.T) {
+	s := NewSetup()
+	s.Solve, s.MaxSteps = "total", 60
+	r, err := Run(context.Background(), s)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if r.Outcome.Kind != record.Undecided || len(r.Rows) == 0 || len(r.Warnings) == 0 {
+		t.Errorf("outcome %q with %d rows and %d warnings", r.Outcome.Kind, len(r.Rows), len(r.Warnings))
+	}
+}
+
 func BenchmarkHistory(b *testing.B) {
 	s := NewSetup()
 	s.Content = 7.8e-3

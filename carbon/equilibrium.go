@@ -452,5 +452,12 @@ func (m *Model) sensitivityK() float64 {
 	return k
 }
 
+// Response returns what the radiation and albedo laws make of a doubling of CO₂
+// at the reference state: forcing in W/m² and warming in K at fixed sunlight.
+func (m *Model) Response() (forcing, sensitivity float64) {
+	s := m.set
+	return climate.Forcing(s.radiation.law, climate.Reference{T: s.RefT, P: s.RefP, Sun: s.RefSun / 4}), m.sensitivityK()
+}
+
 // gyr converts years for messages.
 func gyr(age float64) float64 { return age / units.Gyr }

@@ -112,12 +112,14 @@ type history struct {
 	end    float64
 	reason string
 	cause  error // of endSolver
-	stats  ode.Stats
-	drift  float64 // largest |change of total carbon|/total
-	first  State
-	atRef  State
-	hasRef bool
-	words  string // where it started
+	// unsolved tells that the solve for the reference state failed.
+	unsolved bool
+	stats    ode.Stats
+	drift    float64 // largest |change of total carbon|/total
+	first    State
+	atRef    State
+	hasRef   bool
+	words    string // where it started
 }
 
 // atol returns the noise floor of every component at a relative tolerance.

@@ -2,16 +2,17 @@ package carbon
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"sort"
 	"strings"
 
 	"cycle/carbon/cite"
-	"cycle/carbon/climate"
 	"cycle/carbon/record"
 	"cycle/carbon/star"
 	"cycle/carbon/units"
+	"cycle/ode"
 )
 
 // Run computes one history and everything that is said about it. The result's
@@ -63,7 +64,17 @@ func (m *Model) solved(ctx context.Context, rtol float64) (*history, float64, er
 	if m.set.Solve != "nothing" {
 		var err error
 		if residual, err = m.anchor(ctx, rtol); err != nil {
-			return nil, 0, err
+			var se *ode.StepError
+			if !errors.As(err, &se) {
+				return nil, 0, err
+			}
+			// The solve met numerical trouble: what can be shown is the history
+			// before it, and the fate is undecided.
+			h, e := m.integrate(ctx, m.set.End, rtol, true)
+			if e == nil {
+				h.reason, h.cause, h.unsolved = endSolver, err, true
+			}
+			return h, 0, e
 		}
 	}
 	h, err := m.integrate(ctx, m.set.End, rtol, true)
@@ -92,6 +103,9 @@ func (v verdict) hot() bool {
 
 // judge finds the first lasting failure.
 func (m *Model) judge(h *history) verdict {
+	if h.unsolved {
+		return verdict{record.Undecided, h.end, span{}}
+	}
 	s := m.set
 	var all []verdict
 	add := func(k record.Kind, t float64, sp span) { all = append(all, verdict{k, t, sp}) }
@@ -402,8 +416,8 @@ func (b *builder) reference(residual float64) {
 	run.ReferenceAgeGyr = gyr(s.RefAge)
 	run.CarbonMol = b.h.first.Carbon()
 	run.CarbonDrift = b.h.drift
-	cref := climate.Reference{T: s.RefT, P: s.RefP, Sun: s.RefSun / 4}
-	run.Feedback = record.Feedback{Forcing: climate.Forcing(s.radiation.law, cref), Sensitivity: m.sensitivityK(), Gain: math.NaN(), ResponseKyr: math.NaN()}
+	forcing, sensitivity := m.Response()
+	run.Feedback = record.Feedback{Forcing: forcing, Sensitivity: sensitivity, Gain: math.NaN(), ResponseKyr: math.NaN()}
 	at := -1
 	for i := range b.h.rows {
 		if b.h.rows[i].Age == s.RefAge {

@@ -136,14 +136,14 @@ func (k *Kind) Parse(text string) (value float64, unit string, err error) {
 	}
 	t := strings.TrimSpace(text)
 	end := 0
-	for end < len(t) && strings.IndexByte("+-.0123456789eE_", t[end]) >= 0 {
+	for end < len(t) && strings.IndexByte("+-.0123456789eE", t[end]) >= 0 {
 		// An exponent needs a digit or a sign behind it; otherwise the e starts a unit.
 		if (t[end] == 'e' || t[end] == 'E') && !(end+1 < len(t) && strings.IndexByte("+-0123456789", t[end+1]) >= 0) {
 			break
 		}
 		end++
 	}
-	num, err := strconv.ParseFloat(strings.ReplaceAll(t[:end], "_", ""), 64)
+	num, err := strconv.ParseFloat(t[:end], 64)
 	if err != nil {
 		if math.IsInf(num, 0) {
 			return fail("the number is too large")
@@ -183,10 +183,21 @@ func (k *Kind) Format(value float64, unit string) string {
 			return join(s, unit)
 		}
 	}
+	// Another unit may read back exactly: 4.15e9 yr is 4150 Myr, but not 4.15 Gyr.
 	if k != nil {
-		if s := strconv.FormatFloat(value, 'g', -1, 64); unit != k.Base {
-			return join(s, k.Base)
+		best := join(strconv.FormatFloat(value, 'g', -1, 64), k.Base)
+		for _, other := range k.Spellings() {
+			if !strings.HasSuffix(other, k.Base) { // keep to multiples of the base unit
+				continue
+			}
+			f, off := k.Spell[other], k.Offset[other]
+			s := strconv.FormatFloat((value-off)/f, 'g', 15, 64)
+			back, _ := strconv.ParseFloat(s, 64)
+			if back*f+off == value && !strings.Contains(s, "e") && (strings.Contains(best, "e") || len(join(s, other)) < len(best)) {
+				best = join(s, other)
+			}
 		}
+		return best
 	}
 	return join(strconv.FormatFloat(shown, 'g', -1, 64), unit)
 }

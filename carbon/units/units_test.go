@@ -49,12 +49,33 @@ func TestRefusals(t *testing.T) {
 		text string
 	}{
 		{Flux, "7.5"}, {Flux, "7.5 K"}, {Flux, "Tmol/yr"}, {Flux, ""}, {Flux, "nan Tmol/yr"}, {Flux, "inf Tmol/yr"},
-		{Flux, "1e999 Tmol/yr"}, {Flux, "1e308 Tmol/yr"}, {Number, "3 K"}, {Number, "0x1p3"}, {Time, "4,57 Gyr"}, {Time, "1 2 Gyr"},
+		{Flux, "1e999 Tmol/yr"}, {Flux, "1e308 Tmol/yr"}, {Number, "3 K"}, {Number, "0x1p3"}, {Interval, "_1_ K"}, {Time, "4,57 Gyr"}, {Time, "1 2 Gyr"},
 	} {
 		v, _, err := c.kind.Parse(c.text)
 		var pe *ParseError
 		if !errors.As(err, &pe) {
 			t.Errorf("%q: got %v, %v, want a *ParseError", c.text, v, err)
+		}
+	}
+}
+
+// TestFormat: the unit asked for where it reads back to the same bits, else one
+// that does.
+func TestFormat(t *testing.T) {
+	for _, c := range []struct {
+		kind  *Kind
+		value float64
+		unit  string
+		want  string
+	}{
+		{Time, 4.57e9, "Gyr", "4.57 Gyr"},
+		{Time, 4.15e9, "Gyr", "4150 Myr"},
+		{Flux, 7.5e12, "Tmol/yr", "7.5 Tmol/yr"},
+		{Temperature, 288, "K", "288 K"},
+		{Number, 0.3, "", "0.3"},
+	} {
+		if got := c.kind.Format(c.value, c.unit); got != c.want {
+			t.Errorf("%v in %s: %q, want %q", c.value, c.unit, got, c.want)
 		}
 	}
 }

@@ -34,7 +34,8 @@ func check(u *ui, o *options, args []string) int {
 	if err != nil {
 		return u.fail(err)
 	}
-	if _, err := carbon.NewModel(r.Setup); err != nil { // do the laws fit together?
+	m, err := carbon.NewModel(r.Setup) // do the laws fit together?
+	if err != nil {
 		return u.failRun(r, err)
 	}
 	if o.quiet {
@@ -62,7 +63,8 @@ func check(u *ui, o *options, args []string) int {
 		}
 		fmt.Fprintf(u.out, "%s %s  %s  %s  %s  %s\n", mark, pad(leaf(in.Key), keyW), pad(in.Value, valW), pad(in.Origin, originW), pad(allowedWords(in), allowedW), in.Source)
 	}
-	fmt.Fprintln(u.out)
+	forcing, sensitivity := m.Response()
+	fmt.Fprintf(u.out, "\nat the reference state: CO2 forcing %.3g W/m2 a doubling, sensitivity %.3g K a doubling at fixed sunlight\n", forcing, sensitivity)
 	set := 0
 	for _, in := range inputs {
 		if in.Origin != scenarios.Default {
