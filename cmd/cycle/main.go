@@ -3,7 +3,7 @@
 //
 // The command only parses its arguments, opens files and talks; package
 // scenarios reads, carbon computes, reports writes. Each command has a file of its
-// own. testdata holds transcripts of the commands, which a test repeats.
+// own. testdata holds dialogues of the commands, which a test repeats.
 package main
 
 import (

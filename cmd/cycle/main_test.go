@@ -19,7 +19,7 @@ import (
 	"cycle/scenarios"
 )
 
-var update = flag.Bool("update", false, "rewrite the transcripts that differ")
+var update = flag.Bool("update", false, "rewrite the dialogues that differ")
 
 // With CYCLE_AS_COMMAND set the test binary is the command itself, so that a test
 // can start it as a process of its own.
@@ -63,7 +63,7 @@ func tree(t *testing.T) string {
 	return strings.Join(lines, "\n")
 }
 
-// Transcripts in testdata/*.txt are repeated, each in an empty folder. A line
+// Dialogues in testdata/*.txt are repeated, each in an empty folder. A line
 // that begins with
 //
 //	#   is a comment
@@ -73,11 +73,11 @@ func tree(t *testing.T) string {
 // and what follows a command is what it prints, standard output before standard
 // error, then "exit N" unless the status is 0. A line "..." stands for any lines,
 // "..." within a line for any text.
-// go test ./cmd/cycle -run Transcripts -update rewrites what differs.
-func TestTranscripts(t *testing.T) {
+// go test ./cmd/cycle -run Dialogues -update rewrites what differs.
+func TestDialogues(t *testing.T) {
 	files, err := filepath.Glob("testdata/*.txt")
 	if err != nil || len(files) == 0 {
-		t.Fatal("no transcripts", err)
+		t.Fatal("no dialogues", err)
 	}
 	for _, file := range files {
 		abs, err := filepath.Abs(file)
@@ -86,12 +86,12 @@ func TestTranscripts(t *testing.T) {
 		}
 		t.Run(strings.TrimSuffix(filepath.Base(file), ".txt"), func(t *testing.T) {
 			t.Chdir(t.TempDir())
-			transcript(t, abs)
+			dialogue(t, abs)
 		})
 	}
 }
 
-func transcript(t *testing.T, file string) {
+func dialogue(t *testing.T, file string) {
 	data, err := os.ReadFile(file)
 	if err != nil {
 		t.Fatal(err)
@@ -146,7 +146,7 @@ func transcript(t *testing.T, file string) {
 	}
 }
 
-// perform runs one command of a transcript.
+// perform runs one command of a dialogue.
 func perform(t *testing.T, cmd string, input []string) []string {
 	args := split(cmd)
 	var text string
