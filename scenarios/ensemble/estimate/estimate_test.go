@@ -67,6 +67,44 @@ func TestIncidenceByHand(t *testing.T) {
 	}
 }
 
+// TestIncidencePublished repeats the worked example of the literature: the weeks
+// of remission of 21 patients under 6-mercaptopurine (Freireich et al. 1963,
+// Blood 21, 699-716), whose product-limit estimate and Greenwood errors stand in
+// the textbooks (Cox & Oakes 1984; Kalbfleisch & Prentice 2002; figures from
+// memory). With one cause Aalen-Johansen is the complement of product-limit;
+// with the relapses parted into two causes the two incidences must add up to it.
+func TestIncidencePublished(t *testing.T) {
+	relapsed := []float64{6, 6, 6, 7, 10, 13, 16, 22, 23}
+	censored := []float64{6, 9, 10, 11, 17, 19, 20, 25, 32, 32, 34, 35}
+	var one, two []Event
+	for i, w := range relapsed {
+		one = append(one, Event{w, 0})
+		two = append(two, Event{w, i % 2})
+	}
+	for _, w := range censored {
+		one, two = append(one, Event{w, -1}), append(two, Event{w, -1})
+	}
+	by, free := Incidence(one, 1, 0)
+	parted, _ := Incidence(two, 2, 0)
+	for _, c := range []struct{ week, survival, err float64 }{
+		{6, 0.857, 0.076}, {7, 0.807, 0.087}, {10, 0.753, 0.096}, {13, 0.690, 0.107}, {16, 0.627, 0.114}, {22, 0.538, 0.128}, {23, 0.448, 0.135},
+	} {
+		i, found := slices.BinarySearch(free.Time, c.week)
+		if !found {
+			t.Fatalf("no step at %v weeks in %v", c.week, free.Time)
+		}
+		if math.Abs(free.Value[i]-c.survival) > 6e-4 || math.Abs(math.Sqrt(free.Var[i])-c.err) > 6e-4 {
+			t.Errorf("%v weeks: %.4f ± %.4f, published %.3f ± %.3f", c.week, free.Value[i], math.Sqrt(free.Var[i]), c.survival, c.err)
+		}
+		f, _, _ := by[0].At(c.week)
+		a, _, _ := parted[0].At(c.week)
+		b, _, _ := parted[1].At(c.week)
+		if math.Abs(f+free.Value[i]-1) > 1e-14 || math.Abs(a+b-f) > 1e-14 {
+			t.Errorf("%v weeks: incidences %.6f + %.6f, whole %.6f, survival %.6f", c.week, a, b, f, free.Value[i])
+		}
+	}
+}
+
 func TestIncidenceReference(t *testing.T) {
 	var e []Event
 	for _, r := range table(t, "aj_data.csv") {
