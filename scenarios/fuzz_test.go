@@ -38,7 +38,7 @@ func FuzzLoad(f *testing.F) {
 		}
 		start := time.Now()
 		r, err := Parse("fuzz.toml", []byte(text), sets)
-		if d := time.Since(start); d > 5*time.Second {
+		if d := time.Since(start); d > time.Minute { // a hang
 			t.Fatalf("takes %v", d)
 		}
 		if err != nil {
