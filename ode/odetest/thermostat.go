@@ -1,6 +1,10 @@
 package odetest
 
-import "math"
+import (
+	"math"
+
+	"cycle/ode/elementary"
+)
 
 // Thermostat is a test problem with the time scales of a planet's carbon
 // cycle: surface temperature, carbon at the surface, in the crust and in the
@@ -50,12 +54,12 @@ func ThermostatMember(i int) (th Thermostat, y0 [4]float64) {
 func (p *Thermostat) Func(d []float64, t float64, y []float64) {
 	_ = d[3]
 	_ = y[3]
-	l := math.Log(y[1] / p.C0)
+	l := elementary.Log(y[1] / p.C0)
 	x := y[0] - 288
-	alb := p.Warm + (p.Cold-p.Warm)/(1+math.Exp(2*(y[0]-p.Ti)/p.Wi))
+	alb := p.Warm + (p.Cold-p.Warm)/(1+elementary.Exp(2*(y[0]-p.Ti)/p.Wi))
 	s := 240 / (1 + 0.2*(1-t/4.57))
-	w := p.W0 * math.Exp(p.Beta*l+x/p.Te)
-	v := p.V0 * math.Exp(-0.25*t) * y[3]
+	w := p.W0 * elementary.Exp(p.Beta*l+x/p.Te)
+	v := p.V0 * elementary.Exp(-0.25*t) * y[3]
 	r, q := p.Kr*y[2], p.Kd*y[2]
 	d[0] = (s*(1-alb)/0.7 - 235 - p.B*x + p.F*l) * p.Heat
 	d[1] = v + r - w
@@ -68,14 +72,14 @@ func (p *Thermostat) Jac(j, dfdt []float64, t float64, y []float64) {
 	_ = j[15]
 	_ = dfdt[3]
 	_ = y[3]
-	l := math.Log(y[1] / p.C0)
+	l := elementary.Log(y[1] / p.C0)
 	x := y[0] - 288
-	q := 1 / (1 + math.Exp(2*(y[0]-p.Ti)/p.Wi)) // ½ (1 − tanh)
+	q := 1 / (1 + elementary.Exp(2*(y[0]-p.Ti)/p.Wi)) // ½ (1 − tanh)
 	alb := p.Warm + (p.Cold-p.Warm)*q
 	g := 1 / (1 + 0.2*(1-t/4.57))
 	s := 240 * g
-	w := p.W0 * math.Exp(p.Beta*l+x/p.Te)
-	v0 := p.V0 * math.Exp(-0.25*t)
+	w := p.W0 * elementary.Exp(p.Beta*l+x/p.Te)
+	v0 := p.V0 * elementary.Exp(-0.25*t)
 	wt, wc := w/p.Te, w*p.Beta/y[1]
 	j[0], j[1] = (s*2*(p.Cold-p.Warm)*q*(1-q)/(p.Wi*0.7)-p.B)*p.Heat, p.F/y[1]*p.Heat
 	j[4], j[5], j[6], j[7] = -wt, -wc, p.Kr, v0
