@@ -226,6 +226,7 @@ func (b *explainBody) fill() {
 	b.elasticities()
 	b.laws()
 	b.plots()
+	pathNumbers(b.Plots, e)
 	if e.Run != nil {
 		b.Scenario = e.Run.Scenario
 	}

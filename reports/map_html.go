@@ -54,6 +54,7 @@ func MapHTML(w io.Writer, m *record.Map) error {
 		b.LineNotes = append(b.LineNotes, sentence(l.Name+": "+l.Words))
 	}
 	b.plots()
+	mapNumbers(b.Plots, m)
 	if m.Run != nil {
 		b.Scenario = m.Run.Scenario
 	}

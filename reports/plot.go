@@ -21,6 +21,7 @@ type plot struct {
 	Dots           []plotDot
 	Keys           []plotKey
 	Hatched        bool // the fills of the map's patterns are needed
+	Numbers        *plotNumbers
 }
 
 type plotAxis struct {

@@ -160,7 +160,7 @@ function range(panel, few) {
       for (const j of rows) take(v[j]);
     }
   }
-  const cut = panel.trim ? trimmed(panel) : null;
+  const cut = panel.trim && !panel.log ? trimmed(panel) : null;
   if (cut && hi - lo > 2.5 * (cut.hi - cut.lo)) {
     if (hi > cut.hi) cut.over = hi;
     if (lo < cut.lo) cut.under = lo;
@@ -179,6 +179,13 @@ function range(panel, few) {
   }
   if (panel.log) {
     if (panel.decades) lo = Math.max(lo, hi / 10 ** panel.decades);
+    if (hi < 6 * lo) { // less than a decade: round values instead of powers of ten
+      if (hi < 1.02 * lo) [lo, hi] = [lo * 0.98, hi * 1.02];
+      const step = niceStep(hi - lo, few ? 3 : 4), half = step / 2;
+      let min = Math.floor(lo / half + 1e-6) * half, max = Math.ceil(hi / half - 1e-6) * half;
+      if (min <= 0) min = lo * 0.9;
+      return { min, max, ticks: ticksIn(min, max, step) };
+    }
     let a = Math.floor(Math.log10(lo) + 1e-6), b = Math.ceil(Math.log10(hi) - 1e-6);
     if (a >= b) b = a + 1;
     const step = Math.max(1, Math.ceil((b - a) / (few ? 4 : 6)));
@@ -239,7 +246,7 @@ const formatters = {
   "@size": (v) => show(Math.abs(v), 6),
   "@power": (v) => {
     const e = Math.log10(v);
-    return Math.abs(e - Math.round(e)) < 1e-6 ? (Math.abs(e) < 3.5 && e > -2.5 ? show(v, 3) : power(Math.round(e))) : "";
+    return Math.abs(e - Math.round(e)) < 1e-6 && (e > 3.5 || e < -2.5) ? power(Math.round(e)) : show(v, 6);
   },
   "@time": (v) => {
     if (view.clock === "age") return show(v, 6);
@@ -511,6 +518,47 @@ function draw(fig, width, isDark) {
   el.dataset.rows = Math.max(...o.series.map((r) => r.data.length));
 }
 
+// A panel can change between a linear and a logarithmic axis unless it is a
+// stack, which a logarithm would falsify, or holds what has no logarithm.
+function scalable(panel) {
+  if (panel.rail || panel.mirror || panel.curves.some((c) => c.kind)) return false;
+  if (panel.log) return true;
+  let some = false;
+  for (const c of panel.curves) for (const v of columns.get(c.column).values) {
+    if (!Number.isFinite(v)) continue;
+    if (v <= 0) return false;
+    some = true;
+  }
+  return some;
+}
+
+function scale(fig, i, log) {
+  const axis = [].concat(fig.option.yAxis)[i];
+  fig.panels[i].log = log;
+  axis.type = log ? "log" : "value";
+  axis.axisLabel.formatter = log ? "@power" : "@number";
+  redraw();
+}
+
+function el(tag, attributes, ...children) {
+  const e = document.createElement(tag);
+  for (const [k, v] of Object.entries(attributes)) e.setAttribute(k, v);
+  e.append(...children);
+  return e;
+}
+
+function scales(fig) {
+  const group = el("div", { class: "scales", role: "group", "aria-label": "Logarithmic axes: " + fig.title }, el("span", {}, "Logarithmic:"));
+  fig.panels.forEach((p, i) => {
+    if (!scalable(p)) return;
+    const box = el("input", { type: "checkbox", "data-scale": i, autocomplete: "off" });
+    box.checked = p.log;
+    box.addEventListener("change", () => scale(fig, i, box.checked));
+    group.append(el("label", {}, box, " " + [].concat(fig.option.yAxis)[i].name));
+  });
+  if (group.children.length > 1) $(".stage", fig.el).before(group);
+}
+
 const paper = 700; // px, the width of a chart on A4 or Letter
 let printing = false;
 function drawAll() {
@@ -610,6 +658,31 @@ function pointing(f) {
   f.stage.addEventListener("pointerup", end);
   f.stage.addEventListener("pointercancel", () => { start = null; brush.hidden = true; });
   f.stage.addEventListener("dblclick", () => zoom(time()[0], time()[n - 1]));
+  f.stage.tabIndex = 0;
+  f.stage.setAttribute("role", "group");
+  f.stage.setAttribute("aria-label", f.title + ": arrow keys move the cursor, plus and minus zoom, 0 shows the whole history");
+  f.stage.addEventListener("keydown", (ev) => {
+    if (ev.ctrlKey || ev.altKey || ev.metaKey || ev.target !== f.stage) return;
+    const x = time(), span = view.to - view.from, t = x[view.cursor];
+    const go = (row) => {
+      row = Math.min(Math.max(row, 0), n - 1);
+      const to = x[row];
+      view.cursor = row;
+      if (to < view.from || to > view.to) zoom(to - span / 2, to + span / 2);
+      setCursor(row);
+    };
+    switch (ev.key) {
+      case "ArrowLeft": go(view.cursor - (ev.shiftKey ? 10 : 1)); break;
+      case "ArrowRight": go(view.cursor + (ev.shiftKey ? 10 : 1)); break;
+      case "Home": go(bisect(x, view.from)); break;
+      case "End": go(nearest(view.to)); break;
+      case "+": case "=": zoom(t - span / 4, t + span / 4); break;
+      case "-": zoom(t - span, t + span); break;
+      case "0": zoom(x[0], x[n - 1]); break;
+      default: return;
+    }
+    ev.preventDefault();
+  });
 }
 
 // ---- saving --------------------------------------------------------------
@@ -672,6 +745,85 @@ function png(fig) {
   return new Promise((done) => canvas.toBlob((b) => { chart.dispose(); done(b); }, "image/png"));
 }
 
+// A drawing that stands in the page without the script, as a picture of its own:
+// styles become attributes in the colours of print, title and key are added.
+function drawing(fig) {
+  const tone = toneOf(false), inner = $("svg.chart", fig), [, , w, h] = inner.getAttribute("viewBox").split(" ").map(Number);
+  const make = (tag, attributes, text) => {
+    const e = document.createElementNS("http://www.w3.org/2000/svg", tag);
+    for (const [k, v] of Object.entries(attributes)) e.setAttribute(k, v);
+    if (text !== undefined) e.textContent = text;
+    return e;
+  };
+  const plain = (e) => {
+    const out = e.cloneNode(true);
+    for (const x of [out, ...$$("*", out)]) {
+      const set = (o) => { for (const [k, v] of Object.entries(o)) x.setAttribute(k, v); };
+      const has = (c) => x.classList.contains(c);
+      const role = [...x.classList].find((c) => page.palette["@" + c.slice(2).replace("-", ".")] && c.startsWith("c-"));
+      if (role) {
+        const c = tone("@" + role.slice(2).replace("-", "."));
+        set({ fill: c, stroke: c });
+      }
+      if (has("area")) set({ stroke: "none" });
+      if (has("line")) set({ fill: "none", "stroke-linejoin": "round" });
+      if (has("frame")) set({ fill: "none", stroke: tone("@quiet") });
+      if (has("axis")) set({ stroke: tone("@quiet") });
+      if (has("mesh")) set({ stroke: "#1c2529", opacity: 0.62 });
+      if (has("meshdot")) set({ fill: "#1c2529", opacity: 0.72 });
+      if (has("open")) set({ fill: tone("@panel"), stroke: tone("@ink"), "stroke-width": 2.4 });
+      if (x.localName === "text") set({ "font-size": 14, "font-family": font, fill: tone("@quiet"), stroke: "none" });
+      if (has("name")) set({ fill: tone("@ink"), "font-weight": 650 });
+      if (has("say")) set({ fill: tone("@ink"), stroke: tone("@panel"), "stroke-width": 3, "paint-order": "stroke" });
+      for (const a of ["class", "role", "aria-label", "aria-hidden"]) x.removeAttribute(a);
+    }
+    return out;
+  };
+  const keys = [];
+  let x = 11, y = 0;
+  for (const li of $$(".key li", fig)) {
+    const name = clip(li.textContent.trim(), 90), wide = 34 + widthOf(name, 12) + 20;
+    if (x > 11 && x + wide > w - 11) [x, y] = [11, y + 20];
+    keys.push([plain($("svg", li)), name, x, y]);
+    x += wide;
+  }
+  const top = 40, foot = 26, height = top + h + y + 20 + foot;
+  const out = make("svg", { width: w, height, viewBox: "0 0 " + w + " " + height, role: "img" });
+  out.append(make("title", {}, $("h3", fig).textContent));
+  for (const d of $$("svg.unseen > defs")) out.append(plain(d));
+  out.append(make("rect", { width: w, height, fill: tone("@panel") }));
+  const words = (text, at) => out.append(make("text", { "font-family": font, "font-size": 12, fill: tone("@ink"), ...at }, text));
+  words($("h3", fig).textContent, { x: 11, y: 26, "font-size": 17, "font-weight": 600 });
+  const body = plain(inner);
+  for (const [k, v] of Object.entries({ x: 0, y: top, width: w, height: h })) body.setAttribute(k, v);
+  out.append(body);
+  for (const [swatch, name, kx, ky] of keys) {
+    const at = top + h + ky + 4;
+    swatch.setAttribute("x", kx);
+    swatch.setAttribute("y", at);
+    out.append(swatch);
+    words(name, { x: kx + 32, y: at + 10 });
+  }
+  words(page.label, { x: 11, y: height - 9, "font-size": 11, fill: tone("@quiet") });
+  return { text: new XMLSerializer().serializeToString(out), width: w, height };
+}
+
+async function raster(d) {
+  const image = new Image();
+  image.src = "data:image/svg+xml;charset=utf-8," + encodeURIComponent(d.text);
+  await image.decode();
+  const canvas = el("canvas", { width: d.width * 3, height: d.height * 3 });
+  canvas.getContext("2d").drawImage(image, 0, 0, canvas.width, canvas.height);
+  return new Promise((done) => canvas.toBlob(done, "image/png"));
+}
+
+for (const fig of $$(".figure")) {
+  if (!$("svg.chart", fig)) continue;
+  const tools = el("div", { class: "tools", role: "group", "aria-label": "Save: " + $("h3", fig).textContent });
+  for (const kind of fig.dataset.numbers ? ["svg", "png", "csv"] : ["svg", "png"]) tools.append(el("button", { type: "button", "data-save": kind, "data-drawing": fig.id }, kind.toUpperCase()));
+  $(".figure-head", fig).append(tools);
+}
+
 document.addEventListener("click", async (ev) => {
   const b = ev.target.closest("button");
   if (!b) return;
@@ -685,6 +837,11 @@ document.addEventListener("click", async (ev) => {
     if (b.dataset.save === "csv") save(name, new Blob([csv(columnsOf(f))], { type: "text/csv" }));
     if (b.dataset.save === "svg") save(name, new Blob([svg(f)], { type: "image/svg+xml" }));
     if (b.dataset.save === "png") save(name, await png(f));
+  } else if (b.dataset.drawing) {
+    const fig = document.getElementById(b.dataset.drawing), name = page.file + "-" + fig.id + "." + b.dataset.save;
+    if (b.dataset.save === "csv") save(name, new Blob([document.getElementById(fig.dataset.numbers).textContent], { type: "text/csv" }));
+    if (b.dataset.save === "svg") save(name, new Blob([drawing(fig).text], { type: "image/svg+xml" }));
+    if (b.dataset.save === "png") save(name, await raster(drawing(fig)));
   } else if (b.dataset.save === "rows") {
     save(page.file + "-history.csv", new Blob([csv([...columns.values()])], { type: "text/csv" }));
   } else if (b.dataset.save) {
@@ -720,15 +877,18 @@ try {
     view.from = time()[0];
     view.to = time()[n - 1];
     for (const spec of page.figures) {
-      const el = document.getElementById(spec.id), stage = $(".stage", el);
+      const place = document.getElementById(spec.id), stage = $(".stage", place);
       const chart = echarts.init($(".plot", stage), null, { renderer: "svg" });
-      figures.push({ ...spec, el, stage, chart });
+      figures.push({ ...spec, el: place, stage, chart });
       for (const p of spec.panels) for (const c of p.curves) {
         const v = columns.get(c.column).values, u = c.upper ? columns.get(c.upper).values : null;
         units.set(c.index, (j) => (u ? show(v[j], 4) + " to " + show(u[j], 4) + " " + c.unit : quantity(v[j], c.unit)).trim());
       }
     }
-    for (const f of figures) pointing(f);
+    for (const f of figures) {
+      scales(f);
+      pointing(f);
+    }
     $("#clock").hidden = false;
     $("#cursor").max = n - 1;
     $("#cursor").addEventListener("input", (ev) => setCursor(Number(ev.target.value)));
