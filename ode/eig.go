@@ -114,11 +114,13 @@ func hessenberg(a []float64, m int) {
 			}
 			y /= x
 			a[i*m+k-1] = 0
-			for j := k; j < m; j++ {
-				a[i*m+j] -= y * a[k*m+j]
+			ri, rk := a[i*m:i*m+m], a[k*m:k*m+m]
+			for j := k; j < len(ri) && j < len(rk); j++ {
+				ri[j] -= y * rk[j]
 			}
-			for j := range m {
-				a[j*m+k] += y * a[j*m+i]
+			for j := 0; j < len(a); j += m {
+				row := a[j : j+m]
+				row[k] += y * row[i]
 			}
 		}
 	}
@@ -250,24 +252,35 @@ func hqr(a []float64, m int, wr, wi []float64) bool {
 				z := r / s
 				q /= p
 				r /= p
-				for j := kk; j <= nn; j++ {
-					p = *at(kk, j) + q**at(kk+1, j)
-					if kk != nn-1 {
-						p += r * *at(kk+2, j)
-						*at(kk+2, j) -= p * z
-					}
-					*at(kk+1, j) -= p * y
-					*at(kk, j) -= p * x
-				}
+				r0, r1 := a[kk*m:kk*m+nn+1], a[(kk+1)*m:(kk+1)*m+nn+1]
 				mm := min(nn, kk+3)
-				for i := l; i <= mm; i++ {
-					p = x**at(i, kk) + y**at(i, kk+1)
-					if kk != nn-1 {
-						p += z * *at(i, kk+2)
-						*at(i, kk+2) -= p * r
+				if kk == nn-1 {
+					for j := kk; j < len(r0) && j < len(r1); j++ {
+						p = r0[j] + q*r1[j]
+						r1[j] -= p * y
+						r0[j] -= p * x
 					}
-					*at(i, kk+1) -= p * q
-					*at(i, kk) -= p
+					for i := l; i <= mm; i++ {
+						c := (*[2]float64)(a[i*m+kk:])
+						p = x*c[0] + y*c[1]
+						c[1] -= p * q
+						c[0] -= p
+					}
+					continue
+				}
+				r2 := a[(kk+2)*m : (kk+2)*m+nn+1]
+				for j := kk; j < len(r0) && j < len(r1) && j < len(r2); j++ {
+					p = r0[j] + q*r1[j] + r*r2[j]
+					r2[j] -= p * z
+					r1[j] -= p * y
+					r0[j] -= p * x
+				}
+				for i := l; i <= mm; i++ {
+					c := (*[3]float64)(a[i*m+kk:])
+					p = x*c[0] + y*c[1] + z*c[2]
+					c[2] -= p * r
+					c[1] -= p * q
+					c[0] -= p
 				}
 			}
 		}

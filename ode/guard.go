@@ -10,6 +10,11 @@ type blockState struct {
 	count  int     // significantly growing eigenvalues
 	re, im float64 // the fastest growing one
 	sig    float64 // smallest growth rate that counts
+	// How far the block lies beyond a change of its number of growing
+	// eigenvalues from base; negative before the change.
+	excess float64
+	base   int
+	judged bool // excess is known
 }
 
 type guardState struct {
@@ -27,9 +32,11 @@ type guardState struct {
 	cv, cw []complex128
 	cx     []complex128
 	cpiv   []int
+	wv     []float64
 	scale  []float64
 
-	ref, refTol [][]float64 // blocks as of the last computation of their eigenvalues
+	ref, refTol [][]float64 // large blocks as of the last closer look
+	byPoly      []bool      // comparisonStable does not hold for the block
 	detOnly     bool
 
 	hMax     float64 // longest step that resolves the growth at the end
@@ -97,6 +104,7 @@ func (s *Solver) initGuard(g *Guard) error {
 	gd.ca = make([]complex128, m*m)
 	gd.cv, gd.cw, gd.cx = make([]complex128, m), make([]complex128, m), make([]complex128, m)
 	gd.cpiv = make([]int, m)
+	gd.wv = make([]float64, 3*m)
 	gd.scale = make([]float64, m)
 	gd.detOnly = g.Blocks == nil && s.n > wholeLimit
 	for _, b := range gd.blocks {
@@ -104,6 +112,7 @@ func (s *Solver) initGuard(g *Guard) error {
 		if len(b) > 4 && !gd.detOnly {
 			size = sq2(len(b))
 		}
+		gd.byPoly = append(gd.byPoly, false)
 		gd.ref = append(gd.ref, make([]float64, size))
 		gd.refTol = append(gd.refTol, make([]float64, size))
 	}
@@ -117,6 +126,7 @@ func (s *Solver) startGuard() {
 	s.gd.efolds, s.gd.refRate, s.gd.released = 0, 0, false
 	for i := range s.gd.cur {
 		s.gd.cur[i] = blockState{}
+		s.gd.byPoly[i] = false
 		clear(s.gd.ref[i])
 		clear(s.gd.refTol[i])
 	}
@@ -192,45 +202,71 @@ func (s *Solver) guardAll(dst []blockState, jac []float64, t float64, y []float6
 			s.extract(jac, b)
 			a = s.gd.a
 		}
-		if certainlyStable(a[:m*m], s.gd.b, m, s.gd.noise) {
-			dst[k] = blockState{sig: sig}
-			continue
+		a = a[:m*m]
+		stable := blockState{sig: sig}
+		if m <= 4 {
+			if smallStable(a, m, s.gd.noise) {
+				dst[k] = stable
+				continue
+			}
+			if whole {
+				s.extract(jac, b)
+			}
+		} else {
+			if !s.gd.byPoly[k] && comparisonStable(a, s.gd.b, m) {
+				dst[k] = stable
+				continue
+			}
+			if whole {
+				s.extract(jac, b)
+			}
+			if s.gd.known && s.gd.cur[k].count == 0 && s.calm(k, m, sig) ||
+				s.gd.byPoly[k] && comparisonStable(a, s.gd.b, m) && s.setByPoly(k, false) ||
+				m <= polyLimit && polyStable(a, s.gd.b, m, polyNoise*s.gd.noise) && s.setByPoly(k, true) {
+				dst[k] = stable
+				continue
+			}
+			s.setByPoly(k, true)
 		}
-		if whole {
-			s.extract(jac, b)
-		}
-		if m > 4 && s.gd.cur[k].count == 0 && s.gd.known && s.calm(k, m, sig) {
-			dst[k] = blockState{sig: sig}
-			continue
-		}
-		dst[k], _ = s.spectrum(m, sig, -1, dst[k])
+		dst[k] = s.spectrum(m, sig, s.gd.cur[k].count, dst[k])
 	}
 }
 
-// calm reports whether block k in gd.a, stable so far, needs no computation of
-// its eigenvalues: no odd number of real ones has become positive, which the
-// sign of a determinant tells, and no entry has changed so much since the last
-// computation that a complex pair may have.
-func (s *Solver) calm(k, m int, sig float64) bool {
+// setByPoly notes whether comparisonStable fails for block k, whose present
+// state becomes the one that calm compares with. It returns true.
+func (s *Solver) setByPoly(k int, v bool) bool {
 	g := &s.gd
-	a := g.a[:m*m]
-	if s.oddAbove(k, m, max(sig, 1e-3/s.probeStep())) {
-		return false
+	g.byPoly[k] = v
+	if !v {
+		return true
 	}
-	ref, tol := g.ref[k], g.refTol[k]
-	for i, v := range a {
-		if !(math.Abs(v-ref[i]) <= tol[i]) {
-			copy(ref, a)
-			for i := range m {
-				d := math.Abs(ref[i*m+i])
-				for j := range m {
-					tol[i*m+j] = changeLimit * (math.Abs(ref[i*m+j]) + 0.01*d*g.scale[j]/g.scale[i])
-				}
-			}
-			return false
+	m := len(g.blocks[k])
+	a, ref, tol := g.a[:m*m], g.ref[k], g.refTol[k]
+	copy(ref, a)
+	for i := range m {
+		d := 0.01 * math.Abs(a[i*m+i])
+		ri := s.rs[g.blocks[k][i]]
+		for j := range m {
+			// The size of an entry is judged in units of the tolerances.
+			tol[i*m+j] = changeLimit * (math.Abs(a[i*m+j]) + d*s.rs[g.blocks[k][j]]/ri)
 		}
 	}
 	return true
+}
+
+// calm reports whether block k in gd.a, stable so far, needs no closer look:
+// no entry has changed so much since the last one that a complex pair may have
+// begun to grow, and no odd number of real eigenvalues has become positive,
+// which the sign of a determinant tells.
+func (s *Solver) calm(k, m int, sig float64) bool {
+	g := &s.gd
+	ref, tol := g.ref[k], g.refTol[k]
+	for i, v := range g.a[:m*m] {
+		if !(math.Abs(v-ref[i]) <= tol[i]) {
+			return false
+		}
+	}
+	return !s.oddAbove(k, m, max(sig, 1e-3/s.probeStep()))
 }
 
 // oddAbove reports whether an odd number of real eigenvalues of block k, held
@@ -335,15 +371,17 @@ const (
 )
 
 // spectrum computes the eigenvalues of the block in gd.a and judges which of
-// them grow. If c0 ≥ 0 it also returns the excess over significance of the
-// eigenvalue of rank c0 by growth rate. If the eigenvalues cannot be computed
-// it returns old.
-func (s *Solver) spectrum(m int, sig float64, c0 int, old blockState) (blockState, float64) {
+// them grow, and how far the block lies beyond a change of their number from
+// c0: by the growth rate of the fastest that would have to be the next to grow
+// or the slowest that would have to stop. If the eigenvalues cannot be
+// computed it returns old, with an unknown excess.
+func (s *Solver) spectrum(m int, sig float64, c0 int, old blockState) blockState {
 	g := &s.gd
 	s.stats.EigenEvals++
 	copy(g.b, g.a[:m*m])
 	if !eigenvalues(g.b[:m*m], m, g.wr, g.wi) {
-		return old, -1
+		old.judged = false
+		return old
 	}
 	wr, wi := g.wr[:m], g.wi[:m]
 	// By falling real part.
@@ -353,39 +391,63 @@ func (s *Solver) spectrum(m int, sig float64, c0 int, old blockState) (blockStat
 			wi[j], wi[j-1] = wi[j-1], wi[j]
 		}
 	}
-	st := blockState{sig: sig, re: wr[0], im: math.Abs(wi[0])}
-	excess := math.Inf(-1)
+	st := blockState{sig: sig, re: wr[0], im: math.Abs(wi[0]), base: c0, judged: true}
 	biggest := 0.0
 	for i := range wr {
 		biggest = max(biggest, math.Abs(wr[i])+math.Abs(wi[i]))
 	}
-	count := 0
-	for i := 0; i < m; i++ {
-		lim := sig
-		if wr[i] > sig || i == c0 {
-			lim += min(s.eigenNoise(m, complex(wr[i], wi[i])), math.Sqrt(g.noise)*biggest)
-		}
-		if i == c0 {
-			excess = wr[i] - lim
-		}
-		if wr[i] > lim {
-			if count == 0 {
-				st.re, st.im = wr[i], math.Abs(wi[i])
+	// An eigenvalue grows if its real part exceeds sig by more than its
+	// uncertainty, which is at most bound.
+	bound := math.Sqrt(g.noise) * biggest
+	st.excess = math.Inf(-1)
+	for i, v := range wr {
+		asked := i == c0 || i == c0-1
+		if v <= sig && !asked {
+			if i > c0 {
+				break
 			}
-			count++
-		} else if i >= c0 && wr[i] <= 0 {
-			break
+			continue
+		}
+		lim := sig + bound
+		if math.Abs(v-sig) <= bound {
+			lim = sig + min(s.eigenNoise(m, v, wi[i]), bound)
+		}
+		if v > lim {
+			if st.count == 0 {
+				st.re, st.im = v, math.Abs(wi[i])
+			}
+			st.count++
+		}
+		switch i {
+		case c0:
+			st.excess = max(st.excess, v-lim)
+		case c0 - 1:
+			st.excess = max(st.excess, lim-v)
 		}
 	}
-	st.count = count
-	return st, excess
+	return st
 }
 
 // eigenNoise bounds, to first order, what the uncertainty of the entries of
-// the block does to its eigenvalue lam: noise·|w|ᵀ|A||v| / |wᵀv|. It leaves
-// the right eigenvector in gd.cv.
-func (s *Solver) eigenNoise(m int, lam complex128) float64 {
+// the block does to its eigenvalue λ = re + i im: noise·|w|ᵀ|A||v| / |wᵀv|
+// with its left and right eigenvectors w and v.
+func (s *Solver) eigenNoise(m int, re, im float64) float64 {
 	g := &s.gd
+	num, den := 0.0, 0.0
+	switch {
+	case m == 2:
+		num, den = adjugate2((*[4]float64)(g.a), re, im)
+	case m == 3:
+		num, den = adjugate3((*[9]float64)(g.a), complex(re, im))
+	case m == 4 && im == 0:
+		num, den = adjugate4((*[16]float64)(g.a), re)
+	case im == 0:
+		num, den = s.realNoise(m, re)
+	}
+	if den > 0 && num < math.Inf(1) && den < math.Inf(1) {
+		return g.noise * num / den
+	}
+	lam := complex(re, im)
 	if !s.eigenvector(m, lam, false) {
 		return 0
 	}
@@ -394,21 +456,140 @@ func (s *Solver) eigenNoise(m int, lam complex128) float64 {
 		return 0
 	}
 	copy(g.cw[:m], g.cv[:m])
-	copy(g.cv[:m], g.cx[:m])
-	num := 0.0
-	var den complex128
+	num = 0
+	var wv complex128
 	for i := range m {
 		sum := 0.0
 		for j := range m {
-			sum += math.Abs(g.a[i*m+j]) * cabs(g.cv[j])
+			sum += math.Abs(g.a[i*m+j]) * cabs(g.cx[j])
 		}
 		num += cabs(g.cw[i]) * sum
-		den += g.cw[i] * g.cv[i]
+		wv += g.cw[i] * g.cx[i]
 	}
-	if d := cabs(den); d > 0 {
+	if d := cabs(wv); d > 0 {
 		return g.noise * num / d
 	}
 	return math.Inf(1)
+}
+
+// realNoise returns |w|ᵀ|A||v| and |wᵀv| for the real eigenvalue lam, with both
+// vectors from inverse iteration on one factorisation.
+func (s *Solver) realNoise(m int, lam float64) (num, den float64) {
+	g := &s.gd
+	a, lu, rs, piv := g.a[:m*m], g.b[:m*m], g.scale[:m], g.cpiv[:m]
+	v, w, x := g.wv[:m], g.wv[m:2*m], g.wv[2*m:3*m]
+	copy(lu, a)
+	shift := lam + 1e-10*math.Abs(lam) + 0x1p-1000
+	for i := range m {
+		row := lu[i*m : i*m+m]
+		r := 0.0
+		for _, e := range row {
+			r = max(r, math.Abs(e))
+		}
+		rs[i] = 1
+		if r > 0 {
+			rs[i] = 1 / r
+		}
+		v[i], w[i] = r, rs[i]
+		row[i] -= shift
+	}
+	identity(piv)
+	if !luFactor(lu, piv, rs, m) {
+		return 0, 0
+	}
+	for range 2 {
+		luSolve(lu, piv, m, x, v)
+		if !unitMax(v, x) {
+			return 0, 0
+		}
+		luSolveT(lu, piv, m, x, w)
+		if !unitMax(w, x) {
+			return 0, 0
+		}
+	}
+	for i := range m {
+		sum := 0.0
+		for j, e := range a[i*m : i*m+m] {
+			sum += math.Abs(e * v[j])
+		}
+		num += math.Abs(w[i]) * sum
+		den += w[i] * v[i]
+	}
+	return num, math.Abs(den)
+}
+
+// unitMax copies src to dst, divided by its largest entry.
+func unitMax(dst, src []float64) bool {
+	big := 0.0
+	for _, v := range src {
+		big = max(big, math.Abs(v))
+	}
+	if !(big > 0 && big <= math.MaxFloat64) {
+		return false
+	}
+	for i, v := range src {
+		dst[i] = v / big
+	}
+	return true
+}
+
+// adjugate2 is adjugate4 for m = 2 and λ = re + i im.
+func adjugate2(a *[4]float64, re, im float64) (num, den float64) {
+	im = im * im
+	num = math.Abs(a[0])*math.Sqrt(sq(re-a[3])+im) + math.Abs(a[3])*math.Sqrt(sq(re-a[0])+im) + 2*math.Abs(a[1]*a[2])
+	return num, math.Sqrt(sq(2*re-a[0]-a[3]) + 4*im)
+}
+
+// adjugate3 is adjugate4 for m = 3 and a complex λ.
+func adjugate3(a *[9]float64, lam complex128) (num, den float64) {
+	var b [9]complex128
+	for i, v := range a {
+		b[i] = complex(-v, 0)
+	}
+	b[0] += lam
+	b[4] += lam
+	b[8] += lam
+	var trace complex128
+	for i := range 3 {
+		x, y := (*[3]complex128)(b[3*((i+1)%3):]), (*[3]complex128)(b[3*((i+2)%3):])
+		for j := range 3 {
+			c0, c1 := (j+1)%3, (j+2)%3
+			cof := x[c0]*y[c1] - x[c1]*y[c0]
+			re, im := real(cof), imag(cof)
+			num += math.Abs(a[3*i+j]) * math.Sqrt(re*re+im*im)
+			if i == j {
+				trace += cof
+			}
+		}
+	}
+	return num, cabs(trace)
+}
+
+// adjugate4 returns Σ |A_ij| |B_ji| and |Σ B_ii| for B = adj(λI − A).
+func adjugate4(a *[16]float64, lam float64) (num, den float64) {
+	b := *a
+	for i := range b {
+		b[i] = -b[i]
+	}
+	b[0] += lam
+	b[5] += lam
+	b[10] += lam
+	b[15] += lam
+	trace := 0.0
+	for i := range 4 {
+		// Rows other than i.
+		r0, r1, r2 := (i+1)&3, (i+2)&3, (i+3)&3
+		x, y, z := (*[4]float64)(b[4*r0:]), (*[4]float64)(b[4*r1:]), (*[4]float64)(b[4*r2:])
+		for j := range 4 {
+			c0, c1, c2 := (j+1)&3, (j+2)&3, (j+3)&3
+			cof := x[c0]*(y[c1]*z[c2]-y[c2]*z[c1]) - x[c1]*(y[c0]*z[c2]-y[c2]*z[c0]) + x[c2]*(y[c0]*z[c1]-y[c1]*z[c0])
+			num += math.Abs(a[4*i+j] * cof)
+			if i == j {
+				trace += cof
+			}
+		}
+	}
+	return num, math.Abs(trace)
 }
 
 func sq2(m int) int { return m * m }
@@ -541,14 +722,15 @@ func (s *Solver) stabilityExcess(jac []float64, st []blockState) float64 {
 		} else if g.detOnly {
 			v = 1 // with the sign below: bisection
 		} else {
-			s.extract(jac, b)
-			if c0 < m {
-				_, v = s.spectrum(m, sig, c0, st[k])
+			if !st[k].judged || st[k].base != c0 {
+				s.extract(jac, b)
+				j := s.spectrum(m, sig, c0, st[k])
+				st[k].excess, st[k].base, st[k].judged = j.excess, c0, true
+				if !j.judged {
+					st[k].excess = -1
+				}
 			}
-			if c0 > 0 {
-				_, down := s.spectrum(m, sig, c0-1, st[k])
-				v = max(v, -down)
-			}
+			v = st[k].excess
 		}
 		// Noise may make the two judgements differ; the count decides.
 		if (st[k].count != c0) != (v > 0) {
@@ -790,6 +972,14 @@ func (s *Solver) recordChange(k int, a, b blockState) {
 // rounding, if the entries of a are uncertain by the relative amount noise. It
 // is sufficient, not necessary, and cheap. w is workspace for m² numbers.
 func certainlyStable(a, w []float64, m int, noise float64) bool {
+	if m <= 4 {
+		return smallStable(a, m, noise)
+	}
+	return comparisonStable(a, w, m) || m <= polyLimit && polyStable(a, w, m, polyNoise*noise)
+}
+
+// smallStable is certainlyStable for m from 2 to 4.
+func smallStable(a []float64, m int, noise float64) bool {
 	var c, b [5]float64
 	switch m {
 	case 2:
@@ -800,10 +990,89 @@ func certainlyStable(a, w []float64, m int, noise float64) bool {
 		minors3((*[9]float64)(a), &c, &b)
 	case 4:
 		minors4((*[16]float64)(a), &c, &b)
-	default:
-		return comparisonStable(a, w, m)
 	}
 	return hurwitz(&c, &b, m, 8*noise)
+}
+
+// polyNoise allows for the growth of errors in the reduction to Hessenberg form.
+const polyNoise = 32
+
+// Up to this size the characteristic polynomial may speak for a matrix.
+const polyLimit = 8
+
+// polyStable is certainlyStable by the Routh–Hurwitz criterion on the
+// characteristic polynomial. This comes from the Hessenberg form by La Budde's
+// recurrence (Rehman & Ipsen, "La Budde's method for computing characteristic
+// polynomials", arXiv:1104.3769, 2011); the same recurrence on absolute values
+// bounds what an uncertainty tol of the entries does to each coefficient.
+func polyStable(a, w []float64, m int, tol float64) bool {
+	h := w[:m*m]
+	copy(h, a)
+	hessenberg(h, m)
+	// p[k] and q[k]: coefficients of the leading k×k block's polynomial, by
+	// rising power, and of the absolute values.
+	var p, q [polyLimit + 1][polyLimit + 1]float64
+	p[0][0], q[0][0] = 1, 1
+	for k := 1; k <= m; k++ {
+		d := h[(k-1)*m+k-1]
+		pk, qk, pm, qm := &p[k], &q[k], &p[k-1], &q[k-1]
+		ad := math.Abs(d)
+		for i := range k {
+			pk[i] -= d * pm[i]
+			qk[i] += ad * qm[i]
+			pk[i+1] += pm[i]
+			qk[i+1] += qm[i]
+		}
+		sub := 1.0
+		for j := k - 1; j >= 1; j-- {
+			sub *= h[j*m+j-1]
+			f := h[(j-1)*m+k-1] * sub
+			af := math.Abs(f)
+			for i := range j {
+				pk[i] -= f * p[j-1][i]
+				qk[i] += af * q[j-1][i]
+			}
+		}
+	}
+	c, b := &p[m], &q[m]
+	// Zero eigenvalues, within their uncertainty, are dropped.
+	low := 0
+	for low < m {
+		if !(b[low] > 0x1p-900 || b[low] == 0) || !(b[low] <= 0x1p900) {
+			return false
+		}
+		if math.Abs(c[low]) > tol*b[low] {
+			break
+		}
+		low++
+	}
+	// Routh's array, of which every entry is positive for a stable polynomial,
+	// between bounds.
+	var lo, hi [2][polyLimit/2 + 2]float64
+	n := m - low
+	for i := 0; i <= n; i++ {
+		v, e := c[m-i], tol*b[m-i]
+		if i == 0 {
+			e = 0
+		}
+		if !(v > e) {
+			return false
+		}
+		lo[i&1][i>>1], hi[i&1][i>>1] = v-e, v+e
+	}
+	for k := n; k >= 2; k-- { // degree of the row to be replaced
+		al, ah, bl, bh := &lo[(n-k)&1], &hi[(n-k)&1], &lo[(n-k+1)&1], &hi[(n-k+1)&1]
+		ql, qh := al[0]/bh[0], ah[0]/bl[0]
+		width := k/2 + 1
+		for j := 0; j+1 < width; j++ {
+			al[j], ah[j] = al[j+1]-qh*bh[j+1], ah[j+1]-ql*bl[j+1]
+			if !(al[j] > 0) {
+				return false
+			}
+		}
+		al[width-1], ah[width-1] = 0, 0
+	}
+	return true
 }
 
 // hurwitz applies the Routh–Hurwitz criterion to λ^m + c1 λ^(m−1) + … + cm,

@@ -68,6 +68,25 @@ func luSolve(a []float64, piv []int, n int, x, b []float64) {
 	}
 }
 
+// luSolveT solves Aᵀ x = b with the factors of luFactor. It overwrites b.
+func luSolveT(a []float64, piv []int, n int, x, b []float64) {
+	for i := 0; i < n; i++ {
+		row := a[i*n : i*n+n]
+		v := b[i] * row[i]
+		b[i] = v
+		for j := i + 1; j < n; j++ {
+			b[j] -= row[j] * v
+		}
+	}
+	for i := n - 1; i >= 0; i-- {
+		v := b[i]
+		for j, l := range a[i*n : i*n+i] {
+			b[j] -= l * v
+		}
+		x[piv[i]] = v
+	}
+}
+
 // cluFactor is luFactor for complex matrices. It assumes a well-scaled matrix.
 func cluFactor(a []complex128, piv []int, rs []float64, n int) bool {
 	for k := 0; k < n; k++ {

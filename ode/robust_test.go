@@ -4,6 +4,7 @@ import (
 	"errors"
 	"math"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"gonum.org/v1/gonum/diff/fd"
@@ -484,7 +485,7 @@ func TestCertainlyStable(t *testing.T) {
 	r := rand.New(rand.NewPCG(7, 8))
 	for n := 2; n <= 8; n++ {
 		stable, seen := 0, 0
-		for range 20000 {
+		for try := range 20000 {
 			a, w := make([]float64, n*n), make([]float64, n*n)
 			for i := range n {
 				rate := math.Pow(10, 6*r.Float64())
@@ -493,26 +494,38 @@ func TestCertainlyStable(t *testing.T) {
 				}
 				a[i*n+i] -= rate
 			}
+			neutral := try%4 == 0 // a conserved sum: an eigenvalue zero
+			if neutral {
+				for j := range n {
+					a[(n-1)*n+j] = 0
+					for i := range n - 1 {
+						a[(n-1)*n+j] -= a[i*n+j]
+					}
+				}
+			}
 			wr, wi := make([]float64, n), make([]float64, n)
 			ok := certainlyStable(a, w, n, 1e-12)
 			b := append([]float64(nil), a...)
 			if !eigenvalues(b, n, wr, wi) {
 				continue
 			}
-			worst := math.Inf(-1)
+			worst, size := math.Inf(-1), 0.0
 			for _, v := range wr {
 				worst = max(worst, v)
 			}
-			if worst < 0 {
+			for _, v := range a {
+				size = max(size, math.Abs(v))
+			}
+			if worst < 0 || neutral && worst < 1e-12*size {
 				stable++
 				if ok {
 					seen++
 				}
-			} else if ok && worst > 1e-6 {
+			} else if ok && worst > 1e-12*size {
 				t.Fatalf("n = %d: called stable with an eigenvalue %g: %v", n, worst, a)
 			}
 		}
-		if n <= 4 && seen < stable*99/100 {
+		if seen < stable*99/100 {
 			t.Errorf("n = %d: recognised %d of %d stable matrices", n, seen, stable)
 		}
 	}
@@ -570,4 +583,46 @@ func FuzzIntegrate(f *testing.F) {
 			t.Fatalf("y = %v at %g", y, r.T)
 		}
 	})
+}
+
+// TestEigenNoise holds the closed forms for small and for real eigenvalues
+// against eigenvectors from gonum.
+func TestEigenNoise(t *testing.T) {
+	r := rand.New(rand.NewPCG(9, 10))
+	for _, m := range []int{2, 3, 4, 5, 8} {
+		s, err := NewSolver(&Problem{Dim: m, Func: func(d []float64, _ float64, _ []float64) { clear(d) }}, nil)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for range 300 {
+			a := s.gd.a[:m*m]
+			for i := range a {
+				a[i] = r.NormFloat64() * math.Exp(r.NormFloat64())
+			}
+			var e mat.Eigen
+			if !e.Factorize(mat.NewDense(m, m, slices.Clone(a)), mat.EigenBoth) {
+				t.Fatal("no eigenvalues")
+			}
+			var right, left mat.CDense
+			e.VectorsTo(&right)
+			e.LeftVectorsTo(&left)
+			for k, lam := range e.Values(nil) {
+				num, den := 0.0, complex128(0)
+				for i := range m {
+					for j := range m {
+						num += cabs(left.At(i, k)) * math.Abs(a[i*m+j]) * cabs(right.At(j, k))
+					}
+					w := left.At(i, k)
+					den += complex(real(w), -imag(w)) * right.At(i, k)
+				}
+				want := num / cabs(den)
+				if want > 1e6 {
+					continue // hardly two eigenvalues
+				}
+				if got := s.eigenNoise(m, real(lam), imag(lam)) / s.gd.noise; math.Abs(got-want) > 1e-6*want {
+					t.Fatalf("m = %d, eigenvalue %v: noise %g, want %g", m, lam, got, want)
+				}
+			}
+		}
+	}
 }
