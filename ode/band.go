@@ -8,7 +8,13 @@ import "math"
 // exchanged with row k. The diagonal of U is stored inverted.
 func bandFactor(a []float64, piv []int, rs []float64, n, kl, ku int) bool {
 	w := 2*kl + ku + 1
-	for k := 0; k < n; k++ {
+	start := 0
+	if kl == 2 && ku == 2 {
+		if start = factorPenta(a, piv, rs, n); start < 0 {
+			return false
+		}
+	}
+	for k := start; k < n; k++ {
 		last := min(k+kl, n-1)
 		p, best := k, math.Abs(a[k*w+kl])*rs[k]
 		for i := k + 1; i <= last; i++ {
@@ -53,6 +59,10 @@ func bandFactor(a []float64, piv []int, rs []float64, n, kl, ku int) bool {
 // bandSolve solves with the factors of bandFactor.
 func bandSolve(a []float64, piv []int, n, kl, ku int, x, b []float64) {
 	w := 2*kl + ku + 1
+	if kl == 2 && ku == 2 && n >= 3 {
+		solvePenta(a, piv, n, x, b)
+		return
+	}
 	copy(x, b)
 	for k := 0; k < n; k++ {
 		if p := piv[k]; p != k {
@@ -72,6 +82,90 @@ func bandSolve(a []float64, piv []int, n, kl, ku int, x, b []float64) {
 			v -= row[j] * xs[j]
 		}
 		xs[0] = v * row[0]
+	}
+}
+
+// factorPenta is bandFactor for two diagonals on each side, up to the last
+// rows. It returns the column where it stopped, or -1 for an unusable pivot.
+func factorPenta(a []float64, piv []int, rs []float64, n int) int {
+	k := 0
+	for ; k+6 < n; k++ {
+		r0 := (*[21]float64)(a[k*7:]) // rows k, k+1, k+2
+		p0, p1, p2 := r0[2], r0[8], r0[14]
+		at, best := k, math.Abs(p0)*rs[k]
+		if v := math.Abs(p1) * rs[k+1]; v > best {
+			at, best = k+1, v
+		}
+		if v := math.Abs(p2) * rs[k+2]; v > best {
+			at = k + 2
+		}
+		piv[k] = at
+		switch at - k {
+		case 1:
+			p0, p1 = p1, p0
+			r0[3], r0[9] = r0[9], r0[3]
+			r0[4], r0[10] = r0[10], r0[4]
+			r0[5], r0[11] = r0[11], r0[5]
+			r0[6], r0[12] = r0[12], r0[6]
+		case 2:
+			p0, p2 = p2, p0
+			r0[3], r0[15] = r0[15], r0[3]
+			r0[4], r0[16] = r0[16], r0[4]
+			r0[5], r0[17] = r0[17], r0[5]
+			r0[6], r0[18] = r0[18], r0[6]
+		}
+		r := 1 / p0
+		if z := math.Abs(r); !(z <= math.MaxFloat64) || z == 0 {
+			return -1
+		}
+		u1, u2, u3, u4 := r0[3], r0[4], r0[5], r0[6]
+		l1, l2 := p1*r, p2*r
+		r0[2], r0[8], r0[14] = r, l1, l2
+		r0[9] -= l1 * u1
+		r0[10] -= l1 * u2
+		r0[11] -= l1 * u3
+		r0[12] -= l1 * u4
+		r0[15] -= l2 * u1
+		r0[16] -= l2 * u2
+		r0[17] -= l2 * u3
+		r0[18] -= l2 * u4
+	}
+	return k
+}
+
+// solvePenta is bandSolve for two diagonals on each side and n ≥ 3.
+func solvePenta(a []float64, piv []int, n int, x, b []float64) {
+	piv, x, b = piv[:n], x[:n], b[:n]
+	x0, x1, x2 := b[0], b[1], b[2]
+	for k := range n - 2 {
+		switch piv[k] - k {
+		case 1:
+			x0, x1 = x1, x0
+		case 2:
+			x0, x2 = x2, x0
+		}
+		r := (*[8]float64)(a[k*7+7:]) // row k+1 and the first of row k+2
+		x[k] = x0
+		x0, x1 = x1-r[1]*x0, x2-r[7]*x0
+		if k+3 < n {
+			x2 = b[k+3]
+		}
+	}
+	if piv[n-2] == n-1 {
+		x0, x1 = x1, x0
+	}
+	x1 -= a[(n-1)*7+1] * x0
+	y1 := x1 * a[(n-1)*7+2]
+	x[n-1] = y1
+	r := a[(n-2)*7:]
+	y0 := (x0 - r[3]*y1) * r[2]
+	x[n-2] = y0
+	y1, y2, y3, y4 := y0, y1, 0.0, 0.0
+	for k := n - 3; k >= 0; k-- {
+		r := (*[7]float64)(a[k*7:])
+		v := (x[k] - r[6]*y4 - r[5]*y3 - r[4]*y2 - r[3]*y1) * r[2]
+		x[k] = v
+		y1, y2, y3, y4 = v, y1, y2, y3
 	}
 }
 

@@ -15,6 +15,7 @@ type blockState struct {
 	excess float64
 	base   int
 	judged bool // excess is known
+	det    determinant
 }
 
 type guardState struct {
@@ -38,6 +39,7 @@ type guardState struct {
 	ref, refTol [][]float64 // large blocks as of the last closer look
 	byPoly      []bool      // comparisonStable does not hold for the block
 	detOnly     bool
+	det         determinant // of the last matrix that oddAbove or oddBand factored
 
 	hMax     float64 // longest step that resolves the growth at the end
 	hRetry   float64
@@ -45,6 +47,7 @@ type guardState struct {
 	logErr   float64
 	efolds   float64
 	refRate  float64
+	probe    float64 // longest step so far
 	released bool
 
 	losses []Loss
@@ -124,6 +127,7 @@ func (s *Solver) startGuard() {
 	s.gd.losses = s.gd.losses[:0]
 	s.gd.fresh = 0
 	s.gd.efolds, s.gd.refRate, s.gd.released = 0, 0, false
+	s.gd.probe = 0
 	for i := range s.gd.cur {
 		s.gd.cur[i] = blockState{}
 		s.gd.byPoly[i] = false
@@ -288,17 +292,41 @@ func (s *Solver) oddAbove(k, m int, c float64) bool {
 		return false
 	}
 	odd := false
+	d := determinant{mant: 1}
 	for i := range m {
 		if w[i*m+i] < 0 {
 			odd = !odd
 		}
+		d.divide(w[i*m+i])
 		for g.cpiv[i] != i { // sort the permutation
 			j := g.cpiv[i]
 			g.cpiv[i], g.cpiv[j] = g.cpiv[j], g.cpiv[i]
 			odd = !odd
 		}
 	}
+	g.det = d
 	return odd
+}
+
+// determinant is |det| = mant·2^exp, which neither overflows nor underflows.
+type determinant struct {
+	mant float64
+	exp  int
+}
+
+// divide divides by x, the inverse of a pivot.
+func (d *determinant) divide(x float64) {
+	d.mant /= math.Abs(x)
+	if d.mant > 0x1p300 || d.mant < 0x1p-300 {
+		var e int
+		d.mant, e = math.Frexp(d.mant)
+		d.exp += e
+	}
+}
+
+// over returns the ratio to e.
+func (d determinant) over(e determinant) float64 {
+	return math.Ldexp(d.mant/e.mant, min(max(d.exp-e.exp, -2000), 2000))
 }
 
 // oddBand is oddAbove for a banded Jacobian.
@@ -319,14 +347,17 @@ func (s *Solver) oddBand(jac []float64, c float64) bool {
 		return false
 	}
 	odd := false
+	d := determinant{mant: 1}
 	for i := range n {
 		if w[i*width+kl] < 0 {
 			odd = !odd
 		}
+		d.divide(w[i*width+kl])
 		if g.cpiv[i] != i {
 			odd = !odd
 		}
 	}
+	g.det = d
 	return odd
 }
 
@@ -340,8 +371,11 @@ func (s *Solver) oddState(jac []float64, sig float64) blockState {
 		odd = s.oddDense
 	}
 	c := max(sig, 1e-3/s.probeStep())
-	if !odd(jac, c) {
-		return blockState{sig: sig}
+	grows := odd(jac, c)
+	// The determinant vanishes where the number changes.
+	st := blockState{sig: sig, base: s.gd.cur[0].count, det: s.gd.det, judged: true}
+	if !grows {
+		return st
 	}
 	for range 60 {
 		c *= 2
@@ -349,15 +383,17 @@ func (s *Solver) oddState(jac []float64, sig float64) blockState {
 			break
 		}
 	}
-	return blockState{count: 1, re: c, sig: sig}
+	st.count, st.re = 1, c
+	return st
 }
 
 func (s *Solver) oddDense(_ []float64, c float64) bool { return s.oddAbove(0, s.n, c) }
 
-// probeStep is the length of step the determinant test has in mind.
+// probeStep is the length of step the determinant test has in mind: the
+// longest so far, so that its threshold does not come and go with the step.
 func (s *Solver) probeStep() float64 {
-	if s.lastH != 0 {
-		return math.Abs(s.lastH)
+	if s.gd.probe > 0 {
+		return s.gd.probe
 	}
 	return math.Abs(s.t1 - s.t0)
 }
@@ -694,6 +730,7 @@ func (s *Solver) resolve(st []blockState, h float64) float64 {
 // guardAccept tests the end of an attempted step of length h. It reports
 // whether the step resolved what grows there.
 func (s *Solver) guardAccept(h float64) bool {
+	s.gd.probe = max(s.gd.probe, h)
 	s.guardAll(s.gd.end, s.jac1, s.t, s.y1)
 	hm := s.resolve(s.gd.end, h)
 	if hm < h*(1-1e-9) {
@@ -720,7 +757,10 @@ func (s *Solver) stabilityExcess(jac []float64, st []blockState) float64 {
 				v = -v
 			}
 		} else if g.detOnly {
-			v = 1 // with the sign below: bisection
+			v = st[k].det.over(g.cur[k].det) // the sign follows below
+			if st[k].count == c0 {
+				v = -v
+			}
 		} else {
 			if !st[k].judged || st[k].base != c0 {
 				s.extract(jac, b)
@@ -916,6 +956,9 @@ func (s *Solver) recordChange(k int, a, b blockState) {
 		mode[bl[0]] = s.atol[bl[0]] + s.rtol*math.Abs(s.y[bl[0]])
 		return
 	}
+	if g.detOnly && s.realMode(l, b) {
+		return
+	}
 	// The mode that just crossed: the one of lowest growth among the growing
 	// ones, or the fastest of the stable ones after a return.
 	s.extract(s.jac, bl)
@@ -965,6 +1008,98 @@ func (s *Solver) recordChange(k int, a, b blockState) {
 	for _, i := range bl {
 		mode[i] /= sum
 	}
+}
+
+// realMode fills in the rate and the mode of l, a change of stability of a
+// large whole Jacobian, by inverse iteration from the real axis: from the
+// bounds of the growing eigenvalue, or from zero after a return. It reports
+// whether the iteration settled.
+func (s *Solver) realMode(l *Loss, b blockState) bool {
+	g := &s.gd
+	n := s.n
+	odd := s.oddBand
+	if s.band == nil {
+		s.extract(s.jac, g.blocks[0])
+		odd = s.oddDense
+	}
+	shift := 0.0
+	if b.count > 0 {
+		lo, hi := 0.5*b.re, b.re
+		if !odd(s.jac, lo) {
+			lo = 0
+		}
+		for range 12 {
+			mid := 0.5 * (lo + hi)
+			if odd(s.jac, mid) {
+				lo = mid
+			} else {
+				hi = mid
+			}
+		}
+		shift = hi
+	}
+	if s.band != nil {
+		odd(s.jac, shift) // leaves the factors of shift·I − A in gd.b
+	} else {
+		w := g.b[:n*n]
+		for i, v := range g.a[:n*n] {
+			w[i] = -v
+		}
+		for i := 0; i < len(w); i += n + 1 {
+			w[i] += shift
+		}
+		identity(g.cpiv)
+		if !luFactor(w, g.cpiv, s.rs, n) {
+			return false
+		}
+	}
+	v, x := g.wv[:n], g.wv[n:2*n]
+	for i := range v {
+		v[i] = 1 / s.rs[i]
+	}
+	rate, settled := math.NaN(), false
+	for try := 0; try < 50 && !settled; try++ {
+		if s.band != nil {
+			bandSolve(g.b, g.cpiv, n, s.band.Lower, s.band.Upper, x, v)
+		} else {
+			luSolve(g.b, g.cpiv, n, x, v)
+		}
+		// v = (shift − λ) x
+		num, den, big := 0.0, 0.0, 0.0
+		for i, e := range x {
+			e *= s.rs[i]
+			num += e * v[i] * s.rs[i]
+			den += e * e
+			if math.Abs(e) > math.Abs(big) {
+				big = e
+			}
+		}
+		if !(math.Abs(big) <= math.MaxFloat64) || big == 0 {
+			return false
+		}
+		old := rate
+		rate = shift - num/den
+		for i, e := range x {
+			v[i] = e / big
+		}
+		settled = math.Abs(rate-old) <= 1e-9*math.Abs(rate)
+	}
+	if !settled {
+		return false
+	}
+	if b.count > 0 != (rate > 0) {
+		return false
+	}
+	l.Rate, l.Frequency = s.dir*rate, 0
+	sum := 0.0
+	for i, e := range v {
+		sum += sq(e * s.rs[i])
+	}
+	sum = math.Sqrt(sum)
+	for i, e := range v {
+		l.Mode[i] = e / sum
+	}
+	return true
 }
 
 // certainlyStable reports whether no eigenvalue of the m×m matrix a can have a

@@ -626,3 +626,41 @@ func TestEigenNoise(t *testing.T) {
 		}
 	}
 }
+
+// TestBandedSolve: banded factors, with row interchanges, against gonum.
+func TestBandedSolve(t *testing.T) {
+	r := rand.New(rand.NewPCG(11, 12))
+	for _, width := range [][2]int{{1, 1}, {2, 2}, {2, 1}, {1, 3}, {3, 2}} {
+		kl, ku := width[0], width[1]
+		for n := max(kl, ku) + 1; n < 30; n++ {
+			w := 2*kl + ku + 1
+			a, piv, rs := make([]float64, n*w), make([]int, n), make([]float64, n)
+			full := mat.NewDense(n, n, nil)
+			for i := range n {
+				rs[i] = math.Exp(r.NormFloat64())
+				for j := max(0, i-kl); j <= min(n-1, i+ku); j++ {
+					v := r.NormFloat64()
+					full.Set(i, j, v)
+					a[i*w+j-i+kl] = v
+				}
+			}
+			if !bandFactor(a, piv, rs, n, kl, ku) {
+				t.Fatalf("n = %d, band %v: singular", n, width)
+			}
+			b, x := make([]float64, n), make([]float64, n)
+			for i := range b {
+				b[i] = r.NormFloat64()
+			}
+			bandSolve(a, piv, n, kl, ku, x, b)
+			var want mat.VecDense
+			if err := want.SolveVec(full, mat.NewVecDense(n, b)); err != nil {
+				continue // nearly singular
+			}
+			for i, v := range x {
+				if math.Abs(v-want.AtVec(i)) > 1e-9*mat.Norm(&want, math.Inf(1)) {
+					t.Fatalf("n = %d, band %v: x[%d] = %v, want %v", n, width, i, v, want.AtVec(i))
+				}
+			}
+		}
+	}
+}
