@@ -188,7 +188,10 @@ func (b *ensembleBody) decides() {
 			x := in[i]
 			partial := "–"
 			if known(x.Partial.Value) {
-				partial = num.Pretty(fmt.Sprintf("%+.2f (%+.2f to %+.2f)", x.Partial.Value, x.Partial.Low, x.Partial.High))
+				partial = num.Pretty(fmt.Sprintf("%+.2f", x.Partial.Value))
+				if known(x.Partial.Low) && known(x.Partial.High) {
+					partial = num.Pretty(fmt.Sprintf("%+.2f (%+.2f to %+.2f)", x.Partial.Value, x.Partial.Low, x.Partial.High))
+				}
 			}
 			t.Rows = append(t.Rows, sensitiveRow{Key: clean(x.Input), First: index(x.First), Total: index(x.Total), Partial: partial, Bar: bar})
 		}
