@@ -308,15 +308,15 @@ func (s *Solver) oddAbove(k, m int, c float64) bool {
 	return odd
 }
 
-// determinant is |det| = mant·2^exp, which neither overflows nor underflows.
+// determinant is |1/det| = mant·2^exp, which neither overflows nor underflows.
 type determinant struct {
 	mant float64
 	exp  int
 }
 
-// divide divides by x, the inverse of a pivot.
+// divide takes a factor 1/x of the determinant, x the inverse of a pivot.
 func (d *determinant) divide(x float64) {
-	d.mant /= math.Abs(x)
+	d.mant *= math.Abs(x)
 	if d.mant > 0x1p300 || d.mant < 0x1p-300 {
 		var e int
 		d.mant, e = math.Frexp(d.mant)
@@ -324,9 +324,9 @@ func (d *determinant) divide(x float64) {
 	}
 }
 
-// over returns the ratio to e.
+// over returns the ratio of the determinants d and e.
 func (d determinant) over(e determinant) float64 {
-	return math.Ldexp(d.mant/e.mant, min(max(d.exp-e.exp, -2000), 2000))
+	return math.Ldexp(e.mant/d.mant, min(max(e.exp-d.exp, -2000), 2000))
 }
 
 // oddBand is oddAbove for a banded Jacobian.
@@ -376,6 +376,10 @@ func (s *Solver) oddState(jac []float64, sig float64) blockState {
 	st := blockState{sig: sig, base: s.gd.cur[0].count, det: s.gd.det, judged: true}
 	if !grows {
 		return st
+	}
+	// The bound of the last step is a good one to begin with.
+	if old := 0.5 * s.gd.cur[0].re; s.gd.cur[0].count == 1 && old > c && odd(jac, old) {
+		c = old
 	}
 	for range 60 {
 		c *= 2
@@ -1087,7 +1091,7 @@ func (s *Solver) realMode(l *Loss, b blockState) bool {
 	if !settled {
 		return false
 	}
-	if b.count > 0 != (rate > 0) {
+	if b.count > 0 && !(rate > 0) {
 		return false
 	}
 	l.Rate, l.Frequency = s.dir*rate, 0

@@ -35,6 +35,11 @@ func (s *Solver) factorShifted(c float64) outcome {
 		w[i] += c
 	}
 	switch n {
+	case 2:
+		if !factor2((*[4]float64)(w), (*[2]int)(s.piv), (*[2]float64)(s.rs)) {
+			return outcomeSingular
+		}
+		return outcomeOK
 	case 3:
 		if !factor3((*[9]float64)(w), (*[3]int)(s.piv), (*[3]float64)(s.rs)) {
 			return outcomeSingular

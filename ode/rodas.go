@@ -2,6 +2,8 @@ package ode
 
 import "math"
 
+//go:generate sh -c "go run ./unroll >stages.go"
+
 // Coefficients of Rodas5P, G. Steinebach, "Construction of Rosenbrock–Wanner
 // method Rodas5P and numerical benchmarks within the Julia Differential
 // Equations package", BIT Numerical Mathematics 63 (2023) 27, in the form
@@ -53,6 +55,23 @@ func (s *Solver) rodasStep(h, tEnd float64) outcome {
 	if o := s.factorShifted(1 / (h * rodasGamma)); o != outcomeOK {
 		return o
 	}
+	s.stats.FuncEvals += 7
+	s.denseReady = false
+	if n >= 2 && n <= 4 && s.band == nil {
+		if s.clip {
+			tEnd = s.tClip
+		}
+		s.stats.Solves += 8
+		switch n {
+		case 2:
+			s.rodasStages2(h, tEnd)
+		case 3:
+			s.rodasStages3(h, tEnd)
+		case 4:
+			s.rodasStages4(h, tEnd)
+		}
+		return outcomeOK
+	}
 	hinv := 1 / h
 	u, arg, rhs, sol, fs := s.u, s.arg[:n], s.rhs[:n], s.sol[:n], s.fs[:n]
 	ft := s.dfdt[:n]
@@ -83,12 +102,10 @@ func (s *Solver) rodasStep(h, tEnd float64) outcome {
 			u[k*8+i] = v
 		}
 	}
-	s.stats.FuncEvals += 7
 	for k, e := range sol {
 		s.errv[k] = e
 		s.y1[k] = arg[k] + e
 	}
-	s.denseReady = false
 	return outcomeOK
 }
 

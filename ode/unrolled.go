@@ -65,36 +65,38 @@ func denseSums(u, dense []float64, n int) {
 	}
 }
 
-// solve2 is luSolve for n = 2.
+// For n up to 4 the factors are kept so that a solution waits for as few
+// operations in a row as possible: L inverted, D inverted, and U divided by D,
+// x = U⁻¹ D L⁻¹ b. U itself is not inverted, since its rows may differ by many
+// orders of magnitude.
+
+// solve2 solves with the factors of factor2.
 func solve2(a *[4]float64, piv *[2]int, x, b *[2]float64) {
-	x0 := b[piv[0]]
-	x1 := b[piv[1]] - a[2]*x0
-	x1 *= a[3]
-	x0 = (x0 - a[1]*x1) * a[0]
+	b0, b1 := b[piv[0]], b[piv[1]]
+	x1 := (b1 + a[2]*b0) * a[3]
+	x0 := b0*a[0] - a[1]*x1
 	x[0], x[1] = x0, x1
 }
 
-// solve3 is luSolve for n = 3.
+// solve3 solves with the factors of factor3.
 func solve3(a *[9]float64, piv *[3]int, x, b *[3]float64) {
-	x0 := b[piv[0]]
-	x1 := b[piv[1]] - a[3]*x0
-	x2 := b[piv[2]] - a[6]*x0 - a[7]*x1
-	x2 *= a[8]
-	x1 = (x1 - a[5]*x2) * a[4]
-	x0 = (x0 - a[2]*x2 - a[1]*x1) * a[0]
+	b0, b1, b2 := b[piv[0]], b[piv[1]], b[piv[2]]
+	y1 := b1 + a[3]*b0
+	x2 := (b2 + (a[6]*b0 + a[7]*b1)) * a[8]
+	x1 := y1*a[4] - a[5]*x2
+	x0 := (b0*a[0] - a[2]*x2) - a[1]*x1
 	x[0], x[1], x[2] = x0, x1, x2
 }
 
-// solve4 is luSolve for n = 4.
+// solve4 solves with the factors of factor4.
 func solve4(a *[16]float64, piv *[4]int, x, b *[4]float64) {
-	x0 := b[piv[0]]
-	x1 := b[piv[1]] - a[4]*x0
-	x2 := b[piv[2]] - a[8]*x0 - a[9]*x1
-	x3 := b[piv[3]] - a[12]*x0 - a[13]*x1 - a[14]*x2
-	x3 *= a[15]
-	x2 = (x2 - a[11]*x3) * a[10]
-	x1 = (x1 - a[7]*x3 - a[6]*x2) * a[5]
-	x0 = (x0 - a[3]*x3 - a[2]*x2 - a[1]*x1) * a[0]
+	b0, b1, b2, b3 := b[piv[0]], b[piv[1]], b[piv[2]], b[piv[3]]
+	y1 := b1 + a[4]*b0
+	y2 := b2 + (a[8]*b0 + a[9]*b1)
+	x3 := ((b3 + a[12]*b0) + (a[13]*b1 + a[14]*b2)) * a[15]
+	x2 := y2*a[10] - a[11]*x3
+	x1 := (y1*a[5] - a[7]*x3) - a[6]*x2
+	x0 := ((b0*a[0] - a[3]*x3) - a[2]*x2) - a[1]*x1
 	x[0], x[1], x[2], x[3] = x0, x1, x2, x3
 }
 
@@ -170,6 +172,22 @@ func solve8(a *[64]float64, piv *[8]int, x, b *[8]float64) {
 	x[0], x[1], x[2], x[3], x[4], x[5], x[6], x[7] = x0, x1, x2, x3, x4, x5, x6, x7
 }
 
+// factor2 is luFactor for n = 2.
+func factor2(a *[4]float64, piv *[2]int, rs *[2]float64) bool {
+	a00, a01, a10, a11 := a[0], a[1], a[2], a[3]
+	p0, p1 := 0, 1
+	if math.Abs(a10)*rs[1] > math.Abs(a00)*rs[0] {
+		a00, a01, p0, a10, a11, p1 = a10, a11, p1, a00, a01, p0
+	}
+	d0 := 1 / a00
+	a10 *= d0
+	d1 := 1 / (a11 - a10*a01)
+	a[0], a[1], a[2], a[3] = d0, a01*d0, -a10, d1
+	piv[0], piv[1] = p0, p1
+	z := 0*d0 + 0*d1
+	return z == 0 && d0 != 0 && d1 != 0
+}
+
 // factor3 is luFactor for n = 3.
 func factor3(a *[9]float64, piv *[3]int, rs *[3]float64) bool {
 	a00, a01, a02 := a[0], a[1], a[2]
@@ -211,12 +229,10 @@ func factor3(a *[9]float64, piv *[3]int, rs *[3]float64) bool {
 	a21 *= d1
 	a22 -= a21 * a12
 	d2 := 1 / a22
-	a[0], a[1], a[2] = d0, a01, a02
-	piv[0] = p0
-	a[3], a[4], a[5] = a10, d1, a12
-	piv[1] = p1
-	a[6], a[7], a[8] = a20, a21, d2
-	piv[2] = p2
+	a[0], a[1], a[2] = d0, a01*d0, a02*d0
+	a[3], a[4], a[5] = -a10, d1, a12*d1
+	a[6], a[7], a[8] = a21*a10-a20, -a21, d2
+	piv[0], piv[1], piv[2] = p0, p1, p2
 	// The inverse of a zero pivot is infinite, of an infinite one zero.
 	z := 0*d0 + 0*d1 + 0*d2
 	return z == 0 && d0 != 0 && d1 != 0 && d2 != 0
@@ -296,14 +312,12 @@ func factor4(a *[16]float64, piv *[4]int, rs *[4]float64) bool {
 	a32 *= d2
 	a33 -= a32 * a23
 	d3 := 1 / a33
-	a[0], a[1], a[2], a[3] = d0, a01, a02, a03
-	piv[0] = p0
-	a[4], a[5], a[6], a[7] = a10, d1, a12, a13
-	piv[1] = p1
-	a[8], a[9], a[10], a[11] = a20, a21, d2, a23
-	piv[2] = p2
-	a[12], a[13], a[14], a[15] = a30, a31, a32, d3
-	piv[3] = p3
+	m20, m31 := a21*a10-a20, a32*a21-a31
+	a[0], a[1], a[2], a[3] = d0, a01*d0, a02*d0, a03*d0
+	a[4], a[5], a[6], a[7] = -a10, d1, a12*d1, a13*d1
+	a[8], a[9], a[10], a[11] = m20, -a21, d2, a23*d2
+	a[12], a[13], a[14], a[15] = (a31*a10-a30)-a32*m20, m31, -a32, d3
+	piv[0], piv[1], piv[2], piv[3] = p0, p1, p2, p3
 	// The inverse of a zero pivot is infinite, of an infinite one zero.
 	z := 0*d0 + 0*d1 + 0*d2 + 0*d3
 	return z == 0 && d0 != 0 && d1 != 0 && d2 != 0 && d3 != 0
