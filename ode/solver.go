@@ -703,7 +703,7 @@ func (s *Solver) propose(h float64) float64 {
 			lf = lg
 		}
 	}
-	fac := roughExp(max(-2.302585092994046, min(lf, 1.6094379124341003))) // 1/10 to 5
+	fac := roughExp(max(-1.791759469228055, min(lf, 1.6094379124341003))) // 1/6 to 5
 	if s.rejectedLast && fac < 1 {
 		fac = 1
 	}
