@@ -2,18 +2,14 @@ package reports
 
 import (
 	"bytes"
-	"context"
 	"encoding/csv"
 	"encoding/json"
 	"io"
 	"math"
-	"os"
 	"path/filepath"
 	"strings"
 	"testing"
-	"time"
 
-	"github.com/chromedp/chromedp"
 	"github.com/mattn/go-runewidth"
 	"github.com/parquet-go/parquet-go"
 
@@ -195,53 +191,6 @@ func TestWhyFiles(t *testing.T) {
 			if strings.ContainsAny(text, "\x1b\u202e") || strings.Contains(text, "NaN") {
 				t.Errorf("%s: holds an escape, a mark of direction or NaN", name)
 			}
-		}
-	}
-}
-
-// The three pages are drawn in light and dark, on a desk and a phone, without a
-// word on the console, a request, or a sideways scroll; -shots keeps pictures.
-func TestWhyPictures(t *testing.T) {
-	all := renderings("")
-	for _, name := range []string{"explain.html", "map.html", "compare.html"} {
-		path := filepath.Join(t.TempDir(), name)
-		var page bytes.Buffer
-		if err := all[name](&page); err != nil {
-			t.Fatal(err)
-		}
-		if err := os.WriteFile(path, page.Bytes(), 0o666); err != nil {
-			t.Fatal(err)
-		}
-		for _, v := range []struct {
-			name          string
-			width, height int64
-			dark          bool
-		}{{"desktop", 1280, 800, false}, {"dark", 1280, 800, true}, {"phone", 390, 844, false}} {
-			b := openTab(t)
-			b.viewport(v.width, v.height, v.dark)
-			ctx, cancel := context.WithTimeout(b.ctx, 60*time.Second)
-			err := chromedp.Do(ctx, chromedp.Navigate("file://"+path), chromedp.WaitReady(chromedp.CSS("html[data-ready]")))
-			cancel()
-			if err != nil {
-				t.Fatalf("%s, %s: %v", name, v.name, err)
-			}
-			b.settle()
-			b.picture(strings.TrimSuffix(name, ".html")+"-"+v.name+".png", chromedp.FullScreenshot(100))
-			if w := eval[int64](b, `document.documentElement.scrollWidth`); w > v.width {
-				t.Errorf("%s, %s: the page is %d px wide", name, v.name, w)
-			}
-			// What is drawn without the script is there and has a size.
-			if name != "compare.html" {
-				if n := eval[int](b, `[...document.querySelectorAll("svg.chart path")].filter(p => p.getTotalLength() > 50).length`); n < 3 {
-					t.Errorf("%s, %s: %d paths are drawn", name, v.name, n)
-				}
-			}
-			if name != "map.html" {
-				if n := eval[int](b, `document.querySelectorAll(".plot path").length`); n < 10 {
-					t.Errorf("%s, %s: %d paths in the figures over time", name, v.name, n)
-				}
-			}
-			b.quiet()
 		}
 	}
 }
