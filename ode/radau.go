@@ -23,7 +23,8 @@ type radau struct {
 	pnum, pden []float64    // stability function, by rising powers
 
 	z, zPrev  []float64 // stage increments, stage-major; zPrev of the last accepted step
-	f, r, dw  []float64
+	w         []float64 // T⁻¹ z
+	f, dw     []float64
 	cr, cx    []complex128
 	lag       []float64
 	ez        []float64
@@ -209,7 +210,7 @@ func newRadau(s, n int) *radau {
 	}
 
 	r.z, r.zPrev = make([]float64, s*n), make([]float64, s*n)
-	r.f, r.r, r.dw = make([]float64, s*n), make([]float64, s*n), make([]float64, s*n)
+	r.f, r.w, r.dw = make([]float64, s*n), make([]float64, s*n), make([]float64, s*n)
 	r.cr, r.cx = make([]complex128, n), make([]complex128, n)
 	r.lag, r.ez = make([]float64, s), make([]float64, n)
 	r.lin = make([]csystem, (s-1)/2)
@@ -312,15 +313,15 @@ func (r *radau) logR(z complex128) float64 {
 // basis fills lag with the Lagrange polynomials of the nodes 0, c at th, for
 // the nodes c.
 func (r *radau) basis(lag []float64, th float64) {
-	s := r.s
-	for j := range s {
-		p := r.bary[j+1] * th
-		for m := range s {
-			if m != j {
-				p *= th - r.c[m]
-			}
-		}
-		lag[j] = p
+	p := th // of the factors before j, then after it
+	for j, c := range r.c {
+		lag[j] = p * r.bary[j+1]
+		p *= th - c
+	}
+	p = 1
+	for j := len(r.c) - 1; j >= 0; j-- {
+		lag[j] *= p
+		p *= th - r.c[j]
 	}
 }
 
@@ -366,6 +367,37 @@ func (s *Solver) radauInterpDiff(dst []float64, th float64) {
 	for j, l := range r.lag {
 		for k, z := range r.z[j*n : j*n+n] {
 			dst[k] += l * z
+		}
+	}
+}
+
+// mix forms dst_i = Σ_j m_ij src_j for ns vectors of n components.
+func mix(dst, m, src []float64, ns, n int) {
+	k := 0
+	for ; k+4 <= n; k += 4 {
+		for i := range ns {
+			var a0, a1, a2, a3 float64
+			at := k
+			for _, c := range m[i*ns : i*ns+ns] {
+				v := (*[4]float64)(src[at:])
+				a0 += c * v[0]
+				a1 += c * v[1]
+				a2 += c * v[2]
+				a3 += c * v[3]
+				at += n
+			}
+			*(*[4]float64)(dst[i*n+k:]) = [4]float64{a0, a1, a2, a3}
+		}
+	}
+	for ; k < n; k++ {
+		for i := range ns {
+			sum := 0.0
+			at := k
+			for _, c := range m[i*ns : i*ns+ns] {
+				sum += c * src[at]
+				at += n
+			}
+			dst[i*n+k] = sum
 		}
 	}
 }
@@ -420,8 +452,10 @@ func (s *Solver) radauTry(h, tEnd float64) outcome {
 				}
 			}
 		}
+		mix(r.w, r.ti, r.z, ns, n)
 	} else {
 		clear(r.z)
+		clear(r.w)
 	}
 	kappa := r.kappa
 	maxIt := 7 + 2*(ns-3)
@@ -459,39 +493,22 @@ func (s *Solver) radauTry(h, tEnd float64) outcome {
 				s.arg[k] = s.y[k] + zi[k]
 			}
 			s.stats.FuncEvals++
-			fi := r.f[i*n : i*n+n]
-			s.f(fi, ti, s.arg)
-			if !allFinite(fi) {
-				return outcomeNonFinite
-			}
+			s.f(r.f[i*n:i*n+n], ti, s.arg)
 		}
-		// Residual F − A⁻¹Z/h, then T⁻¹.
-		for i := range ns {
-			ri := r.r[i*n : i*n+n]
-			copy(ri, r.f[i*n:i*n+n])
-			for j := range ns {
-				a := r.ainv[i*ns+j] * hinv
-				for k, z := range r.z[j*n : j*n+n] {
-					ri[k] -= a * z
-				}
-			}
-		}
-		for i := range ns {
-			di := r.dw[i*n : i*n+n]
-			clear(di)
-			for j := range ns {
-				a := r.ti[i*ns+j]
-				for k, v := range r.r[j*n : j*n+n] {
-					di[k] += a * v
-				}
-			}
+		// Residual T⁻¹F − Λ W/h, with Λ = T⁻¹A⁻¹T.
+		mix(r.dw, r.ti, r.f, ns, n)
+		c := r.gamma * hinv
+		for k, v := range r.w[:n] {
+			r.dw[k] -= c * v
 		}
 		s.solve(s.sol, r.dw[:n])
 		copy(r.dw[:n], s.sol)
 		for p := range r.mu {
 			a, b := r.dw[(2*p+1)*n:(2*p+2)*n], r.dw[(2*p+2)*n:(2*p+3)*n]
+			wa, wb := r.w[(2*p+1)*n:(2*p+2)*n], r.w[(2*p+2)*n:(2*p+3)*n]
+			re, im := real(r.mu[p])*hinv, imag(r.mu[p])*hinv
 			for k := range n {
-				r.cr[k] = complex(a[k], b[k])
+				r.cr[k] = complex(a[k]-(re*wa[k]-im*wb[k]), b[k]-(re*wb[k]+im*wa[k]))
 			}
 			s.stats.Solves++
 			r.lin[p].solve(r.cx, r.cr)
@@ -499,18 +516,15 @@ func (s *Solver) radauTry(h, tEnd float64) outcome {
 				a[k], b[k] = real(r.cx[k]), imag(r.cx[k])
 			}
 		}
+		for k, v := range r.dw {
+			r.w[k] += v
+		}
+		// The correction of Z is T times that of W.
+		mix(r.f, r.t, r.dw, ns, n)
 		sum := 0.0
 		for i := range ns {
-			ri := r.r[i*n : i*n+n]
-			clear(ri)
-			for j := range ns {
-				a := r.t[i*ns+j]
-				for k, v := range r.dw[j*n : j*n+n] {
-					ri[k] += a * v
-				}
-			}
 			zi := r.z[i*n : i*n+n]
-			for k, v := range ri {
+			for k, v := range r.f[i*n : i*n+n] {
 				zi[k] += v
 				v *= wt[k]
 				sum += v * v
