@@ -9,6 +9,7 @@ import (
 	"cycle/carbon/outgas"
 	"cycle/carbon/record"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // pressures returns the CO₂ pressures, bar, between which the energy balance
@@ -23,7 +24,7 @@ func (m *Model) pressures() (lo, hi float64) {
 
 // imbalance returns (S/4)(1 − A) − F in W/m² for mean sunlight sun = S/4.
 func (m *Model) imbalance(sun, t, p float64) float64 {
-	return sun*(1-m.set.albedo.law.Planetary(t, p)) - m.set.radiation.law.Outgoing(t, p, math.Log(p))
+	return sun*(1-m.set.albedo.law.Planetary(t, p)) - m.set.radiation.law.Outgoing(t, p, elementary.Log(p))
 }
 
 // balance inverts the energy balance: the lowest CO₂ pressure in bar at which
@@ -31,8 +32,8 @@ func (m *Model) imbalance(sun, t, p float64) float64 {
 // least CO₂ is too warm, high that no CO₂ pressure is warm enough.
 func (m *Model) balance(sun, t float64) (p float64, low, high bool) {
 	lo, hi := m.pressures()
-	x0, x1 := math.Log(lo), math.Log(hi)
-	g := func(x float64) float64 { return m.imbalance(sun, t, math.Exp(x)) }
+	x0, x1 := elementary.Log(lo), elementary.Log(hi)
+	g := func(x float64) float64 { return m.imbalance(sun, t, elementary.Exp(x)) }
 	const parts = 16
 	a, ga := x0, g(x0)
 	if ga > 0 {
@@ -42,7 +43,7 @@ func (m *Model) balance(sun, t float64) (p float64, low, high bool) {
 		b := x0 + (x1-x0)*float64(i)/parts
 		gb := g(b)
 		if gb > 0 {
-			return math.Exp(bracketed(g, a, b, ga, gb, 1e-13)), false, false
+			return elementary.Exp(bracketed(g, a, b, ga, gb, 1e-13)), false, false
 		}
 		a, ga = b, gb
 	}
@@ -53,10 +54,10 @@ func (m *Model) balance(sun, t float64) (p float64, low, high bool) {
 // logarithm; it finds the same root while that moves by less than 0.3.
 func (m *Model) balanceNear(sun, t, near float64) (p float64, low, high bool) {
 	lo, hi := m.pressures()
-	g := func(x float64) float64 { return m.imbalance(sun, t, math.Exp(x)) }
-	if a, b := near-0.3, near+0.3; a > math.Log(lo) && b < math.Log(hi) && m.imbalance(sun, t, lo) <= 0 {
+	g := func(x float64) float64 { return m.imbalance(sun, t, elementary.Exp(x)) }
+	if a, b := near-0.3, near+0.3; a > elementary.Log(lo) && b < elementary.Log(hi) && m.imbalance(sun, t, lo) <= 0 {
 		if ga, gb := g(a), g(b); ga <= 0 && gb > 0 {
-			return math.Exp(bracketed(g, a, b, ga, gb, 1e-13)), false, false
+			return elementary.Exp(bracketed(g, a, b, ga, gb, 1e-13)), false, false
 		}
 	}
 	return m.balance(sun, t)
@@ -137,7 +138,7 @@ func (m *Model) steadyWith(d *memo, t, p float64) (s steady) {
 	r.Albedo = m.set.albedo.law.Planetary(t, p)
 	r.Ice = m.set.albedo.law.IceFraction(t)
 	c, alk := m.carbonAt(p, t, m.ref.Total()*m.area)
-	lnp := math.Log(p)
+	lnp := elementary.Log(p)
 	_, lnh := m.set.ocean.law.Pressure(c, alk, t)
 	m.weather(r, lnp, lnh)
 	if m.pair != nil {
@@ -195,7 +196,7 @@ func (m *Model) coldFold(d *memo, t float64) (fold float64, ok bool) {
 // temperature inside the radiation law's box.
 func (m *Model) radiationLimit(t, p float64) float64 {
 	top := m.top()
-	lnp := math.Log(p)
+	lnp := elementary.Log(p)
 	at := func(x float64) float64 {
 		return 4 * m.set.radiation.law.Outgoing(x, p, lnp) / (1 - m.set.albedo.law.Planetary(x, p))
 	}
@@ -273,7 +274,7 @@ func (m *Model) start() (y State, words string) {
 		if low || high {
 			return State{}, 0, 0, false
 		}
-		near = math.Log(p)
+		near = elementary.Log(p)
 		st := m.steadyWith(d, t, p)
 		z, r := fill(&st)
 		return z, r, st.grow, true
@@ -406,7 +407,7 @@ func (m *Model) strength(age float64, y State) strength {
 		var r record.Row
 		m.diagnose(&r, age, &z)
 		w := r.Land + r.Seafloor
-		return rates{r.Absorbed - r.Outgoing, r.Imbalance, 2 * (w - r.Burial), math.Log(w), math.Log(r.PCO2)}
+		return rates{r.Absorbed - r.Outgoing, r.Imbalance, 2 * (w - r.Burial), elementary.Log(w), elementary.Log(r.PCO2)}
 	}
 	// Slopes by central differences, carbon and alkalinity by their logarithms.
 	const step = 1e-4

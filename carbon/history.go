@@ -10,6 +10,7 @@ import (
 	"cycle/carbon/units"
 	"cycle/carbon/weathering"
 	"cycle/ode"
+	"cycle/ode/elementary"
 )
 
 // Reasons for which a history ends.
@@ -182,7 +183,7 @@ func (l *lookup) pressure(y []float64) float64 {
 	}
 	if l.t != t || l.c != c || l.alk != alk {
 		p, _ := l.m.set.ocean.law.Pressure(present(c), alk, t)
-		l.t, l.c, l.alk, l.lnp = t, c, alk, math.Log(p)
+		l.t, l.c, l.alk, l.lnp = t, c, alk, elementary.Log(p)
 	}
 	return l.lnp
 }
@@ -192,7 +193,7 @@ func (l *lookup) supplyUse(age float64, y []float64) float64 {
 	m := l.m
 	s := m.set
 	lnp := l.pressure(y)
-	t, p := y[0], math.Exp(lnp)
+	t, p := y[0], elementary.Exp(lnp)
 	env := &m.env
 	*env = weathering.Env{Age: age, T: t, P: p, LnP: lnp - m.lnP0}
 	if s.supply.Limit == 0 {
@@ -236,7 +237,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 		if !stated {
 			return func(float64, []float64) float64 { return -1 }
 		}
-		ln := math.Log(target)
+		ln := elementary.Log(target)
 		return func(_ float64, y []float64) float64 { return look.pressure(y) - ln }
 	}
 	below := func(x float64, stated bool) func(float64, []float64) float64 {
@@ -269,7 +270,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 	events[evCold] = ode.Event{Name: "cold edge", Func: below(box.T.Lo, box.T.Stated()), Direction: ode.Falling, Terminal: 1}
 	events[evDense] = ode.Event{Name: "dense edge", Func: limit(box.P.Hi, box.P.Stated()), Direction: ode.Rising, Terminal: 1}
 	events[evCondense] = ode.Event{Name: record.MarkCondensation, Direction: ode.Rising, Terminal: 1, Func: func(_ float64, y []float64) float64 {
-		return look.pressure(y) - math.Log(condense(y[0]-s.ColdContrast))
+		return look.pressure(y) - elementary.Log(condense(y[0]-s.ColdContrast))
 	}}
 
 	events[evSupply] = ode.Event{Name: record.MarkSupply, Direction: ode.Rising, Func: func(t float64, y []float64) float64 {
@@ -314,7 +315,7 @@ func (m *Model) integrate(ctx context.Context, until, rtol float64, full bool) (
 		works := m.memo.flow.Dynamo
 		if n := len(h.rows); n > 0 && !force {
 			l := &h.rows[n-1]
-			if math.Abs(r.Temperature-l.Temperature) < 0.05 && math.Abs(math.Log(r.PCO2/l.PCO2)) < 0.01 && t-l.Age < 10*units.Myr {
+			if math.Abs(r.Temperature-l.Temperature) < 0.05 && math.Abs(elementary.Log(r.PCO2/l.PCO2)) < 0.01 && t-l.Age < 10*units.Myr {
 				return
 			}
 		}
@@ -487,13 +488,13 @@ func (m *Model) anchor(ctx context.Context, rtol float64) (residual float64, err
 	x0 := *knob
 	const far = 50
 	shoot := func(x float64) (float64, error) {
-		*knob = x0 * math.Exp(x)
+		*knob = x0 * elementary.Exp(x)
 		h, err := m.integrate(ctx, math.Min(s.End, s.RefAge*(1+1e-9)), rtol, false)
 		switch {
 		case err != nil:
 			return 0, err
 		case h.hasRef && h.atRef.T > s.FrozenBelow:
-			return math.Log(s.ocean.law.Solve(present(h.atRef.Surface), h.atRef.Alk, h.atRef.T).P / s.RefP), nil
+			return elementary.Log(s.ocean.law.Solve(present(h.atRef.Surface), h.atRef.Alk, h.atRef.T).P / s.RefP), nil
 		case h.hasRef || h.reason == endCondense || h.reason == endCold || h.reason == endFreezes:
 			return -far, nil // frozen: too little
 		case h.reason == endSolver:
@@ -516,7 +517,7 @@ func (m *Model) anchor(ctx context.Context, rtol float64) (residual float64, err
 	for fa*fb > 0 {
 		a, fa = b, fb
 		b -= math.Copysign(step, fa)
-		if math.Abs(b) > math.Log(300) {
+		if math.Abs(b) > elementary.Log(300) {
 			return fb, &SetupError{key: "carbon.solve", Reason: fmt.Sprintf("no value within a factor of 300 of the start brings the history through %s at %s; at the last one tried it misses by ln(p/p0) = %.2g", units.Pressure.Format(s.RefP, "ppm"), units.Time.Format(s.RefAge, "Gyr"), fb)}
 		}
 		if fb, err = shoot(b); err != nil {

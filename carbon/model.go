@@ -12,6 +12,7 @@ import (
 	"cycle/carbon/star"
 	"cycle/carbon/units"
 	"cycle/carbon/weathering"
+	"cycle/ode/elementary"
 )
 
 // A SetupError names the key whose value cannot stand.
@@ -121,13 +122,13 @@ func (m *Model) breathe(t, c, alk float64) *air {
 		var h, omega float64
 		a.p, h, omega = m.pair.Balance(present(c), alk, t)
 		if m.acidic {
-			a.lnh = math.Log(h)
+			a.lnh = elementary.Log(h)
 		}
 		a.precipitation = m.pair.Precipitation(omega)
 	} else {
 		a.p, a.lnh = s.ocean.law.Pressure(present(c), alk, t)
 	}
-	a.lnp = math.Log(a.p)
+	a.lnp = elementary.Log(a.p)
 	a.albedo = s.albedo.law.Planetary(t, a.p)
 	a.ice = s.albedo.law.IceFraction(t)
 	a.out = s.radiation.law.Outgoing(t, a.p, a.lnp)
@@ -217,7 +218,7 @@ func NewModel(s *Setup) (*Model, error) {
 
 	m.ref = s.reference()
 	m.deposited = m.ref.Deposited()
-	m.lnP0 = math.Log(s.RefP)
+	m.lnP0 = elementary.Log(s.RefP)
 	sun := s.RefSun / 4
 
 	cref := climate.Reference{T: s.RefT, P: s.RefP, Sun: sun}
@@ -273,7 +274,7 @@ func NewModel(s *Setup) (*Model, error) {
 	m.iceNorm = [2]float64{1 / (1 - (1-s.LandIce)*ice), 1 / (1 - (1-s.SeafloorIce)*ice)}
 	m.limNorm = (s.RefP + s.Limiter) / s.RefP
 	c, alk := m.carbonAt(s.RefP, s.RefT, s.OutgassingRef*m.area)
-	m.lnH0 = math.Log(s.ocean.law.Solve(c, alk, s.RefT).H)
+	m.lnH0 = elementary.Log(s.ocean.law.Solve(c, alk, s.RefT).H)
 	return m, nil
 }
 
@@ -304,7 +305,7 @@ func (m *Model) carbonAt(p, t, flux float64) (c, alk float64) {
 		keep := l.Omega
 		// The inverse of the precipitation law, by its own normalisation.
 		unit := l.Precipitation(2)
-		l.Omega = 1 + math.Exp(math.Log(math.Max(flux, 1)/unit)/l.Order)
+		l.Omega = 1 + elementary.Exp(elementary.Log(math.Max(flux, 1)/unit)/l.Order)
 		c, alk = l.Carbon(p, t)
 		l.Omega = keep
 		return c, alk
@@ -321,7 +322,7 @@ func (p *Step) at(age float64) float64 {
 		return p.After
 	}
 	// ½(1 + tanh x) = 1/(1 + e^(−2x))
-	return p.Before + (p.After-p.Before)/(1+math.Exp(-2*(age-p.Middle)/p.Width))
+	return p.Before + (p.After-p.Before)/(1+elementary.Exp(-2*(age-p.Middle)/p.Width))
 }
 
 // during tells whether a pulse is on.

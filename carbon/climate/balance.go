@@ -5,12 +5,14 @@ import (
 	"math"
 
 	"gonum.org/v1/gonum/diff/fd"
+
+	"cycle/ode/elementary"
 )
 
 // Imbalance returns Q (1 − A) − F in W/m² at mean sunlight Q = S/4, temperature
 // t in K and CO₂ pressure p in bar.
 func Imbalance(r Radiation, a Albedo, sun, t, p float64) float64 {
-	return sun*(1-a.Planetary(t, p)) - r.Outgoing(t, p, math.Log(p))
+	return sun*(1-a.Planetary(t, p)) - r.Outgoing(t, p, elementary.Log(p))
 }
 
 // SolveFree sets the free number of a so that the reference state is in
@@ -32,7 +34,7 @@ func SolveFree(r Radiation, a Albedo, ref Reference) (residual float64, err erro
 	lo, hi := allowed.Lo, allowed.Hi
 	fLo, fHi := at(lo), at(hi)
 	if !(fLo*fHi <= 0) { // also when one is not a number
-		out := r.Outgoing(ref.T, ref.P, math.Log(ref.P))
+		out := r.Outgoing(ref.T, ref.P, elementary.Log(ref.P))
 		aLo, aHi := 1-(fLo+out)/ref.Sun, 1-(fHi+out)/ref.Sun
 		*free = before
 		return fLo, fmt.Errorf("the reference state cannot balance: it emits %.1f W/m² at %.2f K and %.3g bar of CO2 and receives %.1f W/m² of sunlight, which needs a planetary albedo of %.3f; the %s between %g and %g gives %.3f to %.3f",
@@ -58,7 +60,7 @@ func SolveFree(r Radiation, a Albedo, ref Reference) (residual float64, err erro
 // Forcing returns by how much a doubling of CO₂ from the reference state lowers
 // the outgoing radiation, in W/m².
 func Forcing(r Radiation, ref Reference) float64 {
-	lnp := math.Log(ref.P)
+	lnp := elementary.Log(ref.P)
 	return r.Outgoing(ref.T, ref.P, lnp) - r.Outgoing(ref.T, 2*ref.P, lnp+math.Ln2)
 }
 

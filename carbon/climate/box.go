@@ -1,9 +1,8 @@
 package climate
 
 import (
-	"math"
-
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // HoldT returns t moved to the nearest end of the box and whether it had to move.
@@ -32,7 +31,7 @@ type edges struct {
 }
 
 func newEdges(tLo, tHi, pLo, pHi float64) edges {
-	return edges{Box{T: units.Range{Lo: tLo, Hi: tHi}, P: units.Range{Lo: pLo, Hi: pHi}}, math.Log(pLo), math.Log(pHi)}
+	return edges{Box{T: units.Range{Lo: tLo, Hi: tHi}, P: units.Range{Lo: pLo, Hi: pHi}}, elementary.Log(pLo), elementary.Log(pHi)}
 }
 
 // hold moves a state to the nearest point of the box.

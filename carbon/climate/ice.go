@@ -1,10 +1,9 @@
 package climate
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // iceEdge is the share of the surface under ice as a smooth ramp of the global
@@ -20,7 +19,7 @@ var defaultIceEdge = iceEdge{Centre: 263, Width: 10}
 // IceFraction returns the share of the surface under ice.
 func (e *iceEdge) IceFraction(t float64) float64 {
 	// ½(1 − tanh x) = 1/(1 + e^2x)
-	return 1 / (1 + math.Exp(2*(t-e.Centre)/e.Width))
+	return 1 / (1 + elementary.Exp(2*(t-e.Centre)/e.Width))
 }
 
 func (e *iceEdge) fields() []units.Field {

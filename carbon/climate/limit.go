@@ -1,9 +1,8 @@
 package climate
 
 import (
-	"math"
-
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // SteamFlux is the outgoing radiation in W/m² of a grey stratosphere above a
@@ -18,7 +17,7 @@ import (
 // limits of full radiation models, 282 W/m² (Goldblatt et al. 2013) to about 310
 // (Kasting 1988).
 func SteamFlux(t, kappa, gravity float64) float64 {
-	tau := kappa * 1.4e11 * math.Exp(-43655/(8.314*t)) / gravity
+	tau := kappa * 1.4e11 * elementary.Exp(-43655/(8.314*t)) / gravity
 	t *= t
 	return 2 * units.Sigma * t * t / (1 + 1.5*tau)
 }

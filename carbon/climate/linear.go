@@ -1,10 +1,9 @@
 package climate
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Linear is the linear law of Budyko (1969) and North (1975) with a CO₂ forcing,
@@ -72,7 +71,7 @@ func softMin(a, b, w float64) float64 {
 	case d < -40:
 		return b
 	}
-	return b - w*math.Log1p(math.Exp(d))
+	return b - w*elementary.Log(1+elementary.Exp(d))
 }
 
 // Bind fixes the box.

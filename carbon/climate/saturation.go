@@ -5,6 +5,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Triple and critical points of water and CO₂.
@@ -41,7 +42,7 @@ func WaterLiquid(t float64) float64 {
 		v3 := v * v * v
 		f += v * (1.84408259*s + v*v*(-11.7866497+22.6807411*s-15.9618719*v+1.80122502*v3*v*s))
 	}
-	return WaterCriticalP * math.Exp(WaterCriticalT/t*f)
+	return WaterCriticalP * elementary.Exp(WaterCriticalT/t*f)
 }
 
 // WaterIce returns the saturation pressure in bar of water over ice at T in K
@@ -49,7 +50,7 @@ func WaterLiquid(t float64) float64 {
 //
 //	p = exp(9.550426 − 5723.265/T + 3.53068 ln T − 0.00728332 T) Pa
 func WaterIce(t float64) float64 {
-	return pascal * math.Exp(9.550426-5723.265/t+3.53068*math.Log(t)-0.00728332*t)
+	return pascal * elementary.Exp(9.550426-5723.265/t+3.53068*elementary.Log(t)-0.00728332*t)
 }
 
 // WaterPressure returns the saturation pressure in bar of water at T in K: over
@@ -99,21 +100,21 @@ func BoilingPoint(p float64) float64 {
 	}
 	// ln p is nearly straight in 1/T: Newton's method from the Clausius-Clapeyron
 	// relation, kept inside its bracket.
-	lnp := math.Log(p)
+	lnp := elementary.Log(p)
 	lo, hi := coldest, WaterCriticalT
-	t := 1 / (1/373.1243 - (lnp-math.Log(units.BarPerAtm))/4890)
+	t := 1 / (1/373.1243 - (lnp-elementary.Log(units.BarPerAtm))/4890)
 	for i := 0; i < 60; i++ {
 		if !(t > lo && t < hi) {
 			t = (lo + hi) / 2
 		}
-		f := math.Log(WaterPressure(t)) - lnp
+		f := elementary.Log(WaterPressure(t)) - lnp
 		if f > 0 {
 			hi = t
 		} else {
 			lo = t
 		}
 		const h = 1e-3
-		slope := (math.Log(WaterPressure(t+h)) - math.Log(WaterPressure(t-h))) / (2 * h)
+		slope := (elementary.Log(WaterPressure(t+h)) - elementary.Log(WaterPressure(t-h))) / (2 * h)
 		step := f / slope
 		t -= step
 		if math.Abs(step) < 1e-11*t {
@@ -148,16 +149,16 @@ func co2Liquid(t float64) float64 {
 	if v > 0 {
 		f += v * (1.9391218*math.Sqrt(v) + v*(-1.6463597-3.2995634*v*v))
 	}
-	return CO2CriticalP * math.Exp(CO2CriticalT/t*f)
+	return CO2CriticalP * elementary.Exp(CO2CriticalT/t*f)
 }
 
 func co2Ice(t float64) float64 {
 	s := 1 - t/CO2TripleT
 	f := -14.740846 * s
 	if s > 0 {
-		f += math.Exp(1.9*math.Log(s)) * (2.4327015 - 5.3061778*s)
+		f += elementary.Exp(1.9*elementary.Log(s)) * (2.4327015 - 5.3061778*s)
 	}
-	return CO2TripleP * math.Exp(CO2TripleT/t*f)
+	return CO2TripleP * elementary.Exp(CO2TripleT/t*f)
 }
 
 // CO2Kasting1991 returns the saturation pressure in bar of CO₂ at T in K as used
@@ -180,13 +181,13 @@ func CO2Kasting1991(t float64) float64 {
 }
 
 func kastingIce(t float64) float64 {
-	return units.BarPerAtm * math.Exp(math.Ln10*(6.760956-1284.07/(t-4.718)+1.256e-4*(t-143.15)))
+	return units.BarPerAtm * elementary.Exp(math.Ln10*(6.760956-1284.07/(t-4.718)+1.256e-4*(t-143.15)))
 }
 
 func kastingLiquid(t float64) float64 {
 	x := math.Min(t, CO2CriticalT)
 	log := 3.128082 - 867.2124/x + x*(1.865612e-2+x*(-7.248820e-5+x*9.3e-8))
-	return units.BarPerAtm * math.Exp(math.Ln10*log+carbonVapourSlope*(1-CO2CriticalT/math.Max(t, CO2CriticalT)))
+	return units.BarPerAtm * elementary.Exp(math.Ln10*log+carbonVapourSlope*(1-CO2CriticalT/math.Max(t, CO2CriticalT)))
 }
 
 // CondensationEntry is one row of the table of CO₂ saturation laws.

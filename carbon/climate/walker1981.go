@@ -1,10 +1,9 @@
 package climate
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Walker1981 is the greenhouse formula of Walker, Hays & Kasting (1981), solved
@@ -34,7 +33,7 @@ const ln280ppm = -8.180720954795024
 // Outgoing returns F in W/m².
 func (l *Walker1981) Outgoing(t, _, lnp float64) float64 {
 	t, lnp = walkerBox.hold(t, lnp)
-	te := (t + 226.4 - 4.6*math.Exp(l.N*(lnp-ln280ppm))) / 2
+	te := (t + 226.4 - 4.6*elementary.Exp(l.N*(lnp-ln280ppm))) / 2
 	te *= te
 	return units.Sigma * te * te
 }

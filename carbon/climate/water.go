@@ -5,6 +5,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // EscapeCoefficient is the constant of diffusion-limited escape from the Earth in
@@ -57,7 +58,7 @@ func NewStratosphere() *Stratosphere { return &Stratosphere{T: 340, F: 3e-3, Wid
 func (s *Stratosphere) Mixing(t, dry float64) float64 {
 	e := WaterPressure(t)
 	// The exponent is bounded so that no factor overflows.
-	x := s.F * math.Exp(math.Min((t-s.T)/s.Width, 300))
+	x := s.F * elementary.Exp(math.Min((t-s.T)/s.Width, 300))
 	q := e / (e + math.Max(dry, 0))
 	return x * q / (x + q)
 }

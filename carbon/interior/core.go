@@ -6,6 +6,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // core is an optional core that cools into the mantle: an indicator of the
@@ -71,7 +72,7 @@ func (c *core) bind(p *Planet, beta, tRef, geometry float64) error {
 func (c *core) flow(mantle, tc float64) (q, rate float64, dynamo bool) {
 	x := (tc - mantle) / c.Excess
 	if x != 0 {
-		q = c.scale * x * math.Exp(c.beta*math.Log(math.Abs(x)))
+		q = c.scale * x * elementary.Exp(c.beta*elementary.Log(math.Abs(x)))
 	}
 	return q, c.cooling * q, q > c.adiabat*tc
 }

@@ -6,6 +6,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // mantle is what the laws of convection share: heat sources, heat capacity
@@ -91,7 +92,7 @@ func newPlates() Law { return &Plates{mantle: newMantle(), M: 1, core: newCore()
 
 // Flow evaluates the law.
 func (l *Plates) Flow(age, tm, tc float64) Flow {
-	rel := math.Exp((1+l.Beta)*(math.Log(tm-l.Surface)-l.lnDT) - l.Beta*l.lnViscosity(tm))
+	rel := elementary.Exp((1+l.Beta)*(elementary.Log(tm-l.Surface)-l.lnDT) - l.Beta*l.lnViscosity(tm))
 	f := Flow{Heat: l.flow * rel, Radiogenic: l.at(age), Relative: l.geometry * rel}
 	if l.core.Flow != 0 {
 		f.Core, f.CoreRate, f.Dynamo = l.core.flow(tm, tc)
@@ -99,7 +100,7 @@ func (l *Plates) Flow(age, tm, tc float64) Flow {
 	f.MantleRate = l.warming * (f.Radiogenic + f.Core - f.Heat)
 	f.Crust = f.Relative
 	if l.M != 1 {
-		f.Crust = math.Exp(l.M * math.Log(f.Relative))
+		f.Crust = elementary.Exp(l.M * elementary.Log(f.Relative))
 	}
 	f.Recycling = f.Crust
 	return f
@@ -119,7 +120,7 @@ func (l *Plates) Bind(p Planet, referenceAge float64) error {
 	if err := l.mantle.bind(&p, referenceAge); err != nil {
 		return err
 	}
-	l.lnDT = math.Log(l.TRef - l.Surface)
+	l.lnDT = elementary.Log(l.TRef - l.Surface)
 	l.flow = l.QRef * l.area * l.geometry
 	return l.core.bind(&p, l.Beta, l.TRef, l.geometry)
 }

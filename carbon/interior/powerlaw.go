@@ -1,10 +1,9 @@
 package interior
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // prescribed is what the laws share that prescribe the heat flow instead of
@@ -34,7 +33,7 @@ func (l *prescribed) bind(p *Planet) { l.area = p.Area / earth.Area }
 func (l *prescribed) flow(rel float64) Flow {
 	s := rel
 	if l.M != 1 {
-		s = math.Exp(l.M * math.Log(rel))
+		s = elementary.Exp(l.M * elementary.Log(rel))
 	}
 	return Flow{Heat: l.QRef * l.area * rel, Relative: rel, Crust: s, Recycling: s}
 }
@@ -73,7 +72,7 @@ const (
 // Flow evaluates the law; the temperatures do not matter.
 func (l *PowerLaw) Flow(age, _, _ float64) Flow {
 	base := -hold(-(1 - (l.reference-age)/powerSpan), -powerFloor, powerFix)
-	return l.flow(math.Exp(-l.N * math.Log(base)))
+	return l.flow(elementary.Exp(-l.N * elementary.Log(base)))
 }
 
 // Fields lists n, Q_ref and m.

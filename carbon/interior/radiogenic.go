@@ -1,6 +1,10 @@
 package interior
 
-import "math"
+import (
+	"math"
+
+	"cycle/ode/elementary"
+)
 
 // isotope is one heat source: h C is its heating per mass of mantle today.
 type isotope struct {
@@ -64,7 +68,7 @@ func (s *sources) bind(w, factor, mass, now float64) {
 		}
 		for _, i := range table {
 			s.rate[s.n] = math.Ln2 / i.halfLife
-			s.weight[s.n] = share * factor * mass * i.power * i.content * math.Exp(now*s.rate[s.n])
+			s.weight[s.n] = share * factor * mass * i.power * i.content * elementary.Exp(now*s.rate[s.n])
 			s.n++
 		}
 	}
@@ -79,7 +83,7 @@ func (s *sources) at(age float64) float64 {
 	}
 	var h float64
 	for i := range s.n {
-		h += s.weight[i] * math.Exp(-s.rate[i]*age)
+		h += s.weight[i] * elementary.Exp(-s.rate[i]*age)
 	}
 	s.age, s.heat = age, h
 	return h

@@ -6,6 +6,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Stagnant is a one-plate planet. Only the lowest part of the lid takes part in
@@ -68,7 +69,7 @@ func newStagnant() Law {
 // Flow evaluates the law.
 func (l *Stagnant) Flow(age, tm, tc float64) Flow {
 	rh := tm * tm / l.theta // ΔT_rh
-	q := l.flow * math.Exp((1+l.Beta)*(math.Log(rh)-l.lnDT)-l.Beta*l.lnViscosity(tm))
+	q := l.flow * elementary.Exp((1+l.Beta)*(elementary.Log(rh)-l.lnDT)-l.Beta*l.lnViscosity(tm))
 	f := Flow{Radiogenic: l.at(age)}
 	f.Crust = l.crust * q / rh * l.column(tm, l.lid*(tm-rh-l.Surface)/q)
 	f.Heat = q + l.melt*f.Crust*(l.Latent+l.C*(tm-l.Surface))
@@ -113,7 +114,7 @@ func (l *Stagnant) Bind(p Planet, referenceAge float64) error {
 		return err
 	}
 	dT := l.TRef - l.Surface
-	l.lnDT = math.Log(dT)
+	l.lnDT = elementary.Log(dT)
 	l.flow = l.C1 * math.Pow(l.RaC, l.Beta) * l.QRef * l.area * l.geometry
 	l.lid = 1e-9 * l.Rho * p.Gravity * l.K * p.Area
 	l.melting = melting{slope: 1e9 * l.Alpha / (l.Rho * l.C), latent: l.Latent / l.C}

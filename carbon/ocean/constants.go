@@ -5,6 +5,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Constants are the equilibrium constants of seawater at one temperature, in
@@ -150,15 +151,15 @@ func (w *Seawater) constants(t float64) *Constants {
 	if k := w.kept.at(t); k != nil {
 		return k
 	}
-	inv, lnT := 1/t, math.Log(t)
+	inv, lnT := 1/t, elementary.Log(t)
 	k := w.kept.next(t)
 	*k = Constants{
-		K0:      math.Exp(w.lnK0.at(t, inv, lnT)),
-		K1:      math.Exp(w.lnK1.at(t, inv, lnT)),
-		K2:      math.Exp(w.lnK2.at(t, inv, lnT)),
-		KB:      math.Exp(w.lnKB.at(t, inv, lnT)),
-		KW:      math.Exp(w.lnKW.at(t, inv, lnT)),
-		Calcite: math.Exp(w.lnCalcite.at(t, inv, lnT)),
+		K0:      elementary.Exp(w.lnK0.at(t, inv, lnT)),
+		K1:      elementary.Exp(w.lnK1.at(t, inv, lnT)),
+		K2:      elementary.Exp(w.lnK2.at(t, inv, lnT)),
+		KB:      elementary.Exp(w.lnKB.at(t, inv, lnT)),
+		KW:      elementary.Exp(w.lnKW.at(t, inv, lnT)),
+		Calcite: elementary.Exp(w.lnCalcite.at(t, inv, lnT)),
 	}
 	return k
 }
@@ -166,7 +167,7 @@ func (w *Seawater) constants(t float64) *Constants {
 // Aragonite returns the solubility product of aragonite in mol²/kg².
 func (w *Seawater) Aragonite(t float64) float64 {
 	t = Held(t)
-	return math.Exp(w.lnAragonite.at(t, 1/t, math.Log(t)))
+	return elementary.Exp(w.lnAragonite.at(t, 1/t, elementary.Log(t)))
 }
 
 // lnK0 is the solubility of CO₂ (Weiss 1974), K0 in mol/kg/atm:

@@ -5,6 +5,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Fraction divides surface carbon without chemistry: the atmosphere holds the
@@ -53,12 +54,12 @@ func (l *Fraction) Pressure(c, _, t float64) (p, lnH float64) {
 	t = Held(t)
 	k := l.acid.at(t)
 	if k == nil {
-		inv, lnT := 1/t, math.Log(t)
+		inv, lnT := 1/t, elementary.Log(t)
 		k = l.acid.next(t)
-		*k = acid{math.Exp(l.lnK0.at(t, inv, lnT)), math.Exp(l.lnK1.at(t, inv, lnT)), math.Exp(l.lnK2.at(t, inv, lnT))}
+		*k = acid{elementary.Exp(l.lnK0.at(t, inv, lnT)), elementary.Exp(l.lnK1.at(t, inv, lnT)), elementary.Exp(l.lnK2.at(t, inv, lnT))}
 	}
 	p = l.P0 * x
-	return p, math.Log(l.hydrogen(x, k.k0/units.BarPerAtm*p, k.k1, k.k2))
+	return p, elementary.Log(l.hydrogen(x, k.k0/units.BarPerAtm*p, k.k1, k.k2))
 }
 
 // acid is what [H⁺] depends on at one temperature.
@@ -83,20 +84,20 @@ func (l *Fraction) hydrogen(x, co2, k1, k2 float64) float64 {
 // invert solves φ x + (1 − φ) x^(1/k) = y by Newton's method in ln x, where
 // ln of the left side is convex with a slope between 1/k and 1.
 func (l *Fraction) invert(y float64) float64 {
-	lnY, inv := math.Log(y), 1/l.K
+	lnY, inv := elementary.Log(y), 1/l.K
 	u := lnY
 	if u < 0 {
 		u *= l.K
 	}
 	for range 100 {
-		a, b := l.Share*math.Exp(u), (1-l.Share)*math.Exp(u*inv)
-		step := (math.Log(a+b) - lnY) * (a + b) / (a + b*inv)
+		a, b := l.Share*elementary.Exp(u), (1-l.Share)*elementary.Exp(u*inv)
+		step := (elementary.Log(a+b) - lnY) * (a + b) / (a + b*inv)
 		u -= step
 		if math.Abs(step) < 1e-9 {
 			break
 		}
 	}
-	return math.Exp(u)
+	return elementary.Exp(u)
 }
 
 // root returns x^(1/k).
@@ -104,7 +105,7 @@ func (l *Fraction) root(x float64) float64 {
 	if l.K == 1 {
 		return x
 	}
-	return math.Exp(math.Log(x) / l.K)
+	return elementary.Exp(elementary.Log(x) / l.K)
 }
 
 // state returns the chemistry implied at x = p/p₀.

@@ -6,6 +6,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Precipitator is a law that knows how fast carbonate leaves the ocean.
@@ -63,7 +64,7 @@ func (l *Pair) dissolved(k *Constants, c, alk float64) (h, co2 float64) {
 // Pressure returns P and ln h.
 func (l *Pair) Pressure(c, alk, t float64) (p, lnH float64) {
 	p, h, _ := l.Balance(c, alk, t)
-	return p, math.Log(h)
+	return p, elementary.Log(h)
 }
 
 // Balance returns P, h and Ω.
@@ -127,7 +128,7 @@ func grow(x float64) float64 {
 	if math.Abs(x) < 0.03 {
 		return 1 + x*(1+x*(1./2+x*(1./6+x*(1./24+x*(1./120+x*(1./720+x*(1./5040)))))))
 	}
-	return math.Exp(x)
+	return elementary.Exp(x)
 }
 
 // guess solves the balance without boron and water, a quadratic in h:
@@ -170,7 +171,7 @@ func (l *Pair) Precipitation(omega float64) float64 {
 func power(x, nu float64) float64 {
 	n := 4 * nu
 	if n != math.Trunc(n) {
-		return math.Exp(nu * math.Log(x))
+		return elementary.Exp(nu * elementary.Log(x))
 	}
 	root := math.Sqrt(math.Sqrt(x))
 	y := 1.0
@@ -203,7 +204,7 @@ func (l *Pair) Bind(p Planet) error {
 	}
 	l.Seawater.Bind()
 	l.n, l.m = MolesPerBar(p), p.Mass
-	l.rate = l.Flux * p.Area / units.EarthArea * math.Exp(-l.Order*math.Log(l.Omega-1))
+	l.rate = l.Flux * p.Area / units.EarthArea * elementary.Exp(-l.Order*elementary.Log(l.Omega-1))
 	return nil
 }
 

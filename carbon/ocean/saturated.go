@@ -5,6 +5,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Saturated is an ocean that keeps a fixed saturation Ω with calcite, so that
@@ -47,12 +48,12 @@ func (l *Saturated) at(t float64) *fixed {
 	if k := l.kept.at(t); k != nil {
 		return k
 	}
-	inv, lnT := 1/t, math.Log(t)
+	inv, lnT := 1/t, elementary.Log(t)
 	k := l.kept.next(t)
 	*k = fixed{
-		k0:   math.Exp(l.lnK0.at(t, inv, lnT)) / units.BarPerAtm,
-		co3:  math.Exp(l.lnCO3.at(t, inv, lnT)),
-		root: math.Exp(l.lnRoot.at(t, inv, lnT)),
+		k0:   elementary.Exp(l.lnK0.at(t, inv, lnT)) / units.BarPerAtm,
+		co3:  elementary.Exp(l.lnCO3.at(t, inv, lnT)),
+		root: elementary.Exp(l.lnRoot.at(t, inv, lnT)),
 		lnH:  l.lnH.at(t, inv, lnT),
 		t:    t, inv: inv, lnT: lnT,
 	}
@@ -112,13 +113,13 @@ func (l *Saturated) Pressure(c, _, t float64) (p, lnH float64) {
 	}
 	k := l.at(t)
 	x := l.root(k, c)
-	return x * x, k.lnH + math.Log(x)
+	return x * x, k.lnH + elementary.Log(x)
 }
 
 // state fills in the chemistry at x = √p.
 func (l *Saturated) state(k *fixed, x float64) State {
-	s := State{P: x * x, H: math.Exp(k.lnH) * x, CO2: k.k0 * x * x, HCO3: k.root * x, CO3: k.co3, Omega: l.Omega}
-	kb, kw := math.Exp(l.lnKB.at(k.t, k.inv, k.lnT)), math.Exp(l.lnKW.at(k.t, k.inv, k.lnT))
+	s := State{P: x * x, H: elementary.Exp(k.lnH) * x, CO2: k.k0 * x * x, HCO3: k.root * x, CO3: k.co3, Omega: l.Omega}
+	kb, kw := elementary.Exp(l.lnKB.at(k.t, k.inv, k.lnT)), elementary.Exp(l.lnKW.at(k.t, k.inv, k.lnT))
 	s.DIC = s.CO2 + s.HCO3 + s.CO3
 	s.Alk = s.HCO3 + 2*s.CO3 + l.Boron*kb/(kb+s.H) + kw/s.H - s.H
 	return s
@@ -158,9 +159,9 @@ func (l *Saturated) Bind(p Planet) error {
 	l.kept.forget()
 	l.n, l.m = MolesPerBar(p), p.Mass
 	l.lnCO3 = l.lnCalcite
-	l.lnCO3.one += math.Log(l.Omega / l.Calcium)
+	l.lnCO3.one += elementary.Log(l.Omega / l.Calcium)
 	k0 := l.lnK0
-	k0.one -= math.Log(units.BarPerAtm)
+	k0.one -= elementary.Log(units.BarPerAtm)
 	l.lnRoot = k0.plus(1, l.lnK1).plus(-1, l.lnK2).plus(1, l.lnCO3).times(0.5)
 	l.lnH = k0.plus(1, l.lnK1).plus(1, l.lnK2).plus(-1, l.lnCO3).times(0.5)
 	return check(p)

@@ -9,6 +9,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // prescribed gives a total flux from the mantle and lets both carbonate
@@ -80,7 +81,7 @@ func (l *PowerLaw) Bind(ref Reference) error {
 func (l *PowerLaw) Fluxes(in *Input) Fluxes {
 	if in.Age != l.age {
 		x := math.Max(in.Age/l.t0, 0.05)
-		l.age, l.relative = in.Age, math.Exp(-l.N*l.M*math.Log(x))
+		l.age, l.relative = in.Age, elementary.Exp(-l.N*l.M*elementary.Log(x))
 	}
 	return l.fluxes(in, l.relative)
 }

@@ -1,10 +1,9 @@
 package weathering
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Abbot2012 is the land term of Abbot, Cowan & Ciesla (2012):
@@ -30,7 +29,7 @@ func newAbbot2012() Law { return &Abbot2012{B: 0.25, Tu: 13.7, Ap: 0.025, A: 0.6
 // Relative returns W/W₀ at full land fraction.
 func (l *Abbot2012) Relative(e *Env) float64 {
 	dt := e.T - l.t0
-	return math.Exp(l.B*e.LnP + dt/l.Tu + l.A*lnBracket(1+l.Ap*dt))
+	return elementary.Exp(l.B*e.LnP + dt/l.Tu + l.A*lnBracket(1+l.Ap*dt))
 }
 
 // Runoff returns the precipitation 1 + a_p ΔT.

@@ -1,10 +1,9 @@
 package weathering
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // ArrheniusRunoff is the Arrhenius law times runoff in the form of White & Blum
@@ -27,7 +26,7 @@ func newArrheniusRunoff() Law { return &ArrheniusRunoff{E: 62e3, Epsilon: 0.038}
 
 // Relative returns W/W₀.
 func (l *ArrheniusRunoff) Relative(e *Env) float64 {
-	return bracket(1+l.Epsilon*(e.T-l.t0)) * math.Exp(l.Beta*e.LnP-l.er*(1/e.T-l.invT0))
+	return bracket(1+l.Epsilon*(e.T-l.t0)) * elementary.Exp(l.Beta*e.LnP-l.er*(1/e.T-l.invT0))
 }
 
 // Runoff returns 1 + ε ΔT.

@@ -1,10 +1,9 @@
 package weathering
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Berner1994 is the weathering feedback of GEOCARB II, Berner (1994):
@@ -39,9 +38,9 @@ func (l *Berner1994) Relative(e *Env) float64 {
 	dt := e.T - l.t0
 	f := (1 - l.Plants) * l.N * e.LnP
 	if l.Plants > 0 {
-		f -= l.Plants * l.Fertilised * math.Log(0.5+0.5*l.p0/e.P) // 2R/(1 + R) = 1/(½ + ½/R)
+		f -= l.Plants * l.Fertilised * elementary.Log(0.5+0.5*l.p0/e.P) // 2R/(1 + R) = 1/(½ + ½/R)
 	}
-	return math.Exp(f + l.K*dt + l.A*lnBracket(1+l.Epsilon*dt))
+	return elementary.Exp(f + l.K*dt + l.A*lnBracket(1+l.Epsilon*dt))
 }
 
 // Runoff returns 1 + ε ΔT.

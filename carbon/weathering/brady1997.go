@@ -1,10 +1,9 @@
 package weathering
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Brady1997 is the dissolution of basalt in seawater after Brady & Gislason (1997):
@@ -27,7 +26,7 @@ func newBrady1997() Law { return &Brady1997{E: 53e3, Alpha: 0.23, Nu: 1, Deep: n
 
 // Relative returns W/W₀.
 func (l *Brady1997) Relative(e *Env) float64 {
-	return power(e.Crust, l.Nu) * math.Exp(l.Alpha*e.LnP-l.er*(1/l.DeepTemperature(e.T)-l.invTd0))
+	return power(e.Crust, l.Nu) * elementary.Exp(l.Alpha*e.LnP-l.er*(1/l.DeepTemperature(e.T)-l.invTd0))
 }
 
 // Fields lists E, α, ν and the deep-ocean temperature.

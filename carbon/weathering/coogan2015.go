@@ -1,10 +1,9 @@
 package weathering
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Coogan2015 is the temperature-dependent alteration of ocean crust after
@@ -27,7 +26,7 @@ func newCoogan2015() Law { return &Coogan2015{E: 92e3, Nu: 1, Pore: newPore()} }
 
 // Relative returns W/W₀.
 func (l *Coogan2015) Relative(e *Env) float64 {
-	return power(e.Crust, l.Nu) * math.Exp(l.Alpha*e.LnP-l.er*(1/l.Temperature(e.T)-l.invTp0))
+	return power(e.Crust, l.Nu) * elementary.Exp(l.Alpha*e.LnP-l.er*(1/l.Temperature(e.T)-l.invTp0))
 }
 
 // Fields lists E, α, ν and the pore-water temperature.

@@ -6,6 +6,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Foley2015 is the law of Foley (2015) with its supply limit:
@@ -49,7 +50,7 @@ func newFoley2015() Law {
 }
 
 func (l *Foley2015) kinetic(e *Env) float64 {
-	return math.Exp(l.Beta*e.LnP - l.slope*(1/e.T-l.invT0))
+	return elementary.Exp(l.Beta*e.LnP - l.slope*(1/e.T-l.invT0))
 }
 
 // Relative returns W/W₀.

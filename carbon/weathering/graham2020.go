@@ -6,6 +6,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Graham2020 is weathering limited by solute transport after Maher & Chamberlain
@@ -57,7 +58,7 @@ func newGraham2020() Law {
 
 // Relative returns W/W₀.
 func (l *Graham2020) Relative(e *Env) float64 {
-	return 1 / (l.kinetic*math.Exp((l.t0-e.T)/l.Te-l.Beta*e.LnP) + l.aged + l.solute*math.Exp(-l.N*e.LnP)*l.precip0/l.precipitation(e))
+	return 1 / (l.kinetic*elementary.Exp((l.t0-e.T)/l.Te-l.Beta*e.LnP) + l.aged + l.solute*elementary.Exp(-l.N*e.LnP)*l.precip0/l.precipitation(e))
 }
 
 // Runoff returns q/q₀.

@@ -1,10 +1,9 @@
 package weathering
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // KrissansenTotton2017 is the continental silicate weathering of Krissansen-Totton
@@ -27,7 +26,7 @@ func newKrissansenTotton2017() Law { return &KrissansenTotton2017{Alpha: 0.3, Te
 
 // Relative returns W/W₀.
 func (l *KrissansenTotton2017) Relative(e *Env) float64 {
-	return math.Exp(l.Alpha*e.LnP + (e.T-l.t0)/l.Te)
+	return elementary.Exp(l.Alpha*e.LnP + (e.T-l.t0)/l.Te)
 }
 
 // Fields lists α and Tₑ.

@@ -1,10 +1,9 @@
 package weathering
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // KrissansenTotton2018 is the dissolution of ocean crust of Krissansen-Totton,
@@ -31,7 +30,7 @@ func newKrissansenTotton2018() Law {
 
 // Relative returns W/W₀.
 func (l *KrissansenTotton2018) Relative(e *Env) float64 {
-	return power(e.Crust, l.Beta) * math.Exp(l.Gamma*e.LnH-l.er*(1/l.Temperature(e.T)-l.invTp0))
+	return power(e.Crust, l.Beta) * elementary.Exp(l.Gamma*e.LnH-l.er*(1/l.Temperature(e.T)-l.invTp0))
 }
 
 // Acidic says that [H⁺] matters.

@@ -1,10 +1,9 @@
 package weathering
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Menou2015 is the law of Menou (2015), kept by Haqq-Misra et al. (2016):
@@ -27,7 +26,7 @@ func newMenou2015() Law { return &Menou2015{Beta: 0.5, K: 0.09, Epsilon: 0.045, 
 // Relative returns W/W₀.
 func (l *Menou2015) Relative(e *Env) float64 {
 	dt := e.T - l.t0
-	return math.Exp(l.Beta*e.LnP + l.K*dt + l.A*lnBracket(1+l.Epsilon*dt))
+	return elementary.Exp(l.Beta*e.LnP + l.K*dt + l.A*lnBracket(1+l.Epsilon*dt))
 }
 
 // Runoff returns 1 + ε ΔT.

@@ -1,10 +1,9 @@
 package weathering
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Sleep2001 is the carbonatisation of ocean crust in the structure of Sleep &
@@ -24,7 +23,9 @@ type Sleep2001 struct {
 func newSleep2001() Law { return &Sleep2001{Alpha: 1, Nu: 1} }
 
 // Relative returns W/W₀.
-func (l *Sleep2001) Relative(e *Env) float64 { return power(e.Crust, l.Nu) * math.Exp(l.Alpha*e.LnP) }
+func (l *Sleep2001) Relative(e *Env) float64 {
+	return power(e.Crust, l.Nu) * elementary.Exp(l.Alpha*e.LnP)
+}
 
 // Fields lists α and ν.
 func (l *Sleep2001) Fields() []units.Field {

@@ -1,13 +1,13 @@
 package weathering
 
-import "math"
+import "cycle/ode/elementary"
 
 // least is the part of its reference value below which a runoff bracket leaves
 // the published straight line. Own choice: the papers stop at a few tens of
 // kelvin, long before the bracket gets this small.
 const least = 0.1
 
-var lnLeast = math.Log(least)
+var lnLeast = elementary.Log(least)
 
 // bracket returns x where x ≥ least, and least·exp(x/least − 1) below: positive,
 // increasing and continuously differentiable.
@@ -15,13 +15,13 @@ func bracket(x float64) float64 {
 	if x >= least {
 		return x
 	}
-	return least * math.Exp(x/least-1)
+	return least * elementary.Exp(x/least-1)
 }
 
 // lnBracket returns the logarithm of bracket without an exponential.
 func lnBracket(x float64) float64 {
 	if x >= least {
-		return math.Log(x)
+		return elementary.Log(x)
 	}
 	return lnLeast + x/least - 1
 }
@@ -34,7 +34,7 @@ func above(x, lo, w float64) float64 {
 	case x < lo-40*w: // the tail is below the last bit
 		return lo
 	}
-	return lo + w*math.Exp((x-lo)/w-1)
+	return lo + w*elementary.Exp((x-lo)/w-1)
 }
 
 // below returns x where x ≤ hi − w and tends to hi above, with continuous slope.
@@ -42,7 +42,7 @@ func below(x, hi, w float64) float64 {
 	if x <= hi-w {
 		return x
 	}
-	return hi - w*math.Exp((hi-x)/w-1)
+	return hi - w*elementary.Exp((hi-x)/w-1)
 }
 
 // power returns s^ν; s is the crust production, ν mostly 1.
@@ -53,5 +53,5 @@ func power(s, nu float64) float64 {
 	case 0:
 		return 1
 	}
-	return math.Exp(nu * math.Log(s))
+	return elementary.Exp(nu * elementary.Log(s))
 }

@@ -1,10 +1,9 @@
 package weathering
 
 import (
-	"math"
-
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // Walker1981 is the law of Walker, Hays & Kasting (1981):
@@ -24,7 +23,7 @@ func newWalker1981() Law { return &Walker1981{Beta: 0.3, Te: 13.7} }
 
 // Relative returns W/W₀.
 func (l *Walker1981) Relative(e *Env) float64 {
-	return math.Exp(l.Beta*e.LnP + (e.T-l.t0)/l.Te)
+	return elementary.Exp(l.Beta*e.LnP + (e.T-l.t0)/l.Te)
 }
 
 // Fields lists β and Tₑ.

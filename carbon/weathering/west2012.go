@@ -6,6 +6,7 @@ import (
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
+	"cycle/ode/elementary"
 )
 
 // West2012 is the weathering zone of finite thickness of West (2012):
@@ -50,7 +51,7 @@ func newWest2012() Law {
 
 // exponent returns −K (1 − exp(−k_w q)) · …, the exponent of the outer bracket.
 func (l *West2012) exponent(e *Env) float64 {
-	return l.rate * math.Expm1(-l.wet*l.Runoff(e)) * math.Exp(l.er*(1/l.Tw-1/e.T))
+	return l.rate * math.Expm1(-l.wet*l.Runoff(e)) * elementary.Exp(l.er*(1/l.Tw-1/e.T))
 }
 
 // Relative returns W/W₀.
