@@ -3,11 +3,14 @@ package reports
 import (
 	"bytes"
 	"encoding/json"
+	"fmt"
 	"math"
+	"math/rand/v2"
 	"strings"
 	"testing"
 
 	"cycle/carbon/record"
+	"cycle/scenarios/ensemble/estimate"
 )
 
 // absurd is an ensemble no planet has: what the page shows must be these numbers.
@@ -101,5 +104,69 @@ func TestEnsembleTerminal(t *testing.T) {
 	}
 	if strings.Contains(b.String(), "\x1b") {
 		t.Error("colour where none is wanted")
+	}
+}
+
+// manyMembers is an ensemble of n invented members, as large as its report gets:
+// every outcome occurs and has a typical history, of forty cycles each, and every
+// one of forty uncertain inputs has its say on every date.
+func manyMembers(n int) *record.Ensemble {
+	e := absurdEnsemble()
+	e.Title, e.Members, e.Independent, e.DesignWords = "Many members", n, n, "an invented design"
+	dice := rand.New(rand.NewPCG(1, 2))
+	var events []estimate.Event
+	for range n {
+		events = append(events, estimate.Event{Time: 0.3 + 9*dice.Float64()*dice.Float64(), Cause: dice.IntN(len(record.Kinds)+1) - 1})
+	}
+	by, all := estimate.Incidence(events, len(record.Kinds), 240) // as many steps as the program keeps
+	e.Incidence, e.Shares, e.Dates, e.Sensitive, e.Typical, e.Uncertain, e.ByLaw = nil, nil, nil, nil, nil, nil, nil
+	for i := range 40 {
+		e.Uncertain = append(e.Uncertain, record.UncertainInput{Key: fmt.Sprint("part.input", i), Distribution: "uniform, 1 to 2 K", Doc: "what this input means, in a few words"})
+	}
+	value := func() record.Interval { v := dice.Float64(); return record.Interval{Value: v, Low: v / 2, High: 2 * v} }
+	for i, k := range record.Kinds {
+		c := record.Curve{Name: string(k)}
+		for _, t := range all.Time {
+			v, lo, hi := by[i].At(t)
+			c.TimeGyr, c.Value, c.Low, c.High = append(c.TimeGyr, t), append(c.Value, v), append(c.Low, lo), append(c.High, hi)
+		}
+		e.Incidence = append(e.Incidence, c)
+		s := record.Sensitivities{Quantity: "date", Clock: string(k), Count: n / 10, Of: n, Laws: value(), Rest: value()}
+		for _, u := range e.Uncertain {
+			s.Inputs = append(s.Inputs, record.Sensitivity{Input: u.Key, First: value(), Total: value(), Partial: value()})
+			e.ByLaw = append(e.ByLaw, record.ByLaw{Key: u.Key, Choice: "somebody1999", Kind: k, Count: 3, Of: 9, Share: value(), Median: 2, LowGyr: 1, HighGyr: 3})
+		}
+		e.Sensitive = append(e.Sensitive, s)
+		e.Shares = append(e.Shares, record.FateShare{Kind: k, Count: n / 10, Of: n, Share: value(), WithAll: value(), Typical: i})
+		t := record.Typical{Kind: k, Member: i}
+		for _, row := range quessmere().Rows {
+			row.Age += 1e6 * float64(i) // no two on the same ages
+			row.Temperature *= 1 + 0.001*dice.Float64()
+			row.PCO2 *= 1 + 0.01*dice.Float64()
+			t.Rows = append(t.Rows, row)
+		}
+		e.Typical = append(e.Typical, t)
+	}
+	e.Liquid = e.Incidence[0]
+	return e
+}
+
+// The report of 100,000 members stays small enough to be mailed, and does not
+// grow with their number.
+func TestEnsembleSize(t *testing.T) {
+	size := func(n int) int {
+		var b bytes.Buffer
+		if err := EnsembleHTML(&b, manyMembers(n)); err != nil {
+			t.Fatal(err)
+		}
+		return b.Len()
+	}
+	large, small := size(100000), size(5000)
+	t.Logf("100,000 members: %d bytes; 5000: %d", large, small)
+	if large >= 2e6 {
+		t.Errorf("the report of 100,000 members takes %d bytes", large)
+	}
+	if float64(large) > 1.1*float64(small) {
+		t.Errorf("twenty times the members make %d bytes of %d", large, small)
 	}
 }

@@ -166,6 +166,21 @@ func (b *tab) looks(name string, width int64, dark bool) {
 	}
 }
 
+// A report of one history is below 1 MB, also with forty cycles; that of many
+// members is looked at in TestEnsembleSize, the others are told.
+func TestSizes(t *testing.T) {
+	for _, r := range []*record.Run{orrindel(), quessmere()} {
+		n := len(htmlText(t, r))
+		t.Logf("%s: %d bytes", r.Name, n)
+		if n >= 1e6 {
+			t.Errorf("%s takes %d bytes", r.Name, n)
+		}
+	}
+	for _, s := range reportSorts {
+		t.Logf("%s: %d bytes", s.name, len(s.html(t, s.make())))
+	}
+}
+
 // evalJSON runs an expression and takes its value apart.
 func evalJSON[T any](b *tab, expr string) T {
 	b.Helper()
