@@ -24,6 +24,7 @@ type radau struct {
 
 	z, zPrev  []float64 // stage increments, stage-major; zPrev of the last accepted step
 	w         []float64 // T⁻¹ z
+	exact     bool      // residuals are formed before the transformation, whose condition costs the order-13 method digits
 	f, dw     []float64
 	cr, cx    []complex128
 	lag       []float64
@@ -210,6 +211,7 @@ func newRadau(s, n int) *radau {
 	}
 
 	r.z, r.zPrev = make([]float64, s*n), make([]float64, s*n)
+	r.exact = s > 5
 	r.f, r.w, r.dw = make([]float64, s*n), make([]float64, s*n), make([]float64, s*n)
 	r.cr, r.cx = make([]complex128, n), make([]complex128, n)
 	r.lag, r.ez = make([]float64, s), make([]float64, n)
@@ -495,8 +497,18 @@ func (s *Solver) radauTry(h, tEnd float64) outcome {
 			s.stats.FuncEvals++
 			s.f(r.f[i*n:i*n+n], ti, s.arg)
 		}
-		// Residual T⁻¹F − Λ W/h, with Λ = T⁻¹A⁻¹T.
-		mix(r.dw, r.ti, r.f, ns, n)
+		if r.exact {
+			// Residual T⁻¹ (F − A⁻¹Z/h).
+			mix(r.dw, r.ainv, r.z, ns, n)
+			for k, v := range r.dw {
+				r.f[k] -= hinv * v
+			}
+			mix(r.dw, r.ti, r.f, ns, n)
+			clear(r.w)
+		} else {
+			// The same as T⁻¹F − ΛW/h, with Λ = T⁻¹A⁻¹T.
+			mix(r.dw, r.ti, r.f, ns, n)
+		}
 		c := r.gamma * hinv
 		for k, v := range r.w[:n] {
 			r.dw[k] -= c * v
