@@ -343,11 +343,7 @@ func (x *explainer) findSlope() error {
 
 // methodWorks adds the works behind a method to those of the laws.
 func methodWorks(have []record.Work, works ...*cite.Work) []record.Work {
-	out := append([]record.Work(nil), have...)
-	for _, w := range cite.Sorted(works) {
-		out = append(out, record.Work{Key: w.Key, Text: w.Long(), BibTeX: w.BibTeX()})
-	}
-	return out
+	return append(append([]record.Work(nil), have...), WorkList(works...)...)
 }
 
 // driversOf lists the drivers that change.

@@ -311,12 +311,7 @@ func frozenAt(h *history) func(age float64) bool {
 func (b *builder) zone() {
 	s := b.m.set
 	b.run.ZoneLaw = s.ZoneLaw
-	var law star.ZoneLaw
-	for _, z := range star.Zones {
-		if z.Name == s.ZoneLaw {
-			law = z
-		}
-	}
+	law := s.zoneLaw()
 	mass := s.Mass / units.EarthMass
 	limits := func(age float64) []star.Limit { return law.Limits(s.star.law.Temperature(age), mass) }
 	for i := range b.h.rows {
@@ -636,8 +631,28 @@ func (b *builder) recoveries(ctx context.Context) error {
 
 // laws names the chosen laws and collects the works they rest on.
 func (b *builder) laws() {
-	s := b.m.set
+	laws, works := b.m.set.Foundations()
+	b.run.Laws = laws
+	b.run.Works = WorkList(append(works, cite.Steinebach2023)...)
+}
+
+// Foundations returns the chosen laws, and the works behind them and behind
+// every value.
+func (s *Setup) Foundations() ([]record.Law, []*cite.Work) {
+	var laws []record.Law
 	var works []*cite.Work
+	add := func(part, name, doc, form, published string, source []cite.Ref) {
+		l := record.Law{Part: part, Name: name, Doc: doc, Form: form, Range: published}
+		var src []string
+		for _, r := range source {
+			src = append(src, r.String())
+			if r.Work != nil {
+				works, l.Works = append(works, r.Work), append(l.Works, r.Work.Key)
+			}
+		}
+		l.Source = strings.Join(src, "; ")
+		laws = append(laws, l)
+	}
 	for _, sec := range s.Sections() {
 		for _, f := range sec.Fields {
 			works = append(works, f.Source.Work)
@@ -645,36 +660,33 @@ func (b *builder) laws() {
 		for _, o := range sec.Options {
 			works = append(works, o.Source.Work)
 		}
-		if sec.Laws == nil {
-			continue
+		for _, f := range sec.Flags {
+			works = append(works, f.Source.Work)
 		}
 		for _, c := range sec.Laws {
-			if c.Name != sec.Law {
-				continue
-			}
-			var src []string
-			for _, r := range c.Source {
-				works = append(works, r.Work)
-				src = append(src, r.String())
-			}
-			b.run.Laws = append(b.run.Laws, record.Law{Part: sec.Name, Name: c.Name, Doc: c.Doc, Form: c.Form, Source: strings.Join(src, "; "), Range: b.rangeOf(sec.Name)})
-		}
-	}
-	for _, z := range star.Zones {
-		if z.Name == s.ZoneLaw {
-			for _, r := range z.Source {
-				works = append(works, r.Work)
+			if c.Name == sec.Law {
+				add(sec.Name, c.Name, c.Doc, c.Form, s.rangeOf(sec.Name), c.Source)
 			}
 		}
+		if sec.Name == "zone" {
+			z := s.zoneLaw()
+			add("zone", z.Name, z.Doc, "", "", z.Source)
+		}
 	}
+	return laws, works
+}
+
+// WorkList writes distinct works in the order of a reference list.
+func WorkList(works ...*cite.Work) []record.Work {
+	var out []record.Work
 	for _, w := range cite.Sorted(works) {
-		b.run.Works = append(b.run.Works, record.Work{Key: w.Key, Text: w.Long(), BibTeX: w.BibTeX()})
+		out = append(out, record.Work{Key: w.Key, Short: w.Short(), Text: w.Long(), BibTeX: w.BibTeX()})
 	}
+	return out
 }
 
 // rangeOf words the published range of the chosen law of a section.
-func (b *builder) rangeOf(section string) string {
-	s := b.m.set
+func (s *Setup) rangeOf(section string) string {
 	var t, p, a units.Range
 	switch section {
 	case "star":
@@ -720,7 +732,7 @@ func (b *builder) solver(tight float64) {
 			lim[name] = st.Limiting[i]
 		}
 	}
-	b.run.Solver = record.Solver{Method: "Rodas5P", RelTol: b.m.set.Tolerance, Steps: st.Steps, Rejected: rej, FuncEvals: st.FuncEvals,
+	b.run.Solver = record.Solver{Method: "Rodas5P", Works: []string{cite.Steinebach2023.Key}, RelTol: b.m.set.Tolerance, Steps: st.Steps, Rejected: rej, FuncEvals: st.FuncEvals,
 		MinStepYr: st.MinStep, MaxStepYr: st.MaxStep, Limiting: lim, Guard: b.m.set.Guard, Status: b.h.reason, TightenedTol: tight}
 }
 

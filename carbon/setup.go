@@ -282,7 +282,7 @@ func (s *Setup) Sections() []Section {
 			{Key: "thawed_above", Kind: units.Temperature, Unit: "K", Min: 262, Max: 280, Doc: "a snowball ends above", Source: cite.Own("warmer than the ramp's unstable branch"), Value: &s.ThawedAbove},
 			{Key: "cold_contrast", Kind: units.Interval, Unit: "K", Min: 0, Max: 80, Doc: "coldest place colder than the mean by, for CO2 condensation", Source: cite.Own("of the size of today's pole-to-mean contrast"), Value: &s.ColdContrast},
 		}, Options: []Option{
-			{Key: "condensation", Doc: "saturation pressure of CO2", Allowed: condensationNames(), Source: climate.Condensations[0].Source[0], Value: &s.Condensation},
+			{Key: "condensation", Doc: "saturation pressure of CO2", Allowed: condensationNames(), Source: s.condensationSource(), Own: true, Value: &s.Condensation},
 		}},
 		{Name: "weathering", Doc: "what both sinks share", Fields: []units.Field{
 			{Key: "limiter", Kind: units.Pressure, Unit: "bar", Min: 1e-9, Max: 1e-5, Doc: "CO2 pressure below which all sinks vanish", Source: cite.Own("keeps carbon from being overdrawn"), Value: &s.Limiter},
@@ -322,7 +322,7 @@ func (s *Setup) Sections() []Section {
 			{Key: "escape", Doc: "water escapes as fast as hydrogen diffuses through the stratosphere", Source: cite.Ref{Work: cite.Kasting1993, Note: "diffusion limit", Trust: cite.Memory}, Value: &s.WaterEscape},
 		}},
 		{Name: "zone", Doc: "limits of the habitable zone to show; they decide nothing", Options: []Option{
-			{Key: "law", Doc: "whose limits", Allowed: zoneNames(), Source: cite.Ref{Work: cite.Kopparapu2014}, Value: &s.ZoneLaw},
+			{Key: "law", Doc: "whose limits", Allowed: zoneNames(), Source: s.zoneLaw().Source[0], Own: true, Value: &s.ZoneLaw},
 		}},
 		{Name: "time", Doc: "span of the history; time is the age of the star", Fields: []units.Field{
 			{Key: "start", Kind: units.Time, Unit: "Gyr", Min: 0.01e9, Max: 10e9, Doc: "start", Source: cite.Own("after the magma ocean and the fastest brightening"), Value: &s.Start},
@@ -392,6 +392,25 @@ func (s *Setup) condensation() func(float64) float64 {
 		}
 	}
 	return climate.CO2Pressure
+}
+
+func (s *Setup) condensationSource() cite.Ref {
+	for _, e := range climate.Condensations {
+		if e.Name == s.Condensation {
+			return e.Source[0]
+		}
+	}
+	return climate.Condensations[0].Source[0]
+}
+
+// zoneLaw returns the chosen limits.
+func (s *Setup) zoneLaw() star.ZoneLaw {
+	for _, z := range star.Zones {
+		if z.Name == s.ZoneLaw {
+			return z
+		}
+	}
+	return star.Zones[0]
 }
 
 // starTable reports whether the luminosity ends with its data, not with the star.

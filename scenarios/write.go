@@ -10,6 +10,7 @@ import (
 	"unicode/utf8"
 
 	"cycle/carbon"
+	"cycle/carbon/cite"
 	"cycle/carbon/record"
 )
 
@@ -26,6 +27,7 @@ type entry struct {
 	allowed       string
 	published     string
 	outside       bool
+	works         []string // keys of the works behind the source
 }
 
 func (e *entry) key() string { return dotted(e.section, e.name) }
@@ -49,20 +51,20 @@ func (r *Resolved) entries() []entry {
 			e := entry{section: sec.Name, name: "law", toml: tomlString(sec.Law), plain: sec.Law, exact: sec.Law, def: lawless[i].Law, isDefault: true, allowed: words(lawNames(sec.Laws))}
 			for _, c := range sec.Laws {
 				if c.Name == sec.Law {
-					e.doc, e.source = c.Doc, sources(c.Source)
+					e.doc, e.source, e.works = c.Doc, sources(c.Source), workKeys(c.Source...)
 				}
 			}
 			out = append(out, e)
 		}
 		for j := range sec.Options {
 			o := &sec.Options[j]
-			out = append(out, entry{section: sec.Name, name: o.Key, toml: tomlString(*o.Value), plain: *o.Value, exact: *o.Value, def: *d.Options[j].Value, isDefault: *o.Value == *d.Options[j].Value,
-				doc: o.Doc, source: o.Source.String(), allowed: words(o.Allowed)})
+			out = append(out, entry{section: sec.Name, name: o.Key, toml: tomlString(*o.Value), plain: *o.Value, exact: *o.Value, def: *d.Options[j].Value, isDefault: o.Own || *o.Value == *d.Options[j].Value,
+				doc: o.Doc, source: o.Source.String(), works: workKeys(o.Source), allowed: words(o.Allowed)})
 		}
 		for j := range sec.Fields {
 			f := &sec.Fields[j]
 			e := entry{section: sec.Name, name: f.Key, toml: literal(f, *f.Value), plain: plainText(f, *f.Value), exact: strconv.FormatFloat(*f.Value, 'g', -1, 64), def: plainText(f, *d.Fields[j].Value), isDefault: *f.Value == *d.Fields[j].Value,
-				doc: f.Doc, source: f.Source.String(), allowed: allowedRange(f), outside: f.Extrapolates(*f.Value)}
+				doc: f.Doc, source: f.Source.String(), works: workKeys(f.Source), allowed: allowedRange(f), outside: f.Extrapolates(*f.Value)}
 			if f.Published.Stated() {
 				e.published = between(f, f.Published.Lo, f.Published.Hi)
 			}
@@ -71,11 +73,22 @@ func (r *Resolved) entries() []entry {
 		for j := range sec.Flags {
 			f := &sec.Flags[j]
 			out = append(out, entry{section: sec.Name, name: f.Key, toml: boolText(*f.Value), plain: boolText(*f.Value), exact: boolText(*f.Value), def: boolText(*d.Flags[j].Value), isDefault: *f.Value == *d.Flags[j].Value,
-				doc: f.Doc, source: f.Source.String(), allowed: "true or false"})
+				doc: f.Doc, source: f.Source.String(), works: workKeys(f.Source), allowed: "true or false"})
 		}
 		if t := sec.Table; t != nil {
 			out = append(out, entry{section: sec.Name, name: t.Key + "_csv", toml: tomlText(*t.Text), plain: fmt.Sprintf("table of %d lines", strings.Count(strings.TrimSpace(*t.Text), "\n")+1), exact: *t.Text, def: "none",
 				doc: t.Doc, source: "the user's table", allowed: "CSV"})
+		}
+	}
+	return out
+}
+
+// workKeys lists the works that sources point to.
+func workKeys(refs ...cite.Ref) []string {
+	var out []string
+	for _, r := range refs {
+		if r.Work != nil {
+			out = append(out, r.Work.Key)
 		}
 	}
 	return out
@@ -105,7 +118,7 @@ func (r *Resolved) Inputs() []record.Input {
 		if e.published != "" {
 			allowed += " (published " + e.published + ")"
 		}
-		out = append(out, record.Input{Key: e.key(), Value: e.plain, Doc: e.doc, Origin: r.Origin(e.key()), Source: r.sourceText(&e), Allowed: allowed, Outside: e.outside})
+		out = append(out, record.Input{Key: e.key(), Value: e.plain, Doc: e.doc, Origin: r.Origin(e.key()), Source: r.sourceText(&e), Allowed: allowed, Outside: e.outside, Works: e.works})
 	}
 	return out
 }

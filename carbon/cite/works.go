@@ -51,6 +51,8 @@ var (
 		Title: "Randomly permuted (t,m,s)-nets and (t,s)-sequences", Journal: "Monte Carlo and Quasi-Monte Carlo Methods in Scientific Computing, Springer", Pages: "299-317"}
 	Saltelli2010 = &Work{Key: "saltelli2010", Authors: []string{"Saltelli, A.", "Annoni, P.", "Azzini, I.", "Campolongo, F.", "Ratto, M.", "Tarantola, S."}, Year: 2010,
 		Title: "Variance based sensitivity analysis of model output. Design and estimator for the total sensitivity index", Journal: "Computer Physics Communications", Volume: "181", Pages: "259-270"}
+	Steinebach2023 = &Work{Key: "steinebach2023", Authors: []string{"Steinebach, G."}, Year: 2023,
+		Title: "Construction of Rosenbrock-Wanner method Rodas5P and numerical benchmarks within the Julia Differential Equations package", Journal: "BIT Numerical Mathematics", Volume: "63", Pages: "27"}
 	Sudret2008 = &Work{Key: "sudret2008", Authors: []string{"Sudret, B."}, Year: 2008,
 		Title: "Global sensitivity analysis using polynomial chaos expansions", Journal: "Reliability Engineering & System Safety", Volume: "93", Pages: "964-979"}
 	CODATA2018 = &Work{Key: "codata2018", Authors: []string{"Tiesinga, E.", "Mohr, P. J.", "Newell, D. B.", "Taylor, B. N."}, Year: 2021,

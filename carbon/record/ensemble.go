@@ -189,6 +189,7 @@ type Ensemble struct {
 	Undecided   int              `json:"undecided"`   // of them
 	StartGyr    float64          `json:"start_gyr"`
 	EndGyr      float64          `json:"end_gyr"`
+	RefAgeGyr   float64          `json:"-"`        // the age that counts as present
 	Sentence    string           `json:"sentence"` // the verdict in one sentence
 	Uncertain   []UncertainInput `json:"uncertain"`
 	Correlated  []string         `json:"correlations"`
@@ -202,6 +203,7 @@ type Ensemble struct {
 	AtAges      []AtAge          `json:"at_ages"`
 	Statuses    []StatusCount    `json:"statuses"`
 	Worth       string           `json:"more_members"` // what more members would be worth
+	Laws        []Law            `json:"laws"` // all that a member may have
 	Works       []Work           `json:"works"`
 	Warnings    []Warning        `json:"warnings"`
 	Inputs      []Input          `json:"-"`

@@ -144,6 +144,7 @@ type Solver struct {
 	Guard        bool           `json:"stability_guard"`
 	Status       string         `json:"status"`
 	TightenedTol float64        `json:"relative_tolerance_of_error_run"`
+	Works        []string       `json:"works"` // keys of the works behind the method
 }
 
 // Zone is one limit of the habitable zone and when the planet crosses it.
@@ -171,6 +172,8 @@ type Input struct {
 	Source  string `json:"source"`  // publication or reason
 	Allowed string `json:"allowed"` // range
 	Outside bool   `json:"outside_published_range"`
+
+	Works []string `json:"works"` // keys of the works behind the value, or behind the default it replaces
 }
 
 // Law is one chosen law.
@@ -181,11 +184,14 @@ type Law struct {
 	Form   string `json:"equation"`
 	Source string `json:"source"`
 	Range  string `json:"published_range"` // where the source says it holds
+
+	Works []string `json:"works"` // keys of the works it rests on
 }
 
 // Work is one entry of the reference list.
 type Work struct {
 	Key    string `json:"key"`
+	Short  string `json:"short"` // as cited in a text: "Walker et al. 1981"
 	Text   string `json:"text"`
 	BibTeX string `json:"bibtex"`
 }

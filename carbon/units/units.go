@@ -266,6 +266,7 @@ type Option struct {
 	Doc     string
 	Allowed []string
 	Source  cite.Ref
+	Own     bool // the source is that of the value, not of the default
 	Value   *string
 }
 

@@ -86,7 +86,7 @@ func (p *Plan) Summarise(ctx context.Context, dir string) (*record.Ensemble, err
 	r := p.Scenario
 	s := &summary{p: p, dir: dir, Ensemble: &record.Ensemble{
 		Format: 1, Kind: "ensemble", Title: r.Title, Name: r.Name, Hash: r.EnsembleHash(), Version: p.Version, Seed: p.Seed, Design: p.Design, DesignWords: p.DesignWords(),
-		Members: p.Members, StartGyr: r.Setup.Start / units.Gyr, EndGyr: r.Setup.End / units.Gyr,
+		Members: p.Members, StartGyr: r.Setup.Start / units.Gyr, EndGyr: r.Setup.End / units.Gyr, RefAgeGyr: r.Setup.RefAge / units.Gyr,
 		Inputs: r.Inputs(), Scenario: r.TOML(),
 		Command: fmt.Sprintf("cycle ensemble scenario.toml --members %d --seed %d --design %s", p.Members, p.Seed, p.Design),
 	}}
@@ -837,21 +837,42 @@ func (s *summary) works() {
 	if len(s.p.design.together) > 0 {
 		works = append(works, cite.ImanConover1982)
 	}
-	setup := s.p.Scenario.Setup
+	// The laws of the scenario, where none was drawn, and those that were.
+	setup := s.p.Scenario.Setup.Clone()
+	drawn := map[string][]string{}
 	for _, sec := range setup.Sections() {
-		used := []string{sec.Law}
-		if pr := s.p.Scenario.Uncertain.Prior(sec.Name + ".law"); pr != nil {
-			used = pr.Choices
-		}
-		for _, c := range sec.Laws {
-			if slices.Contains(used, c.Name) {
-				for _, r := range c.Source {
-					works = append(works, r.Work)
-				}
+		if pr := s.p.Scenario.Uncertain.Prior(sec.Name + ".law"); pr != nil && sec.Laws != nil {
+			drawn[sec.Name] = pr.Choices
+			if !slices.Contains(pr.Choices, sec.Law) {
+				_ = setup.Choose(sec.Name, pr.Choices[0]) // the reader has tried every choice
 			}
 		}
 	}
-	for _, w := range cite.Sorted(works) {
-		s.Works = append(s.Works, record.Work{Key: w.Key, Text: w.Long(), BibTeX: w.BibTeX()})
+	add := func(c *carbon.Setup, part string) {
+		laws, more := c.Foundations()
+		works = append(works, more...)
+		for _, l := range laws {
+			if part != "" && l.Part != part || part == "" && drawn[l.Part] != nil {
+				continue
+			}
+			for _, sec := range c.Sections() {
+				for _, f := range sec.Fields {
+					// Values that the table of inputs need not have rest on works too.
+					if w := f.Source.Work; sec.Name == part && w != nil && !slices.Contains(l.Works, w.Key) {
+						l.Works = append(l.Works, w.Key)
+					}
+				}
+			}
+			s.Laws = append(s.Laws, l)
+		}
 	}
+	add(setup, "")
+	for _, sec := range setup.Sections() {
+		for _, law := range drawn[sec.Name] {
+			c := setup.Clone()
+			_ = c.Choose(sec.Name, law)
+			add(c, sec.Name)
+		}
+	}
+	s.Works = carbon.WorkList(append(works, cite.Steinebach2023)...)
 }
