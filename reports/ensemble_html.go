@@ -33,7 +33,7 @@ type ensembleBody struct {
 	Priors                                     []record.UncertainInput
 	Correlated                                 []string
 	Facts                                      []fact
-	Command, Scenario, Licences                string
+	Command, Scenario, Licences, Clock         string
 }
 
 type fateRow struct {
@@ -110,6 +110,10 @@ func EnsembleHTML(w io.Writer, e *record.Ensemble) error {
 	b.Facts = []fact{{Name: "Scenario", Value: clean(e.Name)}, {Name: "Hash of the scenario", Value: clean(e.Hash)}, {Name: "Members", Value: fmt.Sprint(e.Members)}, {Name: "Seed", Value: fmt.Sprint(e.Seed)}, {Name: "Design", Value: clean(e.Design)}}
 	doc := &page.Document{Title: clip(b.ShortTitle, 90) + ", " + b.CountWords + " – cycle", Label: b.ShortTitle + "  ·  cycle " + clip(clean(e.Version), 20), File: fileStem(e.Name) + "-ensemble",
 		Data: ensembleData(e), Figures: ensembleFigures(e), Outcome: nan(), Present: nan()}
+	if e.RefAgeGyr != 0 && known(e.RefAgeGyr) {
+		doc.Present = e.RefAgeGyr
+		b.Clock = "before " + num.Short(doc.Present, 4) + " Gyr"
+	}
 	if err := doc.Finish(); err != nil {
 		return err
 	}

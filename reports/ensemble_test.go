@@ -21,7 +21,7 @@ func absurdEnsemble() *record.Ensemble {
 	evil := `</script><img src=x onerror=alert(1)>`
 	return &record.Ensemble{
 		Format: 1, Kind: "ensemble", Title: evil, Name: "e", Hash: "abc", Version: "9.9", Seed: 77, Design: "sobol", DesignWords: "some design " + evil,
-		Members: 123456, Independent: 123456, Undecided: 12, StartGyr: 0.2, EndGyr: 9, Sentence: "Of 123456 histories: snowball in 12 %.",
+		Members: 123456, Independent: 123456, Undecided: 12, StartGyr: 0.2, EndGyr: 9, RefAgeGyr: 4.57, Sentence: "Of 123456 histories: snowball in 12 %.",
 		Uncertain:  []record.UncertainInput{{Key: "a.b", Distribution: "uniform, 1 to 2 K", Doc: evil, Column: "a_b_K"}},
 		Correlated: []string{"a and b: rank correlation 0.5"},
 		Shares: []record.FateShare{{Kind: record.Snowball, Count: 14815, Of: 123456, Share: record.Interval{Value: 0.1234, Low: 0.11, High: 0.13}, WithAll: record.Interval{Value: 0.1235, Low: 0.111, High: 0.131}, Typical: 4321},

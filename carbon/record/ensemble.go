@@ -203,7 +203,7 @@ type Ensemble struct {
 	AtAges      []AtAge          `json:"at_ages"`
 	Statuses    []StatusCount    `json:"statuses"`
 	Worth       string           `json:"more_members"` // what more members would be worth
-	Laws        []Law            `json:"laws"` // all that a member may have
+	Laws        []Law            `json:"laws"`         // all that a member may have
 	Works       []Work           `json:"works"`
 	Warnings    []Warning        `json:"warnings"`
 	Inputs      []Input          `json:"-"`
