@@ -17,8 +17,10 @@ type eventState struct {
 	known   bool
 	stale   bool // g1 does not belong to the end of the step last taken
 	total   int
-	hits    []bool // fires at the end of this step
-	fresh   []bool // fired at the start of this step: its value there is rounding
+	taken   float64 // length of the step last taken while an event is located
+	whole   bool    // f and the Jacobian belong to it
+	hits    []bool  // fires at the end of this step
+	fresh   []bool  // fired at the start of this step: its value there is rounding
 
 	records []EventRecord
 	fired   int
@@ -322,7 +324,7 @@ func (s *Solver) locateEvents(h, tEnd float64) (float64, outcome) {
 		}
 		c.root = br.b
 	}
-	taken := h // length of the step last taken
+	ev.taken, ev.whole = h, true
 	for pass := 0; pass < 2+len(ev.cand); pass++ {
 		first := -1
 		for i := range ev.cand {
@@ -334,7 +336,7 @@ func (s *Solver) locateEvents(h, tEnd float64) (float64, outcome) {
 			break
 		}
 		c := &ev.cand[first]
-		lo, hi, ok, o := s.locateOne(first, h, tol, &taken)
+		lo, hi, ok, o := s.locateOne(first, h, tol)
 		if o != outcomeOK {
 			return 0, o
 		}
@@ -350,10 +352,8 @@ func (s *Solver) locateEvents(h, tEnd float64) (float64, outcome) {
 				if i == first || !d.on || s.second(i) && d.a*h >= lo {
 					continue
 				}
-				if taken != lo && lo > 0 {
-					if !s.retakeTo(lo, &taken) {
-						return 0, s.lastOutcome
-					}
+				if lo > 0 && !s.retakeTo(lo) {
+					return 0, s.lastOutcome
 				}
 				if lo <= 0 {
 					break
@@ -375,21 +375,21 @@ func (s *Solver) locateEvents(h, tEnd float64) (float64, outcome) {
 			if i == first || !d.on || d.root*h > end+16*tol+1e-6*h {
 				continue
 			}
-			if !s.retakeTo(end, &taken) {
+			if !s.retakeTo(end) {
 				return 0, s.lastOutcome
 			}
 			if yes, _ := s.crossed(i, s.t+s.dir*end); yes {
 				continue
 			}
 			x := min(end+16*tol, h)
-			if !s.retakeTo(x, &taken) {
+			if !s.retakeTo(x) {
 				return 0, s.lastOutcome
 			}
 			if yes, _ := s.crossed(i, s.t+s.dir*x); yes {
 				end = x
 			}
 		}
-		if !s.retakeTo(end, &taken) {
+		if !s.retakeTo(end) {
 			return 0, s.lastOutcome
 		}
 		te := tEnd
@@ -408,11 +408,14 @@ func (s *Solver) locateEvents(h, tEnd float64) (float64, outcome) {
 			}
 		}
 		if ev.hits[first] {
+			if !s.completeTaken() {
+				return 0, s.lastOutcome
+			}
 			return end, outcomeOK
 		}
 		c.on = false
 	}
-	if !s.retakeTo(h, &taken) {
+	if !s.retakeTo(h) || !s.completeTaken() {
 		return 0, s.lastOutcome
 	}
 	return h, outcomeOK
@@ -425,36 +428,62 @@ func (s *Solver) second(i int) bool {
 	return s.ev.side[i] == s.ev.cand[i].sense
 }
 
-func (s *Solver) retakeTo(x float64, taken *float64) bool {
-	if x == *taken {
+// retakeTo makes x the length of the step last taken, as far as its state goes.
+func (s *Solver) retakeTo(x float64) bool {
+	ev := &s.ev
+	if x == ev.taken {
 		return true
 	}
-	if !s.retake(x) {
+	if !s.retakeState(x) {
 		s.gd.hRetry = 0.5 * x
 		return false
 	}
-	*taken = x
+	ev.taken, ev.whole = x, false
+	return true
+}
+
+// completeTaken completes the step last taken.
+func (s *Solver) completeTaken() bool {
+	ev := &s.ev
+	if !ev.whole && !s.retakeRest(ev.taken) {
+		s.gd.hRetry = 0.5 * ev.taken
+		return false
+	}
+	ev.whole = true
 	return true
 }
 
 // locateOne brackets the crossing of candidate i by steps taken again. It
 // returns lengths just before and just after it; ok is false if the candidate
 // does not cross.
-func (s *Solver) locateOne(i int, h, tol float64, taken *float64) (lo, hi float64, ok bool, o outcome) {
+func (s *Solver) locateOne(i int, h, tol float64) (lo, hi float64, ok bool, o outcome) {
 	c := &s.ev.cand[i]
 	eval := func(x float64) (float64, bool) {
-		if !s.retakeTo(x, taken) {
+		if !s.retakeTo(x) {
 			return 0, false
 		}
 		_, v := s.crossed(i, s.t+s.dir*x)
 		return v, true
 	}
 	a, b := c.a*h, c.b*h
-	x := min(max(c.root*h, a), b)
 	fail := func() (float64, float64, bool, outcome) { return 0, 0, false, s.lastOutcome }
-	// A narrow bracket around the root on the dense output, widened until it
-	// holds the crossing.
+	x := min(max(c.root*h, a), b)
+	// The slope on the dense output leads from its root to that of the steps
+	// taken again, and tells how wide a bracket to try first.
 	w := max(tol, 1e-6*(b-a))
+	d := max(1e-3*(b-a), 64*tol)
+	dlo, dhi := max(x-d, a), min(x+d, b)
+	if s.ev.taken == h && dlo < x && x < dhi && x < h {
+		slope := float64(c.sense) * (s.eventAt(i, s.dir*h, dhi/h) - s.eventAt(i, s.dir*h, dlo/h)) / (dhi - dlo)
+		v, fine := eval(x)
+		if !fine {
+			return fail()
+		}
+		if by := -v / slope; slope > 0 && math.Abs(by) < d {
+			x += by
+			w = max(tol, 0.01*math.Abs(by))
+		}
+	}
 	hi = min(x+w, h)
 	if h-hi <= tol {
 		hi = h
@@ -473,7 +502,6 @@ func (s *Solver) locateOne(i int, h, tol float64, taken *float64) (lo, hi float6
 	if fhi < 0 {
 		return 0, 0, false, outcomeOK
 	}
-	w = max(tol, 1e-6*(b-a))
 	lo = max(min(x, hi)-w, a)
 	flo := math.Inf(-1)
 	for lo > a {

@@ -796,15 +796,25 @@ func (s *Solver) stabilityChanged() bool {
 
 // retake takes the step from the same start again with length h > 0.
 func (s *Solver) retake(h float64) bool {
+	return s.retakeState(h) && s.retakeRest(h)
+}
+
+// retakeState is retake as far as the state at the end goes, without f and the
+// Jacobian there.
+func (s *Solver) retakeState(h float64) bool {
 	s.stats.Retaken++
 	s.clip = false
 	s.ev.stale = true
-	tEnd := s.t + s.dir*h
-	o := s.attempt(s.dir*h, tEnd)
-	if o != outcomeOK {
+	if s.attempt(s.dir*h, s.t+s.dir*h) != outcomeOK {
 		return false
 	}
 	s.project()
+	return true
+}
+
+// retakeRest completes what retakeState has begun.
+func (s *Solver) retakeRest(h float64) bool {
+	tEnd := s.t + s.dir*h
 	if !s.finish(tEnd) {
 		s.lastOutcome = outcomeNonFinite
 		return false

@@ -69,6 +69,7 @@ type Solver struct {
 	tPrev         float64
 	y, yPrev      []float64
 	y1, f1, errv  []float64
+	errW          []float64 // inverse of the tolerance of each component in the attempted step
 	f0, dfdt      []float64
 	jac           []float64
 	dfdt1, jac1   []float64
@@ -183,7 +184,7 @@ func NewSolver(p *Problem, st *Settings) (*Solver, error) {
 
 	vec := func() []float64 { return make([]float64, n) }
 	s.y, s.yPrev, s.y1, s.f0, s.f1 = vec(), vec(), vec(), vec(), vec()
-	s.errv, s.dfdt, s.dfdt1, s.rs = vec(), vec(), vec(), vec()
+	s.errv, s.errW, s.dfdt, s.dfdt1, s.rs = vec(), vec(), vec(), vec(), vec()
 	s.arg, s.rhs, s.sol, s.fs, s.interp = vec(), vec(), vec(), vec(), vec()
 	size, wsize := n*n, n*n
 	if b := p.Band; b != nil {
@@ -389,12 +390,18 @@ func (s *Solver) attempt(h, tEnd float64) outcome {
 	}
 	// Root mean square of the scaled error estimate.
 	sum, worst, comp := 0.0, -1.0, -1
-	for i, e := range s.errv {
-		a, b := math.Abs(s.y[i]), math.Abs(s.y1[i])
+	y, y1, wt, atol := s.y[:s.n], s.y1[:s.n], s.errW[:s.n], s.atol[:s.n]
+	for i, e := range s.errv[:s.n] {
+		a, b := math.Abs(y[i]), math.Abs(y1[i])
 		if b > a {
 			a = b
 		}
-		e /= s.atol[i] + s.rtol*a
+		w := 1 / (atol[i] + s.rtol*a)
+		if w > math.MaxFloat64 {
+			w = math.MaxFloat64
+		}
+		wt[i] = w
+		e *= w
 		e *= e
 		sum += e
 		if e > worst {
@@ -448,9 +455,8 @@ func (s *Solver) denseError(h, tEnd float64) (float64, int) {
 			s.rodasDense()
 		}
 		sum := 0.0
-		for k := range n {
-			sc := s.atol[k] + s.rtol*max(math.Abs(s.y[k]), math.Abs(s.y1[k]))
-			sum += sq(s.dense[3*k+2] / sc)
+		for k, w := range s.errW[:n] {
+			sum += sq(s.dense[3*k+2] * w)
 		}
 		if 0.1055*math.Sqrt(sum/float64(n)) <= 1 { // max of θ³(1−θ)
 			return 0, 0
@@ -467,7 +473,7 @@ func (s *Solver) denseError(h, tEnd float64) (float64, int) {
 	s.solve(s.sol, s.rhs)
 	sum, worst, comp := 0.0, -1.0, 0
 	for k, v := range s.sol {
-		v = sq(v / (s.atol[k] + s.rtol*max(math.Abs(s.y[k]), math.Abs(s.y1[k]))))
+		v = sq(v * s.errW[k])
 		sum += v
 		if v > worst {
 			worst, comp = v, k
