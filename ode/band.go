@@ -133,8 +133,9 @@ func factorPenta(a []float64, piv []int, rs []float64, n int) int {
 	return k
 }
 
-// solvePenta is bandSolve for two diagonals on each side and n ≥ 3.
-func solvePenta(a []float64, piv []int, n int, x, b []float64) {
+// solvePenta is bandSolve or cbandSolve for two diagonals on each side and
+// n ≥ 3.
+func solvePenta[T float64 | complex128](a []T, piv []int, n int, x, b []T) {
 	piv, x, b = piv[:n], x[:n], b[:n]
 	x0, x1, x2 := b[0], b[1], b[2]
 	for k := range n - 2 {
@@ -144,7 +145,7 @@ func solvePenta(a []float64, piv []int, n int, x, b []float64) {
 		case 2:
 			x0, x2 = x2, x0
 		}
-		r := (*[8]float64)(a[k*7+7:]) // row k+1 and the first of row k+2
+		r := (*[8]T)(a[k*7+7:]) // row k+1 and the first of row k+2
 		x[k] = x0
 		x0, x1 = x1-r[1]*x0, x2-r[7]*x0
 		if k+3 < n {
@@ -160,9 +161,11 @@ func solvePenta(a []float64, piv []int, n int, x, b []float64) {
 	r := a[(n-2)*7:]
 	y0 := (x0 - r[3]*y1) * r[2]
 	x[n-2] = y0
-	y1, y2, y3, y4 := y0, y1, 0.0, 0.0
+	y2 := y1
+	y1 = y0
+	var y3, y4 T
 	for k := n - 3; k >= 0; k-- {
-		r := (*[7]float64)(a[k*7:])
+		r := (*[7]T)(a[k*7:])
 		v := (x[k] - r[6]*y4 - r[5]*y3 - r[4]*y2 - r[3]*y1) * r[2]
 		x[k] = v
 		y1, y2, y3, y4 = v, y1, y2, y3
@@ -175,7 +178,13 @@ func solvePenta(a []float64, piv []int, n int, x, b []float64) {
 // exchanged with row k. The diagonal of U is stored inverted.
 func cbandFactor(a []complex128, piv []int, rs []float64, n, kl, ku int) bool {
 	w := 2*kl + ku + 1
-	for k := 0; k < n; k++ {
+	start := 0
+	if kl == 2 && ku == 2 {
+		if start = cfactorPenta(a, piv, rs, n); start < 0 {
+			return false
+		}
+	}
+	for k := start; k < n; k++ {
 		last := min(k+kl, n-1)
 		p, best := k, abs1(a[k*w+kl])*rs[k]
 		for i := k + 1; i <= last; i++ {
@@ -217,9 +226,61 @@ func cbandFactor(a []complex128, piv []int, rs []float64, n, kl, ku int) bool {
 	return true
 }
 
+// cfactorPenta is cbandFactor for two diagonals on each side, up to the last
+// rows. It returns the column where it stopped, or -1 for an unusable pivot.
+func cfactorPenta(a []complex128, piv []int, rs []float64, n int) int {
+	k := 0
+	for ; k+6 < n; k++ {
+		r0 := (*[21]complex128)(a[k*7:]) // rows k, k+1, k+2
+		p0, p1, p2 := r0[2], r0[8], r0[14]
+		at, best := k, abs1(p0)*rs[k]
+		if v := abs1(p1) * rs[k+1]; v > best {
+			at, best = k+1, v
+		}
+		if v := abs1(p2) * rs[k+2]; v > best {
+			at = k + 2
+		}
+		piv[k] = at
+		switch at - k {
+		case 1:
+			p0, p1 = p1, p0
+			r0[3], r0[9] = r0[9], r0[3]
+			r0[4], r0[10] = r0[10], r0[4]
+			r0[5], r0[11] = r0[11], r0[5]
+			r0[6], r0[12] = r0[12], r0[6]
+		case 2:
+			p0, p2 = p2, p0
+			r0[3], r0[15] = r0[15], r0[3]
+			r0[4], r0[16] = r0[16], r0[4]
+			r0[5], r0[17] = r0[17], r0[5]
+			r0[6], r0[18] = r0[18], r0[6]
+		}
+		r := cinv(p0)
+		if z := abs1(r); !(z <= math.MaxFloat64) || z == 0 {
+			return -1
+		}
+		u1, u2, u3, u4 := r0[3], r0[4], r0[5], r0[6]
+		l1, l2 := p1*r, p2*r
+		r0[2], r0[8], r0[14] = r, l1, l2
+		r0[9] -= l1 * u1
+		r0[10] -= l1 * u2
+		r0[11] -= l1 * u3
+		r0[12] -= l1 * u4
+		r0[15] -= l2 * u1
+		r0[16] -= l2 * u2
+		r0[17] -= l2 * u3
+		r0[18] -= l2 * u4
+	}
+	return k
+}
+
 // cbandSolve solves with the factors of cbandFactor.
 func cbandSolve(a []complex128, piv []int, n, kl, ku int, x, b []complex128) {
 	w := 2*kl + ku + 1
+	if kl == 2 && ku == 2 && n >= 3 {
+		solvePenta(a, piv, n, x, b)
+		return
+	}
 	copy(x, b)
 	for k := 0; k < n; k++ {
 		if p := piv[k]; p != k {

@@ -363,7 +363,7 @@ func (s *Solver) oddBand(jac []float64, c float64) bool {
 
 // oddState judges a large whole Jacobian by determinants alone: count is 1 if
 // an odd number of real eigenvalues grows, and re then bounds the fastest of
-// them from above within a factor of two.
+// them from above, within a factor of two where that matters.
 func (s *Solver) oddState(jac []float64, sig float64) blockState {
 	odd := s.oddBand
 	if s.band == nil {
@@ -377,9 +377,16 @@ func (s *Solver) oddState(jac []float64, sig float64) blockState {
 	if !grows {
 		return st
 	}
-	// The bound of the last step is a good one to begin with.
-	if old := 0.5 * s.gd.cur[0].re; s.gd.cur[0].count == 1 && old > c && odd(jac, old) {
-		c = old
+	// The bound of the last step is a good one to begin with, and need not be
+	// sharp while steps resolve it well.
+	if old := s.gd.cur[0].re; s.gd.cur[0].count == 1 && old > c {
+		if s.probeStep()*old < 0.25*s.limit && !odd(jac, old) {
+			st.count, st.re = 1, old
+			return st
+		}
+		if odd(jac, 0.5*old) {
+			c = 0.5 * old
+		}
 	}
 	for range 60 {
 		c *= 2

@@ -644,7 +644,11 @@ func TestBandedSolve(t *testing.T) {
 					a[i*w+j-i+kl] = v
 				}
 			}
-			if !bandFactor(a, piv, rs, n, kl, ku) {
+			ca, cpiv := make([]complex128, len(a)), make([]int, n)
+			for i, v := range a {
+				ca[i] = complex(0, v) // i A (−i x) = b
+			}
+			if !bandFactor(a, piv, rs, n, kl, ku) || !cbandFactor(ca, cpiv, rs, n, kl, ku) {
 				t.Fatalf("n = %d, band %v: singular", n, width)
 			}
 			b, x := make([]float64, n), make([]float64, n)
@@ -652,13 +656,19 @@ func TestBandedSolve(t *testing.T) {
 				b[i] = r.NormFloat64()
 			}
 			bandSolve(a, piv, n, kl, ku, x, b)
+			cb, cx := make([]complex128, n), make([]complex128, n)
+			for i, v := range b {
+				cb[i] = complex(v, 0)
+			}
+			cbandSolve(ca, cpiv, n, kl, ku, cx, cb)
 			var want mat.VecDense
 			if err := want.SolveVec(full, mat.NewVecDense(n, b)); err != nil {
 				continue // nearly singular
 			}
 			for i, v := range x {
-				if math.Abs(v-want.AtVec(i)) > 1e-9*mat.Norm(&want, math.Inf(1)) {
-					t.Fatalf("n = %d, band %v: x[%d] = %v, want %v", n, width, i, v, want.AtVec(i))
+				w := want.AtVec(i)
+				if tol := 1e-9 * mat.Norm(&want, math.Inf(1)); math.Abs(v-w) > tol || cabs(cx[i]-complex(0, -w)) > tol {
+					t.Fatalf("n = %d, band %v: x[%d] = %v and %v, want %v", n, width, i, v, cx[i], w)
 				}
 			}
 		}
