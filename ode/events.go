@@ -121,8 +121,15 @@ func (s *Solver) scan(tEnd float64) bool {
 		c.on = false
 		// Nothing to do while the function keeps its sign and varies less
 		// over the step than it is away from zero.
-		a, b, d := ev.gs[i*nSamples], ev.gs[i*nSamples+1], ev.gs[i*nSamples+2]
-		low, up := min(ev.g0[i], g1, a, b, d), max(ev.g0[i], g1, a, b, d)
+		low, up := ev.g0[i], ev.g0[i]
+		for _, v := range [...]float64{g1, ev.gs[i*nSamples], ev.gs[i*nSamples+1], ev.gs[i*nSamples+2]} {
+			if v < low || v != v {
+				low = v
+			}
+			if v > up || v != v {
+				up = v
+			}
+		}
 		if low > 0 && up < 2*low || up < 0 && low > 2*up {
 			continue
 		}

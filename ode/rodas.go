@@ -120,9 +120,12 @@ func (s *Solver) rodasInterp(dst []float64, y0, y1 []float64, th float64) {
 	if !s.denseReady {
 		s.rodasDense()
 	}
+	n := len(dst)
+	y0, y1, dense := y0[:n], y1[:n], s.dense[:3*n]
+	om := 1 - th
 	for k := range dst {
-		d := (*[3]float64)(s.dense[k*3:])
-		dst[k] = (1-th)*y0[k] + th*(y1[k]+(1-th)*(d[0]+th*(d[1]+th*d[2])))
+		d := (*[3]float64)(dense[k*3:])
+		dst[k] = om*y0[k] + th*(y1[k]+om*(d[0]+th*(d[1]+th*d[2])))
 	}
 }
 
