@@ -7,6 +7,8 @@ import (
 	"encoding/binary"
 	"math"
 	"sort"
+
+	"cycle/reports/internal/num"
 )
 
 // A Column is one quantity of the data behind the figures, in shown units.
@@ -24,6 +26,28 @@ type Column struct {
 type Data struct {
 	Columns []Column
 	Rows    int
+
+	drop int // bits of the mantissa left out, so that a long history stays small
+}
+
+// settle leaves out digits until the rows take no more than room, in characters.
+// All rows stay: a history of hundreds of cycles can still be zoomed.
+func (d *Data) settle(sets [][]int, room int) error {
+	for _, d.drop = range []int{0, 3, 6, 9, 12} {
+		s, err := d.pack(sets)
+		if err != nil || len(s) <= room {
+			return err
+		}
+	}
+	return nil
+}
+
+// Precision says how exact the rows of the page are. Finish must have been called.
+func (d *Data) Precision() string {
+	if d.drop == 0 {
+		return "in single precision, about seven digits"
+	}
+	return "rounded to " + num.Pretty(num.Short(math.Pow(2, float64(d.drop-24)), 2)) + " of each value, so that the page stays small"
 }
 
 // Column returns the column of a name, or nil.
@@ -76,6 +100,8 @@ func (d *Data) pack(sets [][]int) (string, error) {
 			bits := math.Float32bits(f)
 			if f != f {
 				bits = 0x7fc00000
+			} else if d.drop > 0 && bits&0x7f800000 < 0x7f000000 {
+				bits = (bits + 1<<(d.drop-1)) &^ (1<<d.drop - 1)
 			}
 			diff := bits - before
 			words[j] = uint64(diff<<1 ^ uint32(int32(diff)>>31)) // small for both signs

@@ -45,6 +45,7 @@ type Document struct {
 	Body    any    // what the template "body" is given
 	Data    *Data
 	Figures []*Figure
+	Room    int // characters the rows may take; 0 for what a page of many histories has
 
 	// The time axis all figures share.
 	Episodes []Episode
@@ -107,7 +108,22 @@ func (d *Document) Finish() error {
 		}
 	}
 	d.Figures = figures
-	return nil
+	room := d.Room
+	if room == 0 {
+		room = 1300e3 // in a page of 2 MB
+	}
+	return d.Data.settle(d.sets(), room)
+}
+
+// sets are the rows that are drawn of each curve.
+func (d *Document) sets() [][]int {
+	var sets [][]int
+	for _, f := range d.Figures {
+		for _, c := range f.Curves {
+			sets = append(sets, c.set)
+		}
+	}
+	return sets
 }
 
 // Write writes the document as one HTML file. Finish must have been called.
@@ -118,13 +134,10 @@ func (d *Document) Write(w io.Writer, t *template.Template) error {
 	}
 	style := paletteCSS() + roleCSS() + css + d.heights()
 
-	var sets [][]int
+	sets := d.sets()
 	specs := []any{}
 	for _, f := range d.Figures {
 		specs = append(specs, f.spec())
-		for _, c := range f.Curves {
-			sets = append(sets, c.set)
-		}
 	}
 	columns := []any{}
 	for _, c := range d.Data.Columns {
