@@ -17,10 +17,11 @@ import (
 //go:embed compare.tmpl
 var compareTemplate string
 
-var comparePage = template.Must(page.Parse("compare", plotTemplate+compareTemplate, plotFuncs))
+var comparePage = template.Must(page.Parse("compare", reuseTemplate+plotTemplate+compareTemplate, plotFuncs))
 
 type compareBody struct {
 	*record.Comparison
+	reuse
 	Heading, AgreeWords string
 	Command             string
 	Names               []string
@@ -84,6 +85,13 @@ func CompareHTML(w io.Writer, c *record.Comparison) error {
 		}
 		b.Results = append(b.Results, row)
 		b.Facts = append(b.Facts, fact{Name: "Hash of " + clean(r.Name), Value: clean(r.Hash)})
+	}
+	b.reuse = reuseOf(methodsOfComparison(c), c.Works)
+	for i, r := range c.Runs {
+		if r.Scenario != "" && i < len(c.Names) {
+			id := fmt.Sprintf("scenario-%d", i+1)
+			b.Scenarios = append(b.Scenarios, savedText{id, clip(clean(c.Names[i]), 80), id + ".toml", r.Scenario})
+		}
 	}
 	doc := &page.Document{Title: clip(b.Heading, 120) + " – cycle", Label: clip(clean(strings.Join(c.Names, ", ")), 90) + "  ·  cycle " + clip(clean(c.Version), 20), File: "compare", Data: comparedData(c), Figures: comparedFigures(c), Outcome: nan(), Present: nan()}
 	if len(c.Runs) > 0 && c.Runs[0].ReferenceAgeGyr != 0 {

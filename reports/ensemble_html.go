@@ -17,10 +17,11 @@ import (
 //go:embed ensemble.tmpl
 var ensembleTemplate string
 
-var ensemblePage = template.Must(page.Parse("ensemble", plotTemplate+ensembleTemplate, plotFuncs))
+var ensemblePage = template.Must(page.Parse("ensemble", reuseTemplate+plotTemplate+ensembleTemplate, plotFuncs))
 
 type ensembleBody struct {
 	*record.Ensemble
+	reuse
 	ShortTitle, CountWords, Heading, CountNote string
 	Fates                                      []fateRow
 	Doubts                                     []string
@@ -77,6 +78,7 @@ func EnsembleHTML(w io.Writer, e *record.Ensemble) error {
 	for _, x := range e.Warnings {
 		b.Doubts = append(b.Doubts, typeset(clean(x.Words)))
 	}
+	b.reuse = reuseOf(methodsOfEnsemble(e), e.Works)
 	b.fates()
 	b.decides()
 	b.byLaw()

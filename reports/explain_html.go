@@ -22,7 +22,7 @@ var explainTemplate string
 // plotFuncs are what drawings without a script need beside the kit.
 var plotFuncs = template.FuncMap{"typeset": typeset, "dash": dashName, "sub": func(a, b float64) float64 { return round1(a - b) }}
 
-var explainPage = template.Must(page.Parse("explain", plotTemplate+explainTemplate, plotFuncs))
+var explainPage = template.Must(page.Parse("explain", reuseTemplate+plotTemplate+explainTemplate, plotFuncs))
 
 // blotOf is a fate as a coloured spot with words.
 type blotOf struct{ Role, Pattern, Outcome, Date string }
@@ -40,6 +40,7 @@ func blot(k record.Kind, gyr float64, censored bool) blotOf {
 
 type explainBody struct {
 	*record.Explanation
+	reuse
 	ShortTitle, Heading, Command         string
 	ElasticWords                         string
 	CauseWords, RescueWords, SpreadWords string
@@ -126,6 +127,7 @@ func ExplainHTML(w io.Writer, e *record.Explanation) error {
 	if known(doc.Present) {
 		b.Clock = "before " + num.Short(doc.Present, 4) + " Gyr"
 	}
+	b.reuse = reuseOf(methodsOfWhy(e), e.Works)
 	b.fill()
 	doc.Body = b
 	return doc.Write(w, explainPage)

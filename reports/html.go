@@ -19,7 +19,7 @@ import (
 //go:embed run.tmpl
 var runTemplate string
 
-var runPage = template.Must(page.Parse("run", runTemplate, template.FuncMap{"typeset": typeset}))
+var runPage = template.Must(page.Parse("run", reuseTemplate+runTemplate, template.FuncMap{"typeset": typeset}))
 
 // Licences returns the notices and licences of everything a report embeds.
 func Licences() string { return assets.Licences() }
@@ -56,12 +56,14 @@ func runDocument(r *record.Run) (*page.Document, error) {
 		Episodes: episodesOf(r),
 		Marks:    railMarks(groups),
 		Outcome:  outcome,
+		Room:     440e3, // so that the page of one history stays below 1 MB
 		Present:  present,
 	}
 	if err := doc.Finish(); err != nil {
 		return nil, err
 	}
 	b := &runBody{Run: r, Figures: doc.Figures, Licences: Licences(), Clock: ""}
+	b.Precision = doc.Data.Precision()
 	if known(present) {
 		b.Clock = "before " + num.Short(present, 4) + " Gyr"
 	}
@@ -134,6 +136,7 @@ type runBody struct {
 	Licences string
 	Clock    string
 
+	Precision                      string // of the rows in the page
 	Heading, ShortTitle, FullTitle string
 	Why                            string
 	Kind, Role                     string
@@ -148,9 +151,8 @@ type runBody struct {
 	InputGroups                    []inputGroup
 	Changed, Outside               int
 	LawRows                        []record.Law
-	Methods                        string
-	BibTeX                         string
-	File                           string
+	reuse
+	File string
 }
 
 // A fact is a number with its name.
@@ -203,15 +205,7 @@ func (b *runBody) fill() {
 		}
 	}
 	b.LawRows = r.Laws
-	b.Methods = methods(r)
-	var bib strings.Builder
-	for i, w := range r.Works {
-		if i > 0 {
-			bib.WriteString("\n")
-		}
-		bib.WriteString(strings.TrimSpace(w.BibTeX) + "\n")
-	}
-	b.BibTeX = bib.String()
+	b.reuse = reuseOf(methodsOf(r), r.Works)
 	b.File = fileStem(r.Name)
 }
 

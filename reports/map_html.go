@@ -16,10 +16,11 @@ import (
 //go:embed map.tmpl
 var mapTemplate string
 
-var mapPage = template.Must(page.Parse("map", plotTemplate+mapTemplate, plotFuncs))
+var mapPage = template.Must(page.Parse("map", reuseTemplate+plotTemplate+mapTemplate, plotFuncs))
 
 type mapBody struct {
 	*record.Map
+	reuse
 	ShortTitle, Heading, Meant, Made string
 	Command                          string
 	Plots                            []*plot
@@ -53,6 +54,7 @@ func MapHTML(w io.Writer, m *record.Map) error {
 	for _, l := range m.Lines {
 		b.LineNotes = append(b.LineNotes, sentence(l.Name+": "+l.Words))
 	}
+	b.reuse = reuseOf(methodsOfMap(m), m.Works)
 	b.plots()
 	mapNumbers(b.Plots, m)
 	if m.Run != nil {
