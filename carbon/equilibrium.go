@@ -24,7 +24,12 @@ func (m *Model) pressures() (lo, hi float64) {
 
 // imbalance returns (S/4)(1 − A) − F in W/m² for mean sunlight sun = S/4.
 func (m *Model) imbalance(sun, t, p float64) float64 {
-	return sun*(1-m.set.albedo.law.Planetary(t, p)) - m.set.radiation.law.Outgoing(t, p, elementary.Log(p))
+	return m.imbalanceAt(sun, t, p, elementary.Log(p))
+}
+
+// imbalanceAt is imbalance where lnp = ln(p/1 bar) is known.
+func (m *Model) imbalanceAt(sun, t, p, lnp float64) float64 {
+	return sun*(1-m.set.albedo.law.Planetary(t, p)) - m.set.radiation.law.Outgoing(t, p, lnp)
 }
 
 // balance inverts the energy balance: the lowest CO₂ pressure in bar at which
@@ -33,7 +38,7 @@ func (m *Model) imbalance(sun, t, p float64) float64 {
 func (m *Model) balance(sun, t float64) (p float64, low, high bool) {
 	lo, hi := m.pressures()
 	x0, x1 := elementary.Log(lo), elementary.Log(hi)
-	g := func(x float64) float64 { return m.imbalance(sun, t, elementary.Exp(x)) }
+	g := func(x float64) float64 { return m.imbalanceAt(sun, t, elementary.Exp(x), x) }
 	const parts = 16
 	a, ga := x0, g(x0)
 	if ga > 0 {
@@ -50,15 +55,26 @@ func (m *Model) balance(sun, t float64) (p float64, low, high bool) {
 	return hi, false, true
 }
 
-// balanceNear is balance where the pressure next to it is known, by its
-// logarithm; it finds the same root while that moves by less than 0.3.
-func (m *Model) balanceNear(sun, t, near float64) (p float64, low, high bool) {
+// balanceNear is balance where something is known of the logarithm of the
+// pressure: it finds the same root while that lies within 0.02 of what is
+// expected, or within 0.3 of near. NaN stands for nothing known.
+func (m *Model) balanceNear(sun, t, near, expected float64) (p float64, low, high bool) {
 	lo, hi := m.pressures()
-	g := func(x float64) float64 { return m.imbalance(sun, t, elementary.Exp(x)) }
-	if a, b := near-0.3, near+0.3; a > elementary.Log(lo) && b < elementary.Log(hi) && m.imbalance(sun, t, lo) <= 0 {
-		if ga, gb := g(a), g(b); ga <= 0 && gb > 0 {
-			return elementary.Exp(bracketed(g, a, b, ga, gb, 1e-13)), false, false
+	g := func(x float64) float64 { return m.imbalanceAt(sun, t, elementary.Exp(x), x) }
+	x0, x1 := elementary.Log(lo), elementary.Log(hi)
+	within := func(a, b float64) bool {
+		if !(a > x0 && b < x1) {
+			return false
 		}
+		ga, gb := g(a), g(b)
+		if !(ga <= 0 && gb > 0) {
+			return false
+		}
+		p = elementary.Exp(bracketed(g, a, b, ga, gb, 1e-13))
+		return true
+	}
+	if !math.IsNaN(near) && g(x0) <= 0 && (within(expected-0.02, expected+0.02) || within(near-0.3, near+0.3)) {
+		return p, false, false
 	}
 	return m.balance(sun, t)
 }
@@ -113,6 +129,16 @@ func (m *Model) growth(sun, t, p, c, alk float64) float64 {
 	}, t, &fd.Settings{Formula: fivePoint, Step: 1e-2})
 }
 
+// grows tells whether growth is positive, at half its cost.
+func (m *Model) grows(sun, t, c, alk float64) bool {
+	side := func(x float64) float64 {
+		p, _ := m.set.ocean.law.Pressure(c, alk, x)
+		return m.imbalance(sun, x, p)
+	}
+	const h = 1e-2 // K
+	return side(t+h) >= side(t-h)
+}
+
 // steady is a state in energy balance at one age, with the sinks there.
 type steady struct {
 	row  record.Row // T, p, albedo, ice, sinks, surface carbon
@@ -131,23 +157,36 @@ func (m *Model) steadyAt(d *memo, t float64) (s steady, low, high bool) {
 
 // steadyWith completes a state that is in balance at temperature t and CO₂
 // pressure p.
-func (m *Model) steadyWith(d *memo, t, p float64) (s steady) {
+func (m *Model) steadyWith(d *memo, t, p float64) steady {
+	s := m.sinksWith(d, t, p)
+	s.grow = m.growth(d.sun, t, p, s.row.Surface, s.alk)
+	return s
+}
+
+// sinksWith is steadyWith but for grow.
+func (m *Model) sinksWith(d *memo, t, p float64) (s steady) {
 	r := &s.row
 	r.Age, r.Temperature, r.PCO2 = d.age, t, p
 	r.Sunlight, r.LandFraction, r.Biology, r.Crust = 4*d.sun, d.land, d.biology, d.flow.Crust
 	r.Albedo = m.set.albedo.law.Planetary(t, p)
 	r.Ice = m.set.albedo.law.IceFraction(t)
-	c, alk := m.carbonAt(p, t, m.ref.Total()*m.area)
 	lnp := elementary.Log(p)
-	_, lnh := m.set.ocean.law.Pressure(c, alk, t)
-	m.weather(r, lnp, lnh)
-	if m.pair != nil {
-		c, alk = m.carbonAt(p, t, r.Land+r.Seafloor)
-		_, lnh = m.set.ocean.law.Pressure(c, alk, t)
+	weather := func(c, alk float64) {
+		lnh := math.NaN()
+		if m.acidic {
+			_, lnh = m.set.ocean.law.Pressure(c, alk, t)
+		}
 		m.weather(r, lnp, lnh)
 	}
+	c, alk := m.carbonAt(p, t, m.ref.Total()*m.area)
+	weather(c, alk)
+	if m.pair != nil {
+		c, alk = m.carbonAt(p, t, r.Land+r.Seafloor)
+		if m.acidic {
+			weather(c, alk)
+		}
+	}
 	r.Surface, s.alk = c, alk
-	s.grow = m.growth(d.sun, t, p, c, alk)
 	return s
 }
 
@@ -240,18 +279,18 @@ func (m *Model) start() (y State, words string) {
 	d := m.drive(s.Start, y.MantleT, y.CoreT)
 	total := m.content * s.Mass
 
+	// What leaves the reservoirs of carbonate, per yr.
+	in := outgas.Input{Age: m.hold.at(driveSources, s.Start), Crust: d.flow.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale}
+	in.Seafloor, in.Continental = 1e20, 1e20
+	f := s.sources.law.Fluxes(&in)
+	ksub, kcont := f.Subducted/1e20, (f.Metamorphic+f.Foundered)/1e20
+
 	// fill completes a state in energy balance by the steady reservoirs and
 	// returns the imbalance of the surface, mol/yr.
 	fill := func(st *steady) (State, float64) {
 		z := y
 		z.T, z.Surface, z.Alk = st.row.Temperature, st.row.Surface, st.alk
-		in := outgas.Input{Age: m.hold.at(driveSources, s.Start), Crust: d.flow.Crust, Dilution: m.dilution, Area: m.area, Scale: m.scale}
-		probe := in
-		probe.Seafloor, probe.Continental = 1e20, 1e20
-		f := s.sources.law.Fluxes(&probe)
 		deposit := m.deposited * st.row.Land
-		ksub := f.Subducted / 1e20
-		kcont := (f.Metamorphic + f.Foundered) / 1e20
 		share := func(flux, k float64) float64 {
 			if k <= 0 {
 				return 0 // nothing leaves the reservoir: it starts empty
@@ -267,18 +306,28 @@ func (m *Model) start() (y State, words string) {
 	}
 
 	lo, hi := math.Max(s.FrozenBelow-90, s.radiation.law.Box().T.Lo+1), m.top()-1
-	const step = 0.5
-	near := math.NaN()
-	at := func(t float64) (State, float64, float64, bool) {
-		p, low, high := m.balanceNear(d.sun, t, near)
+	// Steps of the search in K, and how many of them at once while it is too hot.
+	const step, stride = 0.5, 4
+	// The last two balances, of which the second is the newer, tell where to
+	// look for the next.
+	nan := math.NaN()
+	lastT, lastX := [2]float64{nan, nan}, [2]float64{nan, nan} // T and ln p
+	// at completes the state in balance at t and returns the imbalance of the
+	// surface; hot tells that no CO₂ is enough for t.
+	at := func(t float64) (z State, r float64, ok, hot bool) {
+		expected := lastX[1] + (lastX[1]-lastX[0])/(lastT[1]-lastT[0])*(t-lastT[1])
+		p, low, high := m.balanceNear(d.sun, t, lastX[1], expected)
 		if low || high {
-			return State{}, 0, 0, false
+			return z, 0, false, high
 		}
-		near = elementary.Log(p)
-		st := m.steadyWith(d, t, p)
-		z, r := fill(&st)
-		return z, r, st.grow, true
+		if t != lastT[1] {
+			lastT, lastX = [2]float64{lastT[1], t}, [2]float64{lastX[1], elementary.Log(p)}
+		}
+		st := m.sinksWith(d, t, p)
+		z, r = fill(&st)
+		return z, r, true, false
 	}
+	stable := func(z *State) bool { return !m.grows(d.sun, z.T, z.Surface, z.Alk) }
 	// scan walks from one temperature to another and returns the first steady
 	// stable state; failing that, the last stable state before the branch ends.
 	scan := func(from, to float64, good func(t float64) bool) (best State, found, any bool) {
@@ -290,9 +339,14 @@ func (m *Model) start() (y State, words string) {
 				have = false
 				continue
 			}
-			z, r, grow, ok := at(t)
-			if !ok || grow >= 0 {
+			z, r, ok, hot := at(t)
+			if !ok || !stable(&z) {
 				have = false
+				for ahead := t + stride*h; hot && h < 0 && ahead >= to; ahead += stride * h {
+					if _, _, hot = m.balance(d.sun, ahead); hot {
+						t = ahead
+					}
+				}
 				// The end of the warm branch; far above ice another stretch of
 				// it may follow, where the hot side folds back on itself.
 				if any && h < 0 && t <= s.ThawedAbove {
@@ -302,7 +356,7 @@ func (m *Model) start() (y State, words string) {
 			}
 			if have && (pr < 0) != (r < 0) && pr*h > 0 {
 				x := bracketed(func(x float64) float64 { _, r, _, _ := at(x); return r }, pt, t, pr, r, 1e-10)
-				if z, _, grow, ok := at(x); ok && grow < 0 && z.Mantle > 0 {
+				if z, _, ok, _ := at(x); ok && stable(&z) && z.Mantle > 0 {
 					return z, true, true
 				}
 			}

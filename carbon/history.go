@@ -182,8 +182,13 @@ func (l *lookup) pressure(y []float64) float64 {
 		alk = y[lay.alk]
 	}
 	if l.t != t || l.c != c || l.alk != alk {
-		p, _ := l.m.set.ocean.law.Pressure(present(c), alk, t)
-		l.t, l.c, l.alk, l.lnp = t, c, alk, elementary.Log(p)
+		l.t, l.c, l.alk = t, c, alk
+		if a := l.m.airs.at(t, c, alk); a != nil {
+			l.lnp = a.lnp
+		} else {
+			p, _ := l.m.set.ocean.law.Pressure(present(c), alk, t)
+			l.lnp = elementary.Log(p)
+		}
 	}
 	return l.lnp
 }

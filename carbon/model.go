@@ -80,10 +80,27 @@ type air struct {
 	land, seafloor, use float64 // mol/yr, mol/yr, part of the supply limit
 }
 
-// airs keeps the last few.
+// airs keeps the last few: a state and what its Jacobian asks for next to it, in
+// temperature, surface carbon and alkalinity.
 type airs struct {
-	kept [3]air
+	kept [4]air
 	turn int
+}
+
+// at returns what is kept for a state, or nil.
+func (a *airs) at(t, c, alk float64) *air {
+	for i := range a.kept {
+		if k := &a.kept[i]; k.t == t && k.c == c && k.alk == alk {
+			return k
+		}
+	}
+	return nil
+}
+
+// next returns the place for another state.
+func (a *airs) next() *air {
+	a.turn = (a.turn + 1) % len(a.kept)
+	return &a.kept[a.turn]
 }
 
 // forget empties it.
@@ -109,14 +126,11 @@ func present(c float64) float64 {
 
 // breathe returns the air for a temperature, surface carbon and alkalinity.
 func (m *Model) breathe(t, c, alk float64) *air {
-	for i := range m.airs.kept {
-		if a := &m.airs.kept[i]; a.t == t && a.c == c && a.alk == alk {
-			return a
-		}
+	if a := m.airs.at(t, c, alk); a != nil {
+		return a
 	}
 	s := m.set
-	m.airs.turn = (m.airs.turn + 1) % len(m.airs.kept)
-	a := &m.airs.kept[m.airs.turn]
+	a := m.airs.next()
 	a.t, a.c, a.alk, a.age = t, c, alk, math.NaN()
 	if m.pair != nil {
 		var h, omega float64

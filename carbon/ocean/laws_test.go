@@ -2,6 +2,7 @@ package ocean
 
 import (
 	"math"
+	"math/rand/v2"
 	"testing"
 
 	"cycle/carbon/cite"
@@ -101,6 +102,29 @@ func TestRoundTrip(t *testing.T) {
 			}
 		}
 	})
+}
+
+// TestHydrogenToRounding: [H⁺] of the pair leaves nothing of the alkalinity
+// balance but rounding, also where the ocean is far from saturation.
+func TestHydrogenToRounding(t *testing.T) {
+	l := newPair().(*Pair)
+	if err := l.Bind(Planet{Area: units.EarthArea, Gravity: 9.81, Mass: 1.4e21}); err != nil {
+		t.Fatal(err)
+	}
+	rnd := rand.New(rand.NewPCG(1, 2))
+	for range 200000 {
+		k := l.At(200 + 200*rnd.Float64())
+		r := 1 + l.n/l.m*(units.BarPerAtm/k.K0)
+		dic := math.Exp(math.Log(1e-9) + rnd.Float64()*math.Log(1e10))
+		alk := dic * (3*rnd.Float64() - 0.5)
+		h := l.hydrogen(&k, r, dic, alk)
+		x, y := k.K1/h, k.K1*k.K2/(h*h)
+		b, w := l.Boron*k.KB/(k.KB+h), k.KW/h
+		c := dic * (x + 2*y) / (r + x + y)
+		if left := c + b + w - h - alk; !(math.Abs(left) <= 2e-15*(c+b+w+h+math.Abs(alk))) {
+			t.Fatalf("dic %g, alk %g: h %g leaves %g of the balance", dic, alk, h, left)
+		}
+	}
 }
 
 // TestPressure: what the rates are given is what Solve says, at temperatures in

@@ -41,7 +41,7 @@ type Pair struct {
 
 func newPair() Law { return &Pair{Seawater: newSeawater(), Omega: 5, Flux: 7.5e12, Order: 1.75} }
 
-// Solve finds h by Newton's method in ln h within a bracket. Every field is NaN
+// Solve finds h by Halley's method in ln h within a bracket. Every field is NaN
 // when c ≤ 0.
 func (l *Pair) Solve(c, alk, t float64) State {
 	if !(c > 0) || math.IsNaN(alk) {
@@ -96,17 +96,26 @@ func (l *Pair) hydrogen(k *Constants, r, dic, alk float64) float64 {
 	for range 200 {
 		u := 1 / h
 		x, y, w := k.K1*u, k12*u*u, k.KW*u
-		den, num := 1/(r+x+y), x+2*y
-		share := 1 / (k.KB + h)
-		b := l.Boron * k.KB * share
-		f := dic*num*den + b + w - h - alk
-		df := dic*(num*num*den-(x+4*y))*den - b*h*share - w - h // df/d ln h < 0
+		den, share := 1/(r+x+y), 1/(k.KB+h)
+		// Charge of a mole of carbon: mean and central moments of the species.
+		q, q2 := (x+2*y)*den, (x+4*y)*den
+		var2, var3 := q2-q*q, (x+8*y)*den+q*(2*q*q-3*q2)
+		b, part := l.Boron*k.KB*share, h*share
+		f := dic*q + b + w - h - alk
+		// Its derivatives in ln h; the first is negative.
+		f1 := -dic*var2 - b*part - w - h
+		f2 := dic*var3 + b*part*(2*part-1) + w - h
 		if f > 0 {
 			lo = h
 		} else {
 			hi = h
 		}
-		step := -f / df
+		step := -f * f1
+		if bend := f1*f1 - 0.5*f*f2; bend > 0 {
+			step /= bend
+		} else {
+			step /= f1 * f1
+		}
 		next := h * grow(step)
 		if !(next > lo && next < hi) {
 			if math.Abs(step) < 1e-12 {
@@ -116,7 +125,7 @@ func (l *Pair) hydrogen(k *Constants, r, dic, alk float64) float64 {
 			step = 1
 		}
 		h = next
-		if math.Abs(step) < 1e-6 { // the error left is of the order of its square
+		if math.Abs(step) < 5e-6 { // the error left is of the order of its cube
 			break
 		}
 	}

@@ -623,6 +623,18 @@ func TestFoleyBelowSupply(t *testing.T) {
 	}
 }
 
+// TestExpm1 compares with the standard library's, over the ends of the pieces.
+func TestExpm1(t *testing.T) {
+	for _, sign := range []float64{-1, 1} {
+		for a := 1e-18; a < 300; a *= 1.003 {
+			x := sign * a
+			if got, want := expm1(x), math.Expm1(x); !(math.Abs(got-want) <= 4e-16*math.Abs(want)) {
+				t.Errorf("expm1(%g) = %g, want %g", x, got, want)
+			}
+		}
+	}
+}
+
 // TestSeafloorWithoutTemperature: with no land and a seafloor that knows no
 // temperature the climate takes every change of forcing in full (Abbot et al.
 // 2012), and with one that does it does not.

@@ -2,7 +2,6 @@ package weathering
 
 import (
 	"fmt"
-	"math"
 
 	"cycle/carbon/cite"
 	"cycle/carbon/units"
@@ -54,10 +53,10 @@ func (l *Foley2015) kinetic(e *Env) float64 {
 }
 
 // Relative returns W/W₀.
-func (l *Foley2015) Relative(e *Env) float64 { return math.Expm1(-l.kappa*l.kinetic(e)) / l.full }
+func (l *Foley2015) Relative(e *Env) float64 { return expm1(-l.kappa*l.kinetic(e)) / l.full }
 
 // Saturation returns F_w/F_ws.
-func (l *Foley2015) Saturation(e *Env) float64 { return -math.Expm1(-l.kappa * l.kinetic(e)) }
+func (l *Foley2015) Saturation(e *Env) float64 { return -expm1(-l.kappa * l.kinetic(e)) }
 
 // Fields lists the parameters of k and F_ws.
 func (l *Foley2015) Fields() []units.Field {

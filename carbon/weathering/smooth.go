@@ -1,6 +1,10 @@
 package weathering
 
-import "cycle/ode/elementary"
+import (
+	"math"
+
+	"cycle/ode/elementary"
+)
 
 // least is the part of its reference value below which a runoff bracket leaves
 // the published straight line. Own choice: the papers stop at a few tens of
@@ -54,4 +58,16 @@ func power(s, nu float64) float64 {
 		return 1
 	}
 	return elementary.Exp(nu * elementary.Log(s))
+}
+
+// expm1 returns e^x − 1 to the last digits: by its series near 0, by the
+// exponential where the difference loses none.
+func expm1(x float64) float64 {
+	switch a := math.Abs(x); {
+	case a < 1./32:
+		return x + x*x*(1./2+x*(1./6+x*(1./24+x*(1./120+x*(1./720+x*(1./5040+x*(1./40320)))))))
+	case a > 0.4:
+		return elementary.Exp(x) - 1
+	}
+	return math.Expm1(x)
 }

@@ -40,7 +40,7 @@ func (l *Supply) Of(k float64) float64 {
 	if l.Limit == 0 {
 		return k
 	}
-	return math.Expm1(-l.kappa*k) / l.full
+	return expm1(-l.kappa*k) / l.full
 }
 
 // Use returns W/W_s at a relative kinetic flux k, 0 without a limit.
@@ -48,7 +48,7 @@ func (l *Supply) Use(k float64) float64 {
 	if l.Limit == 0 {
 		return 0
 	}
-	return -math.Expm1(-l.kappa * k)
+	return -expm1(-l.kappa * k)
 }
 
 // Fields lists those of the law inside and W_s.
@@ -78,5 +78,5 @@ func saturation(w0, limit float64) (kappa, full float64, err error) {
 		return 0, 0, fmt.Errorf("a supply limit of %.3g Tmol/yr must exceed the reference flux of %.3g Tmol/yr, which must be positive", limit/1e12, w0/1e12)
 	}
 	kappa = -math.Log1p(-w0 / limit)
-	return kappa, math.Expm1(-kappa), nil
+	return kappa, expm1(-kappa), nil
 }

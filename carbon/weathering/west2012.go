@@ -51,14 +51,14 @@ func newWest2012() Law {
 
 // exponent returns −K (1 − exp(−k_w q)) · …, the exponent of the outer bracket.
 func (l *West2012) exponent(e *Env) float64 {
-	return l.rate * math.Expm1(-l.wet*l.Runoff(e)) * elementary.Exp(l.er*(1/l.Tw-1/e.T))
+	return l.rate * expm1(-l.wet*l.Runoff(e)) * elementary.Exp(l.er*(1/l.Tw-1/e.T))
 }
 
 // Relative returns W/W₀.
-func (l *West2012) Relative(e *Env) float64 { return math.Expm1(l.exponent(e)) / l.full }
+func (l *West2012) Relative(e *Env) float64 { return expm1(l.exponent(e)) / l.full }
 
 // Saturation returns W/(E χ).
-func (l *West2012) Saturation(e *Env) float64 { return -math.Expm1(l.exponent(e)) }
+func (l *West2012) Saturation(e *Env) float64 { return -expm1(l.exponent(e)) }
 
 // Runoff returns 1 + ε ΔT.
 func (l *West2012) Runoff(e *Env) float64 { return bracket(1 + l.Epsilon*(e.T-l.t0)) }
@@ -86,7 +86,7 @@ func (l *West2012) Bind(ref Reference) error {
 	l.er = l.Ea / units.GasConstant
 	l.wet = l.Kw * l.Runoff0
 	l.rate = l.K * math.Pow(l.Regolith/l.Erosion, l.Sigma) / l.Sigma
-	l.full = math.Expm1(l.exponent(&Env{T: ref.T}))
+	l.full = expm1(l.exponent(&Env{T: ref.T}))
 	if !(l.full < 0) {
 		return errors.New("rate: no weathering at the reference state")
 	}
