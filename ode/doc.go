@@ -78,12 +78,14 @@
 // same steps with the guard and without.
 //
 // What is looked at: [Guard.Blocks], or the whole Jacobian. Blocks of up to four
-// components are judged by the Routh–Hurwitz criterion, and by their
-// eigenvalues where that leaves doubt. Larger ones are judged by the sign of a
-// determinant at every step, which shows an odd number of real growing modes,
-// and by their eigenvalues when an entry has changed by a fifth, which shows the
-// rest. Of a whole Jacobian of more than sixteen components only the determinant
-// is looked at; name blocks to see more.
+// components are judged by the Routh–Hurwitz criterion at every step, and by
+// their eigenvalues where that leaves doubt. Larger ones are judged by diagonal
+// dominance in some scaling, up to eight components by the Routh–Hurwitz
+// criterion, then by their eigenvalues; where dominance does not hold, a closer
+// look is taken only when an entry has changed by a fifth, and in between the
+// sign of a determinant shows an odd number of real growing modes. Of a whole
+// Jacobian of more than sixteen components only the determinant is looked at;
+// name blocks to see more.
 //
 // What the guard proves: at the end of each step, with the Jacobian there, and
 // with the tests above, no mode grows unreported. What it does not: that nothing
