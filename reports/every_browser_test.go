@@ -9,6 +9,7 @@ import (
 	"io"
 	"maps"
 	"math"
+	"math/rand/v2"
 	"os"
 	"path/filepath"
 	"reflect"
@@ -80,34 +81,36 @@ func TestEveryReport(t *testing.T) {
 		}
 	}
 	for _, name := range slices.Sorted(maps.Keys(pages)) {
-		for _, v := range []struct {
-			name          string
-			width, height int64
-			dark          bool
-		}{{"desktop", 1280, 800, false}, {"phone", 390, 844, true}} {
-			if name == "absurd" && v.name == "desktop" || name == "quessmere" && v.name == "phone" {
-				continue // the page of a run again
+		t.Run(name, func(t *testing.T) {
+			for _, v := range []struct {
+				name          string
+				width, height int64
+				dark          bool
+			}{{"desktop", 1280, 800, false}, {"phone", 390, 844, true}} {
+				if name == "absurd" && v.name == "desktop" || name == "quessmere" && v.name == "phone" {
+					continue // the page of a run again
+				}
+				b := openTab(t)
+				b.viewport(v.width, v.height, v.dark)
+				b.show(pages[name])
+				for _, dark := range []bool{v.dark, !v.dark} {
+					look := v.name
+					if dark {
+						look += "-dark"
+					}
+					b.scheme(dark, false)
+					if *shots != "" {
+						b.picture(name+"-"+look+"-first.png", chromedp.CaptureScreenshot())
+						b.picture(name+"-"+look+".png", chromedp.FullScreenshot(100))
+					}
+					b.looks(name+", "+look, v.width, dark)
+					if name != "quessmere" && name != "absurd" { // the same page with other numbers
+						b.accessible(name + ", " + look)
+					}
+				}
+				b.quiet()
 			}
-			b := openTab(t)
-			b.viewport(v.width, v.height, v.dark)
-			b.show(pages[name])
-			for _, dark := range []bool{v.dark, !v.dark} {
-				look := v.name
-				if dark {
-					look += "-dark"
-				}
-				b.scheme(dark, false)
-				if *shots != "" {
-					b.picture(name+"-"+look+"-first.png", chromedp.CaptureScreenshot())
-					b.picture(name+"-"+look+".png", chromedp.FullScreenshot(100))
-				}
-				b.looks(name+", "+look, v.width, dark)
-				if name != "quessmere" && name != "absurd" { // the same page with other numbers
-					b.accessible(name + ", " + look)
-				}
-			}
-			b.quiet()
-		}
+		})
 	}
 }
 
@@ -181,6 +184,25 @@ func TestSizes(t *testing.T) {
 	}
 	for _, s := range reportSorts {
 		t.Logf("%s: %d bytes", s.name, len(s.html(t, s.make())))
+	}
+	// A history of 160 cycles, too rough to pack well: all its rows stay, with
+	// fewer digits, and the page says so.
+	long, dice := quessmere(), rand.New(rand.NewPCG(1, 2))
+	cycles := long.Rows
+	for k := range 3 {
+		for _, row := range cycles {
+			row.Age += 4.6e9 * float64(k+1)
+			long.Rows = append(long.Rows, row)
+		}
+	}
+	leaves(reflect.ValueOf(&long.Rows), func(t string) string { return t }, func(v float64) float64 { return v * (1 + 1e-5*dice.Float64()) }, map[any]bool{})
+	html := htmlText(t, long)
+	t.Logf("%d rows: %d bytes", len(long.Rows), len(html))
+	if len(html) >= 1e6 || !strings.Contains(html, "of each value, so that the page stays small") || !strings.Contains(html, fmt.Sprintf(`"rows":%d}`, len(long.Rows))) {
+		t.Errorf("a rough history of %d rows takes %d bytes, or says nothing of its digits", len(long.Rows), len(html))
+	}
+	if strings.Contains(htmlText(t, quessmere()), "so that the page stays small") {
+		t.Error("forty cycles lose digits")
 	}
 }
 
@@ -260,7 +282,9 @@ func TestFiguresOfEveryReport(t *testing.T) {
 			} else if n := len(pageFigures(b)); n != 0 {
 				t.Fatalf("%d figures over time, which no one checks", n)
 			}
+			b.scheme(true, true) // pictures are for print, whatever the screen
 			checkPictures(b)
+			b.scheme(false, true)
 			checkReach(b)
 			checkWords(b)
 			b.quiet()
@@ -504,14 +528,17 @@ func checkClock(b *tab) {
 // checkPictures saves every figure as SVG and as PNG at print size.
 func checkPictures(b *tab) {
 	b.Helper()
-	type shape struct{ ID, Title, Select string }
-	figures := evalJSON[[]shape](b, `[...document.querySelectorAll(".figure")].map(f => ({ID: f.id, Title: f.querySelector("h3").textContent, Select: f.querySelector("svg.chart") ? "[data-drawing=" + f.id + "]" : "[data-figure=" + f.id + "]"}))`)
+	type shape struct {
+		ID, Title, Select string
+		Drawing           bool
+	}
+	figures := evalJSON[[]shape](b, `[...document.querySelectorAll(".figure")].map(f => ({ID: f.id, Title: f.querySelector("h3").textContent, Drawing: !!f.querySelector("svg.chart"), Select: f.querySelector("svg.chart") ? "[data-drawing=" + f.id + "]" : "[data-figure=" + f.id + "]"}))`)
 	for _, f := range figures {
 		name, text := saved(b, `[data-save=svg]`+f.Select)
 		if !strings.HasSuffix(name, "-"+f.ID+".svg") {
 			b.Errorf("%s: saved as %s", f.ID, name)
 		}
-		elements, words := 0, ""
+		elements, words, colours := 0, "", map[string]bool{}
 		for dec := xml.NewDecoder(strings.NewReader(text)); ; {
 			tok, err := dec.Token()
 			if err == io.EOF {
@@ -524,6 +551,9 @@ func checkPictures(b *tab) {
 			case xml.StartElement:
 				elements++
 				for _, a := range tok.Attr {
+					if a.Name.Local == "fill" || a.Name.Local == "stroke" {
+						colours[a.Value] = true
+					}
 					if a.Name.Local == "class" && strings.HasPrefix(a.Value, "c-") || strings.Contains(a.Value, "var(") || strings.HasPrefix(a.Name.Local, "on") || strings.Contains(a.Value, "NaN") {
 						b.Errorf("%s.svg: <%s %s=%q>", f.ID, tok.Name.Local, a.Name.Local, a.Value)
 					}
@@ -538,6 +568,16 @@ func checkPictures(b *tab) {
 		units := regexp.MustCompile(`Gyr|, K|au|Tmol/yr|%`)
 		if elements < 15 || !strings.Contains(words, f.Title) || !units.MatchString(words) {
 			b.Errorf("%s.svg: %d elements; title %q and units must stand in: %.600q", f.ID, elements, f.Title, words)
+		}
+		// It is drawn in the colours of print, whatever the page has.
+		tones := 0
+		for role, tone := range page.Palette {
+			if colours[tone.Light] && role != "ink" && role != "quiet" && role != "panel" && role != "rule" && role != "paper" {
+				tones++
+			}
+		}
+		if f.Drawing && tones < 3 || !colours[page.Palette["quiet"].Light] || colours[page.Palette["quiet"].Dark] {
+			b.Errorf("%s.svg: %d colours of the palette: %v", f.ID, tones, slices.Sorted(maps.Keys(colours)))
 		}
 		if *shots != "" {
 			os.WriteFile(filepath.Join(*shots, name), []byte(text), 0o666)

@@ -100,8 +100,8 @@ func (d *Data) pack(sets [][]int) (string, error) {
 			bits := math.Float32bits(f)
 			if f != f {
 				bits = 0x7fc00000
-			} else if d.drop > 0 && bits&0x7f800000 < 0x7f000000 {
-				bits = (bits + 1<<(d.drop-1)) &^ (1<<d.drop - 1)
+			} else {
+				bits = shorten(bits, d.drop)
 			}
 			diff := bits - before
 			words[j] = uint64(diff<<1 ^ uint32(int32(diff)>>31)) // small for both signs
@@ -117,6 +117,14 @@ func (d *Data) pack(sets [][]int) (string, error) {
 		raw.Write(bits)
 	}
 	return packBytes(raw.Bytes())
+}
+
+// shorten rounds a number in single precision, as its bits, to fewer of them.
+func shorten(bits uint32, drop int) uint32 {
+	if drop == 0 || bits&0x7f800000 >= 0x7f000000 { // next to infinity
+		return bits
+	}
+	return (bits + 1<<(drop-1)) &^ (1<<drop - 1)
 }
 
 // planes writes the first byte of every word, then the second, and so on.

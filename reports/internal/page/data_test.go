@@ -86,3 +86,28 @@ func TestPackSame(t *testing.T) {
 		t.Error("another choice of rows gives the same bytes")
 	}
 }
+
+// Shortened numbers are off by no more than the page says, and sign, zero and
+// what is no number stay.
+func TestShorten(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		v := rapid.Float32().Draw(t, "v")
+		drop := rapid.SampledFrom([]int{0, 3, 6, 9, 12}).Draw(t, "drop")
+		got := math.Float32frombits(shorten(math.Float32bits(v), drop))
+		if v != v || math.IsInf(float64(v), 0) {
+			if !missing(float64(got)) {
+				t.Fatalf("%v becomes %v", v, got)
+			}
+			return
+		}
+		if math.Abs(float64(v)) < 1.2e-38 {
+			return // below the normal numbers precision is lost anyway
+		}
+		if d := math.Abs(float64(got)-float64(v)) / math.Abs(float64(v)); drop == 0 && got != v || d > math.Pow(2, float64(drop-24)) {
+			t.Fatalf("%v becomes %v with %d bits dropped, off by %g", v, got, drop, d)
+		}
+	})
+	if z := shorten(0, 9); z != 0 {
+		t.Errorf("zero becomes %x", z)
+	}
+}
