@@ -202,6 +202,7 @@ func (b *builder) dates(check *history) {
 }
 
 func (b *builder) warn(about, words string) {
+	words = tidy(words)
 	for _, w := range b.run.Warnings {
 		if w.About == about && w.Words == words {
 			return
@@ -258,7 +259,7 @@ func (b *builder) margins() {
 		}
 	}
 	add := func(boundary, side string, r *record.Row, v float64, unit, words string) {
-		b.run.Margins = append(b.run.Margins, record.Margin{Boundary: boundary, Side: side, TimeGyr: gyr(r.Age), Value: v, Unit: unit, Words: words})
+		b.run.Margins = append(b.run.Margins, record.Margin{Boundary: boundary, Side: side, TimeGyr: gyr(r.Age), Value: v, Unit: unit, Words: tidy(words)})
 	}
 	coldFailure := b.fail.kind == record.Snowball || b.fail.kind == record.LimitCycles || b.fail.kind == record.Condensation
 	if cold != nil {
@@ -830,7 +831,11 @@ func (b *builder) warnings(residual float64) {
 			}
 		}
 		if !math.IsNaN(from) {
-			b.warn(w.about, fmt.Sprintf("law used outside its range of %s (%s to %s) from %.3g Gyr on, for %.2g Gyr in all, as far as %s", w.what, w.text(w.r.Lo), w.text(w.r.Hi), gyr(from), gyr(out), w.text(far)))
+			total := ", for " + length(out) + " in all"
+			if out == 0 { // the last row alone
+				total = ""
+			}
+			b.warn(w.about, fmt.Sprintf("law used outside its range of %s (%s to %s) from %.4g Gyr on%s, as far as %s", w.what, w.text(w.r.Lo), w.text(w.r.Hi), gyr(from), total, w.text(far)))
 		}
 	}
 }

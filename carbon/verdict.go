@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"regexp"
 	"strings"
 
 	"cycle/carbon/record"
@@ -64,7 +65,27 @@ func (b *builder) outcome(check *history) {
 	case record.Undecided:
 		o.Sentence = fmt.Sprintf("Undecided: the solver could not go on at %.4g Gyr.", gyr(h.end))
 	}
-	o.Why = b.why()
+	o.Sentence, o.Why = tidy(o.Sentence), tidy(b.why())
+}
+
+var padded = regexp.MustCompile(`([0-9]e[+-])0+([0-9])`)
+
+// tidy writes powers of ten without padding and plus: 1e-5, 2e6.
+func tidy(s string) string {
+	return strings.ReplaceAll(padded.ReplaceAllString(s, "$1$2"), "e+", "e")
+}
+
+// length words a span of time in years in the unit that suits it.
+func length(yr float64) string {
+	switch {
+	case yr >= 0.9995e9:
+		return fmt.Sprintf("%.3g Gyr", yr/1e9)
+	case yr >= 0.9995e6:
+		return fmt.Sprintf("%.3g Myr", yr/1e6)
+	case yr >= 0.9995e3:
+		return fmt.Sprintf("%.3g kyr", yr/1e3)
+	}
+	return fmt.Sprintf("%.3g yr", yr)
 }
 
 // date words a date with its numerical error.
@@ -125,6 +146,9 @@ func beyond(reason string) string {
 	return "too hot"
 }
 
+// earthOcean is the mass of the Earth's oceans, kg.
+const earthOcean = 1.35e21
+
 // why names what changed between the start and the failure, in numbers.
 func (b *builder) why() string {
 	rows := b.h.rows
@@ -143,12 +167,24 @@ func (b *builder) why() string {
 		if b.fail.t <= r0.Age {
 			return fmt.Sprintf("at the start sunlight is %.0f %% of the Earth's today and outgassing %.3g Tmol/yr", 100*r0.Flux, r0.Outgassing/1e12)
 		}
-		needs := ""
-		if !math.IsNaN(r.WarmNeeds) {
-			needs = fmt.Sprintf("; the warm state needs %.3g Tmol/yr", r.WarmNeeds/1e12)
+		// What changed against the planet first, then what held; the rest is left out.
+		out := fmt.Sprintf("outgassing fell from %.3g to %.3g Tmol/yr", r0.Outgassing/1e12, r.Outgassing/1e12)
+		if r.Outgassing >= r0.Outgassing {
+			out = fmt.Sprintf("outgassing of %.3g Tmol/yr", r.Outgassing/1e12)
 		}
-		return fmt.Sprintf("outgassing went from %.3g to %.3g Tmol/yr while sunlight went from %.0f to %.0f %% of the Earth's today and weatherable land from %.2g to %.2g%s",
-			r0.Outgassing/1e12, r.Outgassing/1e12, 100*r0.Flux, 100*r.Flux, r0.LandFraction*r0.Biology, r.LandFraction*r.Biology, needs)
+		if !math.IsNaN(r.WarmNeeds) {
+			out += fmt.Sprintf(", too little for the %.3g Tmol/yr that the warm climate needs against weathering", r.WarmNeeds/1e12)
+		} else {
+			out += ", too little to keep up CO2 against weathering"
+		}
+		sun := fmt.Sprintf(", at %.0f %% of the Earth's sunlight today", 100*r.Flux)
+		if a, z := math.Round(100*r0.Flux), math.Round(100*r.Flux); z > a {
+			sun = fmt.Sprintf(", though sunlight rose from %.0f to %.0f %% of the Earth's today", a, z)
+		}
+		if a, z := r0.LandFraction*r0.Biology, r.LandFraction*r.Biology; z > 1.2*a {
+			sun += fmt.Sprintf("; weatherable land grew from %.2g to %.2g of the reference", a, z)
+		}
+		return out + sun
 	case record.MoistGreen, record.RunawayGreen:
 		if b.fail.t <= r0.Age {
 			return fmt.Sprintf("at the start sunlight is %.0f %% of the Earth's today and outgassing %.3g Tmol/yr", 100*r0.Flux, r0.Outgassing/1e12)
@@ -159,8 +195,12 @@ func (b *builder) why() string {
 		}
 		return fmt.Sprintf("sunlight rose from %.0f to %.0f %% of the Earth's today; CO2 had fallen to %s, so weathering had no more warming to give back", 100*r0.Flux, 100*r.Flux, pressure(r.PCO2))
 	case record.WaterLost:
-		return fmt.Sprintf("at %.4g K the stratosphere holds a fraction %.2g of water, which escapes as fast as its hydrogen diffuses", r.Temperature, r.Moisture)
+		return fmt.Sprintf("of its %.2g kg of water, %.2g of the Earth's oceans, hydrogen escapes as fast as it diffuses: at %.4g K a fraction %.2g of the stratosphere is water", r0.Water, r0.Water/earthOcean, r.Temperature, r.Moisture)
 	case record.BeyondRange:
+		if sinks := r.Land + r.Seafloor; r.PCO2 > 2*r0.PCO2 && r.Outgassing > sinks {
+			return fmt.Sprintf("outgassing of %.3g Tmol/yr exceeded the %.3g Tmol/yr that weathering took up, so CO2 rose from %s to %s: %.4g K at %.0f %% of the Earth's sunlight today",
+				r.Outgassing/1e12, sinks/1e12, pressure(r0.PCO2), pressure(r.PCO2), r.Temperature, 100*r.Flux)
+		}
 		return fmt.Sprintf("%.4g K and %s of CO2 at %.0f %% of the Earth's sunlight", r.Temperature, pressure(r.PCO2), 100*r.Flux)
 	case record.Undecided:
 		return b.stopped()
@@ -178,7 +218,7 @@ func (b *builder) stopped() string {
 	if names := b.m.lay.names(); e.Component >= 0 && e.Component < len(names) {
 		limited = ", limited by " + names[e.Component]
 	}
-	return fmt.Sprintf("%s at %.4g Gyr, with a step of %.2g yr%s", strings.TrimPrefix(e.Err.Error(), "ode: "), gyr(e.T), e.H, limited)
+	return fmt.Sprintf("%s at %.4g Gyr, with a step of %s%s", strings.TrimPrefix(e.Err.Error(), "ode: "), gyr(e.T), length(e.H), limited)
 }
 
 // pressure words a CO₂ pressure in ppm or bar.

@@ -88,7 +88,7 @@ func CompareTerminal(w io.Writer, c *record.Comparison, opt TerminalOptions) err
 			if v == "" {
 				v = "-"
 			}
-			row = append(row, short(clean(v), 24))
+			row = append(row, short(plainly(clean(v)), 24))
 		}
 		rows = append(rows, row)
 	}

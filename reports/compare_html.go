@@ -56,7 +56,7 @@ func CompareHTML(w io.Writer, c *record.Comparison) error {
 	for _, d := range c.Differ {
 		d := record.Difference{Key: clean(d.Key), Doc: typeset(clean(d.Doc)), Values: append([]string(nil), d.Values...)}
 		for i := range d.Values {
-			d.Values[i] = num.Unit(clean(d.Values[i]))
+			d.Values[i] = typeset(clean(d.Values[i]))
 		}
 		b.Differ = append(b.Differ, d)
 	}

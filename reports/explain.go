@@ -110,6 +110,11 @@ func (t *terminal) table(head string, rows [][]string) {
 		return
 	}
 	t.line(t.bold(head))
+	for _, r := range rows {
+		for i := range r {
+			r[i] = plainly(r[i])
+		}
+	}
 	for _, l := range columns(t.width-2, rows) {
 		t.line("  " + l)
 	}
@@ -117,7 +122,7 @@ func (t *terminal) table(head string, rows [][]string) {
 }
 
 func (t *terminal) paragraph(s string, lines int) {
-	for _, l := range wrap(clean(s), t.width-2, lines) {
+	for _, l := range wrap(plainly(clean(s)), t.width-2, lines) {
 		t.line("  " + l)
 	}
 	t.line("")
@@ -174,7 +179,7 @@ func ExplainTerminal(w io.Writer, e *record.Explanation, opt TerminalOptions) er
 
 	t.line(t.bold("Margin"))
 	for _, m := range e.Margins {
-		for i, l := range wrap(clean(m.Words), t.width-4, 2) {
+		for i, l := range wrap(plainly(clean(m.Words)), t.width-4, 2) {
 			t.line(map[bool]string{true: "  - ", false: "    "}[i == 0] + l)
 		}
 	}

@@ -263,7 +263,7 @@ func (b *explainBody) rescues() {
 	}
 	for i, bar := range bars(parts, "accent") {
 		r := found[i]
-		row := rescueRow{blotOf: blot(r.Outcome, r.TimeGyr, r.Outcome == record.Temperate || r.Outcome == record.StarLeft), Key: clean(r.Key), Doc: typeset(clean(r.Doc)), From: num.Unit(r.FromText), To: num.Unit(r.ToText), Published: r.Published, Bar: bar}
+		row := rescueRow{blotOf: blot(r.Outcome, r.TimeGyr, r.Outcome == record.Temperate || r.Outcome == record.StarLeft), Key: clean(r.Key), Doc: typeset(clean(r.Doc)), From: typeset(clean(r.FromText)), To: typeset(clean(r.ToText)), Published: r.Published, Bar: bar}
 		row.Part = num.Percent(r.Part)
 		if !r.Published {
 			row.Part = "–"

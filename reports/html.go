@@ -251,6 +251,7 @@ func sentence(s string) string {
 // does: 1e-05 as 1 × 10⁻⁵, CO2 as CO₂, W/m2 as W/m², and no line break between
 // a number and its unit.
 func typeset(s string) string {
+	s = roundIn(s)
 	s = plainNumber.ReplaceAllStringFunc(s, func(m string) string {
 		mant, exp, _ := strings.Cut(m, "e")
 		n, err := strconv.Atoi(exp)

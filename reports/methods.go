@@ -271,6 +271,9 @@ func (p *prose) values(inputs []record.Input, sparing bool, skip func(string) bo
 		}
 		w := parameter(key) + " " + shownValue(clip(clean(in.Value), 80))
 		refs := p.refs(in.Works...)
+		if set && refs != "" && !strings.HasPrefix(in.Source, "set by") { // the source is that of the value
+			refs, set = "chosen here, "+refs, false
+		}
 		switch {
 		case set && refs != "" && in.Outside:
 			refs = "chosen here, outside the range published; default after " + refs
@@ -635,19 +638,27 @@ func methodsOfEnsemble(e *record.Ensemble) *prose {
 	return p
 }
 
-var longNumber = regexp.MustCompile(`[0-9]+\.[0-9]+(?:e[+-]?[0-9]+)?`)
+var (
+	longNumber = regexp.MustCompile(`[0-9]+\.[0-9]+(?:e[+-]?[0-9]+)?`)
+	paddedExp  = regexp.MustCompile(`([0-9]e)(?:\+|(-))0*([0-9])`)
+)
 
-// roundIn rounds the decimal numbers in a text to six significant digits.
+// roundIn rounds decimal numbers of more than seven digits in a text to six: the
+// exact ones stand in the scenario, in CSV and in JSON.
 func roundIn(s string) string {
 	return longNumber.ReplaceAllStringFunc(s, func(m string) string {
 		v, err := strconv.ParseFloat(m, 64)
 		mant, _, _ := strings.Cut(m, "e")
-		if err != nil || len(strings.TrimLeft(strings.Replace(mant, ".", "", 1), "0")) <= 6 {
+		if err != nil || len(strings.TrimLeft(strings.Replace(mant, ".", "", 1), "0")) <= 7 {
 			return m
 		}
 		return num.Short(v, 6)
 	})
 }
 
-// shownValue is the value of an input for people: exact ones stand in the scenario.
-func shownValue(s string) string { return num.Unit(roundIn(s)) }
+// plainly rounds the numbers in a text for the terminal and writes their powers
+// of ten without padding.
+func plainly(s string) string { return paddedExp.ReplaceAllString(roundIn(s), "$1$2$3") }
+
+// shownValue is the value of an input for people.
+func shownValue(s string) string { return num.Unit(plainly(s)) }

@@ -120,6 +120,7 @@ func (t *terminal) dim(s string) string  { return t.ansi("2", s) }
 
 // item writes a label and its words over at most the given number of lines.
 func (t *terminal) item(label, words string, lines int) {
+	words = plainly(words)
 	if words == "" {
 		return
 	}

@@ -240,14 +240,14 @@ func between(f *units.Field, lo, hi float64) string {
 	return a + " to " + b
 }
 
-// plainText writes a value for people: in the field's unit, with ten digits at
+// plainText writes a value for people: in the field's unit, with six digits at
 // most. What is written into a scenario is exact instead (literal).
 func plainText(f *units.Field, v float64) string {
 	factor, offset, ok := f.Kind.Scale(f.ShownUnit())
 	if !ok {
 		return f.Text(v)
 	}
-	s := strconv.FormatFloat((v-offset)/factor, 'g', 10, 64)
+	s := strconv.FormatFloat((v-offset)/factor, 'g', 6, 64)
 	if m, exp, ok := strings.Cut(s, "e"); ok {
 		n, _ := strconv.Atoi(exp)
 		s = m + "e" + strconv.Itoa(n)

@@ -778,7 +778,7 @@ func (s *summary) words() {
 		s.Worth += fmt.Sprintf(" The median date of %s is known to ± %.2g Gyr (%.2g %%).", clock, by, 100*worst)
 		const numerical = 1e-3
 		if worst > numerical {
-			s.Worth += fmt.Sprintf(" Beyond about %.2g members it would be known better than a single date is computed (0.1 %%).", float64(s.Members)*(worst/numerical)*(worst/numerical))
+			s.Worth += fmt.Sprintf(" Beyond about %s members it would be known better than a single date is computed (0.1 %%).", plainCount(float64(s.Members)*(worst/numerical)*(worst/numerical)))
 		} else {
 			s.Worth += " More members would not help it: a single date is computed to 0.1 %."
 		}
@@ -813,6 +813,18 @@ func (s *summary) words() {
 	if n := min(s.Independent, learnFrom); n < s.Independent {
 		warn("sensitivities are estimated from the first %d members", n)
 	}
+}
+
+// plainCount writes a large number to two digits: 4800, 4.8 million.
+func plainCount(x float64) string {
+	switch {
+	case x >= 1e9:
+		return fmt.Sprintf("%.2g billion", x/1e9)
+	case x >= 1e6:
+		return fmt.Sprintf("%.2g million", x/1e6)
+	}
+	m := math.Pow(10, math.Max(0, math.Floor(math.Log10(math.Max(x, 1)))-1))
+	return fmt.Sprintf("%.0f", math.Round(x/m)*m)
 }
 
 func bitLen(n int) int {
