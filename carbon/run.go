@@ -587,7 +587,7 @@ func (b *builder) recoveries(ctx context.Context) error {
 		if p.Sunlight != 0 {
 			what = append(what, fmt.Sprintf("%+.3g %% of sunlight", 100*p.Sunlight))
 		}
-		rec.Pulse = fmt.Sprintf("pulse %d: %s over %s", i+1, strings.Join(what, " and "), units.Time.Format(p.Duration, "kyr"))
+		rec.Pulse = fmt.Sprintf("pulse %d: %s over %s", i+1, strings.Join(what, " and "), length(p.Duration))
 		j = 0
 		peak, peakAge := 0.0, p.Start
 		before, beforeAge := 0.0, p.Start // the row before

@@ -167,24 +167,31 @@ func (b *builder) why() string {
 		if b.fail.t <= r0.Age {
 			return fmt.Sprintf("at the start sunlight is %.0f %% of the Earth's today and outgassing %.3g Tmol/yr", 100*r0.Flux, r0.Outgassing/1e12)
 		}
-		// What changed against the planet first, then what held; the rest is left out.
-		out := fmt.Sprintf("outgassing fell from %.3g to %.3g Tmol/yr", r0.Outgassing/1e12, r.Outgassing/1e12)
-		if r.Outgassing >= r0.Outgassing {
-			out = fmt.Sprintf("outgassing of %.3g Tmol/yr", r.Outgassing/1e12)
+		words := fmt.Sprintf("outgassing of %.3g Tmol/yr", r.Outgassing/1e12)
+		if r.Outgassing < 0.995*r0.Outgassing {
+			words = fmt.Sprintf("outgassing fell from %.3g to %.3g Tmol/yr", r0.Outgassing/1e12, r.Outgassing/1e12)
 		}
-		if !math.IsNaN(r.WarmNeeds) {
-			out += fmt.Sprintf(", too little for the %.3g Tmol/yr that the warm climate needs against weathering", r.WarmNeeds/1e12)
-		} else {
-			out += ", too little to keep up CO2 against weathering"
+		needs := math.NaN() // of the last row that still had a warm branch
+		for i := range rows {
+			if n := rows[i].WarmNeeds; rows[i].Age <= r.Age && !math.IsNaN(n) {
+				needs = n
+			}
 		}
-		sun := fmt.Sprintf(", at %.0f %% of the Earth's sunlight today", 100*r.Flux)
-		if a, z := math.Round(100*r0.Flux), math.Round(100*r.Flux); z > a {
-			sun = fmt.Sprintf(", though sunlight rose from %.0f to %.0f %% of the Earth's today", a, z)
+		switch {
+		case math.IsNaN(needs):
+			words += ", too little to keep up CO2 against weathering"
+		case r.Outgassing < needs && fmt.Sprintf("%.3g", r.Outgassing) == fmt.Sprintf("%.3g", needs):
+			words += ", just short of what the warm climate needs"
+		case r.Outgassing < needs:
+			words += fmt.Sprintf(", below the %.3g Tmol/yr that the warm climate needs", needs/1e12)
+		default:
+			words += fmt.Sprintf(", down to the %.3g Tmol/yr that the warm climate needs", needs/1e12)
 		}
+		words += fmt.Sprintf(" at %.0f %% of the Earth's sunlight today", 100*r.Flux)
 		if a, z := r0.LandFraction*r0.Biology, r.LandFraction*r.Biology; z > 1.2*a {
-			sun += fmt.Sprintf("; weatherable land grew from %.2g to %.2g of the reference", a, z)
+			words += fmt.Sprintf("; land to weather grew from %.2g to %.2g of the reference", a, z)
 		}
-		return out + sun
+		return words
 	case record.MoistGreen, record.RunawayGreen:
 		if b.fail.t <= r0.Age {
 			return fmt.Sprintf("at the start sunlight is %.0f %% of the Earth's today and outgassing %.3g Tmol/yr", 100*r0.Flux, r0.Outgassing/1e12)
@@ -205,7 +212,11 @@ func (b *builder) why() string {
 	case record.Undecided:
 		return b.stopped()
 	}
-	return fmt.Sprintf("weathering kept CO2 between %s and %s as sunlight went from %.0f to %.0f %% of the Earth's today", pressure(least(rows)), pressure(most(rows)), 100*r0.Flux, 100*r.Flux)
+	went := "went"
+	if r.Flux > r0.Flux {
+		went = "rose"
+	}
+	return fmt.Sprintf("weathering kept CO2 between %s and %s as sunlight %s from %.0f to %.0f %% of the Earth's today", pressure(least(rows)), pressure(most(rows)), went, 100*r0.Flux, 100*r.Flux)
 }
 
 // stopped words why the solver could not go on.
@@ -213,6 +224,9 @@ func (b *builder) stopped() string {
 	var e *ode.StepError
 	if !errors.As(b.h.cause, &e) {
 		return b.h.reason
+	}
+	if errors.Is(e.Err, ode.ErrMaxSteps) {
+		return fmt.Sprintf("the solver used up its %.0f steps (solver.max_steps) at %.4g Gyr, where the last one was %s long", b.m.set.MaxSteps, gyr(e.T), length(e.H))
 	}
 	limited := ""
 	if names := b.m.lay.names(); e.Component >= 0 && e.Component < len(names) {

@@ -295,7 +295,7 @@ func (c *captions) history() []string {
 	for _, p := range r.Recoveries {
 		s := "A pulse (" + clip(clean(p.Pulse), 60) + ") from " + age(p.StartGyr) + " to " + age(p.EndGyr) + " changes the surface by " + pretty(p.PeakKelvin, 3, "K") + " at most"
 		if known(p.RecoveryKyr) {
-			s += "; all but 1/e of it is gone " + pretty(p.RecoveryKyr, 3, "kyr") + " after the peak"
+			s += "; all but 1/e of it is gone " + num.Pretty(num.Span(p.RecoveryKyr*1e-6)) + " after the peak"
 		} else {
 			s += ", and the planet does not recover from it"
 		}

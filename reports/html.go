@@ -2,6 +2,7 @@ package reports
 
 import (
 	_ "embed"
+	"fmt"
 	"html/template"
 	"io"
 	"regexp"
@@ -143,6 +144,7 @@ type runBody struct {
 	Date, Ago                      string
 	Strip                          *strip
 	MarginWords                    []string
+	Passed                         []string // how the disturbances passed
 	RefAge                         string
 	Doubts                         []record.Warning
 	FirstDoubts, MoreDoubts        []record.Warning // those in view, and the rest
@@ -176,6 +178,13 @@ func (b *runBody) fill() {
 	b.Strip = stripOf(r)
 	for _, m := range r.Margins {
 		b.MarginWords = append(b.MarginWords, sentence(m.Words))
+	}
+	for i := range r.Recoveries {
+		if i == 4 {
+			b.Passed = append(b.Passed, fmt.Sprintf("%d more stand below the first figure.", len(r.Recoveries)-i))
+			break
+		}
+		b.Passed = append(b.Passed, sentence(passed(&r.Recoveries[i], num.Pretty)))
 	}
 	for _, w := range r.Warnings {
 		b.Doubts = append(b.Doubts, record.Warning{About: clean(w.About), Words: sentence(w.Words)})

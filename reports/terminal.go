@@ -64,6 +64,11 @@ func Terminal(w io.Writer, r *record.Run, opt TerminalOptions) error {
 	t.line(t.bold(kind) + "  " + short(date, t.width-2-runewidth.StringWidth(kind)))
 	t.item("", clean(r.Outcome.Sentence), 2)
 	t.item("why", clean(r.Outcome.Why), 3)
+	for i := range r.Recoveries {
+		if i < 2 {
+			t.item(label(i == 0, "passed"), passed(&r.Recoveries[i], func(s string) string { return s }), 2)
+		}
+	}
 	t.line("")
 
 	if strip, key := t.strip(r); strip != "" {

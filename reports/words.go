@@ -33,6 +33,19 @@ func factsOf(r *record.Run) []fact {
 	return out
 }
 
+// passed words how a disturbance went by.
+func passed(p *record.Recovery, set func(string) string) string {
+	change := num.Short(p.PeakKelvin, 3)
+	if p.PeakKelvin > 0 {
+		change = "+" + change
+	}
+	s := clip(clean(p.Pulse), 60) + ", at " + num.Age(p.StartGyr) + ": " + num.With(set(change), "K") + " at the most"
+	if known(p.RecoveryKyr) {
+		return s + ", down to 1/e after " + set(num.Span(p.RecoveryKyr*1e-6))
+	}
+	return s + ", no recovery followed"
+}
+
 // solverFacts says what the integrator did.
 func solverFacts(r *record.Run) []fact {
 	s := &r.Solver

@@ -74,7 +74,7 @@ func Pretty(s string) string {
 	mant, exp, ok := strings.Cut(n, "e")
 	mant = strings.Replace(mant, "-", "−", 1)
 	if ok {
-		mant += " × 10" + Raised(exp)
+		mant += "\u00a0×\u00a010" + Raised(exp) // no line break inside a number
 	}
 	return mant + rest
 }
