@@ -244,3 +244,34 @@ func TestJacobianIsSingularAtFolds(t *testing.T) {
 		}
 	}
 }
+
+// TestSteep: the imbalance of no pair of laws rises by steep or more as it gets
+// colder by one kelvin, with the steepest line of the linear laws and four times
+// the Earth's sunlight. The search for the start counts on it.
+func TestSteep(t *testing.T) {
+	sections, laws := kindsOfLaws()
+	for _, radiation := range laws["radiation"] {
+		for _, albedo := range laws["albedo"] {
+			c := combination{}
+			for _, s := range sections {
+				c[s] = laws[s][0]
+			}
+			c["radiation"], c["albedo"] = radiation, albedo
+			s, m := c.setup(t)
+			if v := s.Number("radiation.b"); v != nil {
+				*v.Value = v.Max
+			}
+			sun := s.RefSun
+			lo, hi := m.pressures()
+			bottom := math.Max(s.FrozenBelow-90, s.radiation.law.Box().T.Lo)
+			for temp := bottom; temp < m.top(); temp++ {
+				for x := math.Log(lo); x < math.Log(hi); x += 0.2 {
+					p := math.Exp(x)
+					if rise := m.imbalance(sun, temp, p) - m.imbalance(sun, temp+1, p); !(rise < steep) {
+						t.Fatalf("%s, %s: at %g K and %g bar the imbalance rises by %.3g W/m2 to the cold", radiation, albedo, temp, p, rise)
+					}
+				}
+			}
+		}
+	}
+}

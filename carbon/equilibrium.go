@@ -36,23 +36,31 @@ func (m *Model) imbalanceAt(sun, t, p, lnp float64) float64 {
 // temperature t is in balance with mean sunlight sun. low tells that even the
 // least CO₂ is too warm, high that no CO₂ pressure is warm enough.
 func (m *Model) balance(sun, t float64) (p float64, low, high bool) {
+	p, low, high, _ = m.balanceMost(sun, t)
+	return p, low, high
+}
+
+// balanceMost is balance; where no CO₂ pressure is warm enough, most is the
+// largest imbalance of those tried, in W/m².
+func (m *Model) balanceMost(sun, t float64) (p float64, low, high bool, most float64) {
 	lo, hi := m.pressures()
 	x0, x1 := elementary.Log(lo), elementary.Log(hi)
 	g := func(x float64) float64 { return m.imbalanceAt(sun, t, elementary.Exp(x), x) }
 	const parts = 16
 	a, ga := x0, g(x0)
 	if ga > 0 {
-		return lo, true, false
+		return lo, true, false, 0
 	}
+	most = ga
 	for i := 1; i <= parts; i++ {
 		b := x0 + (x1-x0)*float64(i)/parts
 		gb := g(b)
 		if gb > 0 {
-			return elementary.Exp(bracketed(g, a, b, ga, gb, 1e-13)), false, false
+			return elementary.Exp(bracketed(g, a, b, ga, gb, 1e-13)), false, false, 0
 		}
-		a, ga = b, gb
+		a, ga, most = b, gb, math.Max(most, gb)
 	}
-	return hi, false, true
+	return hi, false, true, most
 }
 
 // balanceNear is balance where something is known of the logarithm of the
@@ -267,6 +275,10 @@ func (m *Model) top() float64 {
 	return 380
 }
 
+// steep is more than the imbalance rises by as it gets colder by one kelvin, at
+// any CO₂ pressure, whatever the laws, W m⁻² K⁻¹.
+const steep = 10
+
 // start finds the equilibrium a history starts from: at the start age
 // everything but the interior is steady (surface, seafloor and continental
 // carbon; the mantle holds the rest). It is reached from the warm side: of all
@@ -306,8 +318,7 @@ func (m *Model) start() (y State, words string) {
 	}
 
 	lo, hi := math.Max(s.FrozenBelow-90, s.radiation.law.Box().T.Lo+1), m.top()-1
-	// Steps of the search in K, and how many of them at once while it is too hot.
-	const step, stride = 0.5, 4
+	const step = 0.5 // K
 	// The last two balances, of which the second is the newer, tell where to
 	// look for the next.
 	nan := math.NaN()
@@ -342,10 +353,10 @@ func (m *Model) start() (y State, words string) {
 			z, r, ok, hot := at(t)
 			if !ok || !stable(&z) {
 				have = false
-				for ahead := t + stride*h; hot && h < 0 && ahead >= to; ahead += stride * h {
-					if _, _, hot = m.balance(d.sun, ahead); hot {
-						t = ahead
-					}
+				if hot && h < 0 {
+					// No CO₂ makes up for the imbalance so soon.
+					_, _, _, most := m.balanceMost(d.sun, t)
+					t += h * math.Floor(-most/(steep*step))
 				}
 				// The end of the warm branch; far above ice another stretch of
 				// it may follow, where the hot side folds back on itself.
