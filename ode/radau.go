@@ -28,6 +28,9 @@ type radau struct {
 	f, dw     []float64
 	cr, cx    []complex128
 	lag       []float64
+	ahead     []float64               // the basis of the last step at the nodes of the next
+	at        [nSamples + 1][]float64 // the basis at the samples for events, and at 1
+	slope     []float64               // basisDiff at 1/2
 	ez        []float64
 	hPrev     float64 // signed length of the last accepted step, 0 if none
 	haveFac   bool
@@ -215,6 +218,12 @@ func newRadau(s, n int) *radau {
 	r.f, r.w, r.dw = make([]float64, s*n), make([]float64, s*n), make([]float64, s*n)
 	r.cr, r.cx = make([]complex128, n), make([]complex128, n)
 	r.lag, r.ez = make([]float64, s), make([]float64, n)
+	r.ahead, r.slope = make([]float64, s*s), make([]float64, s)
+	for i := range r.at {
+		r.at[i] = make([]float64, s)
+		r.basis(r.at[i], float64(i+1)/(nSamples+1))
+	}
+	r.basisDiff(r.slope, 0.5)
 	r.lin = make([]csystem, (s-1)/2)
 	return r
 }
@@ -353,9 +362,14 @@ func (r *radau) basisDiff(lag []float64, th float64) {
 
 func (s *Solver) radauInterp(dst, y0 []float64, th float64) {
 	r, n := s.rad, s.n
-	r.basis(r.lag, th)
+	lag := r.lag
+	if i := th * (nSamples + 1); i == math.Trunc(i) && i >= 1 && i <= nSamples+1 {
+		lag = r.at[int(i)-1]
+	} else {
+		r.basis(lag, th)
+	}
 	copy(dst, y0[:len(dst)])
-	for j, l := range r.lag {
+	for j, l := range lag {
 		for k, z := range r.z[j*n : j*n+n] {
 			dst[k] += l * z
 		}
@@ -364,9 +378,13 @@ func (s *Solver) radauInterp(dst, y0 []float64, th float64) {
 
 func (s *Solver) radauInterpDiff(dst []float64, th float64) {
 	r, n := s.rad, s.n
-	r.basisDiff(r.lag, th)
+	lag := r.slope
+	if th != 0.5 {
+		lag = r.lag
+		r.basisDiff(lag, th)
+	}
 	clear(dst)
-	for j, l := range r.lag {
+	for j, l := range lag {
 		for k, z := range r.z[j*n : j*n+n] {
 			dst[k] += l * z
 		}
@@ -375,23 +393,33 @@ func (s *Solver) radauInterpDiff(dst []float64, th float64) {
 
 // mix forms dst_i = Σ_j m_ij src_j for ns vectors of n components.
 func mix(dst, m, src []float64, ns, n int) {
-	k := 0
-	for ; k+4 <= n; k += 4 {
-		for i := range ns {
-			var a0, a1, a2, a3 float64
-			at := k
-			for _, c := range m[i*ns : i*ns+ns] {
-				v := (*[4]float64)(src[at:])
-				a0 += c * v[0]
-				a1 += c * v[1]
-				a2 += c * v[2]
-				a3 += c * v[3]
-				at += n
-			}
-			*(*[4]float64)(dst[i*n+k:]) = [4]float64{a0, a1, a2, a3}
+	switch ns {
+	case 3:
+		m := (*[9]float64)(m)
+		s0, s1, s2 := src[:n], src[n:2*n], src[2*n:3*n]
+		d0, d1, d2 := dst[:n], dst[n:2*n], dst[2*n:3*n]
+		for k, a := range s0 {
+			b, c := s1[k], s2[k]
+			d0[k] = m[0]*a + m[1]*b + m[2]*c
+			d1[k] = m[3]*a + m[4]*b + m[5]*c
+			d2[k] = m[6]*a + m[7]*b + m[8]*c
 		}
+		return
+	case 5:
+		m := (*[25]float64)(m)
+		s0, s1, s2, s3, s4 := src[:n], src[n:2*n], src[2*n:3*n], src[3*n:4*n], src[4*n:5*n]
+		d0, d1, d2, d3, d4 := dst[:n], dst[n:2*n], dst[2*n:3*n], dst[3*n:4*n], dst[4*n:5*n]
+		for k, a := range s0 {
+			b, c, d, e := s1[k], s2[k], s3[k], s4[k]
+			d0[k] = (m[0]*a + m[1]*b) + (m[2]*c + m[3]*d) + m[4]*e
+			d1[k] = (m[5]*a + m[6]*b) + (m[7]*c + m[8]*d) + m[9]*e
+			d2[k] = (m[10]*a + m[11]*b) + (m[12]*c + m[13]*d) + m[14]*e
+			d3[k] = (m[15]*a + m[16]*b) + (m[17]*c + m[18]*d) + m[19]*e
+			d4[k] = (m[20]*a + m[21]*b) + (m[22]*c + m[23]*d) + m[24]*e
+		}
+		return
 	}
-	for ; k < n; k++ {
+	for k := range n {
 		for i := range ns {
 			sum := 0.0
 			at := k
@@ -442,16 +470,13 @@ func (s *Solver) radauTry(h, tEnd float64) outcome {
 	}
 	// Starting values from the last collocation polynomial.
 	if r.hPrev != 0 && h/r.hPrev < 10 {
+		for i, c := range r.c {
+			r.basis(r.ahead[i*ns:i*ns+ns], 1+c*h/r.hPrev)
+		}
+		mix(r.z, r.ahead, r.zPrev, ns, n)
 		for i := range ns {
-			r.basis(r.lag, 1+r.c[i]*h/r.hPrev)
-			zi := r.z[i*n : i*n+n]
-			for k := range zi {
-				zi[k] = s.yPrev[k] - s.y[k]
-			}
-			for j, l := range r.lag {
-				for k, z := range r.zPrev[j*n : j*n+n] {
-					zi[k] += l * z
-				}
+			for k := range n {
+				r.z[i*n+k] += s.yPrev[k] - s.y[k]
 			}
 		}
 		mix(r.w, r.ti, r.z, ns, n)
@@ -559,7 +584,7 @@ func (s *Solver) radauTry(h, tEnd float64) outcome {
 			}
 			eta = theta / (1 - theta)
 			if left := float64(maxIt - 1 - it); left >= 0 && d > 0 {
-				if dyth := eta * d / kappa; dyth > 1 && math.Log(dyth)+left*math.Log(theta) > 0 {
+				if dyth := eta * d / kappa; dyth > 1 && roughLog(dyth)+left*roughLog(theta) > 0 {
 					return outcomeNewton
 				}
 			}

@@ -713,6 +713,13 @@ func (s *Solver) propose(h float64) float64 {
 	if s.rejectedLast && fac < 1 {
 		fac = 1
 	}
+	if s.rad != nil && s.rad.iters > 1 {
+		// The contraction of Newton's iteration grows with the step, about as
+		// its power 3/2; steps pay best where it is a quarter.
+		if lim := roughExp(max(-0.2, min(2.0/3*roughLog(0.25/s.rad.theta), 2))); fac*lim < 1 {
+			fac = 1 / lim
+		}
+	}
 	s.gd.logErr = max(le, -4.605170185988091) // err_old at least 0.01
 	if s.rad != nil && fac <= 1 && fac > 1/1.2 && s.rad.theta < 0.03 {
 		return h // the factored matrices stay good
