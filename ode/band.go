@@ -85,6 +85,28 @@ func bandSolve(a []float64, piv []int, n, kl, ku int, x, b []float64) {
 	}
 }
 
+// fillBand writes c·I − sign·J to w, in the form that bandFactor takes, for the
+// banded Jacobian jac.
+func fillBand(w, jac []float64, n, kl, ku int, sign, c float64) {
+	if kl == 2 && ku == 2 {
+		for i := range n {
+			row, v := (*[7]float64)(w[i*7:]), (*[5]float64)(jac[i*5:])
+			row[0], row[1], row[2], row[3], row[4] = -sign*v[0], -sign*v[1], c-sign*v[2], -sign*v[3], -sign*v[4]
+			row[5], row[6] = 0, 0
+		}
+		return
+	}
+	width, jw := 2*kl+ku+1, kl+ku+1
+	for i := range n {
+		row := w[i*width : i*width+width]
+		for j, v := range jac[i*jw : i*jw+jw] {
+			row[j] = -sign * v
+		}
+		clear(row[jw:])
+		row[kl] += c
+	}
+}
+
 // factorPenta is bandFactor for two diagonals on each side, up to the last
 // rows. It returns the column where it stopped, or -1 for an unusable pivot.
 func factorPenta(a []float64, piv []int, rs []float64, n int) int {

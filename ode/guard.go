@@ -333,16 +333,9 @@ func (d determinant) over(e determinant) float64 {
 func (s *Solver) oddBand(jac []float64, c float64) bool {
 	g := &s.gd
 	n, kl, ku := s.n, s.band.Lower, s.band.Upper
-	width, jw := 2*kl+ku+1, kl+ku+1
+	width := 2*kl + ku + 1
 	w := g.b[:n*width]
-	for i := range n {
-		row := w[i*width : i*width+width]
-		for j, v := range jac[i*jw : i*jw+jw] {
-			row[j] = -s.dir * v
-		}
-		clear(row[jw:])
-		row[kl] += c
-	}
+	fillBand(w, jac, n, kl, ku, s.dir, c)
 	if !bandFactor(w, g.cpiv, s.rs, n, kl, ku) {
 		return false
 	}

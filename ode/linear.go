@@ -14,15 +14,7 @@ func (s *Solver) factorShifted(c float64) outcome {
 	s.stats.Factorizations++
 	if s.band != nil {
 		kl, ku := s.band.Lower, s.band.Upper
-		width, jw := 2*kl+ku+1, kl+ku+1
-		for i := range n {
-			row := w[i*width : i*width+width]
-			for j, v := range s.jac[i*jw : i*jw+jw] {
-				row[j] = -v
-			}
-			clear(row[jw:])
-			row[kl] += c
-		}
+		fillBand(w, s.jac, n, kl, ku, 1, c)
 		if !bandFactor(w, s.piv, s.rs, n, kl, ku) {
 			return outcomeSingular
 		}
