@@ -63,7 +63,7 @@ func CompareHTML(w io.Writer, c *record.Comparison) error {
 	b.Heading = clip(sentence(c.Words), 400)
 	b.AgreeWords = fmt.Sprintf("%d inputs are the same everywhere and are not shown.", c.Agree)
 	for _, m := range c.Margins {
-		b.MarginHeads = append(b.MarginHeads, typeset(upper(clean(m.Boundary))+", "+clean(m.Side)+", "+clean(m.Unit)))
+		b.MarginHeads = append(b.MarginHeads, typeset("Closest to the "+clean(m.Boundary)+" ("+clean(m.Side)+" side), "+clean(m.Unit)))
 	}
 	var liquid []float64
 	for i := range c.Results {
@@ -71,15 +71,15 @@ func CompareHTML(w io.Writer, c *record.Comparison) error {
 	}
 	for i, bar := range bars(liquid, "quiet") {
 		r := &c.Results[i]
-		row := comparedRow{blotOf: blot(r.Outcome.Kind, r.Outcome.TimeGyr, !lasting(r.Outcome.Kind)), Name: clean(r.Name), Liquid: num.With(num.Short(r.Liquid, 4), "Gyr"), Sentence: sentence(r.Outcome.Sentence), Why: sentence(r.Outcome.Why), Bar: bar}
+		row := comparedRow{blotOf: blot(r.Outcome.Kind, r.Outcome.TimeGyr, !lasting(r.Outcome.Kind)), Name: clean(r.Name), Liquid: typeset(num.With(num.Short(r.Liquid, 4), "Gyr")), Sentence: sentence(r.Outcome.Sentence), Why: sentence(r.Outcome.Why), Bar: bar}
 		if lasting(r.Outcome.Kind) {
-			row.Date = num.Pretty(num.Date(r.Outcome.TimeGyr, r.Outcome.ErrorGyr))
+			row.Date = strings.ReplaceAll(num.Pretty(num.Date(r.Outcome.TimeGyr, r.Outcome.ErrorGyr)), " ", "\u00a0")
 		}
 		row.LineRole, row.Dash = lineOf(i)
 		for _, m := range c.Margins {
 			v := "–"
 			if known(m.Values[i]) {
-				v = num.Pretty(num.Short(m.Values[i], 3))
+				v = unitSet("")(m.Values[i])
 			}
 			row.Margins = append(row.Margins, v)
 		}
@@ -188,20 +188,24 @@ func comparedFigures(c *record.Comparison) []*page.Figure {
 		r := &c.Results[i]
 		words = append(words, typeset(clean(r.Name)+": "+fateText(r.Outcome.Kind, r.Outcome.TimeGyr, !lasting(r.Outcome.Kind))+"."))
 	}
+	doubts := doubtsOf(c.Names, c.Runs)
+	near := func(figure string) []string {
+		return beside(doubts, func(w record.Warning) bool { return concerns(w.About, figure) })
+	}
 	return []*page.Figure{
-		{ID: "climate", Title: "Climate through time", Caption: words, Panels: []page.Panel{
+		{ID: "climate", Title: "Climate through time", Caption: append(words, rangedAll(c, "temperature", kelvin)...), Doubts: near("history"), Panels: []page.Panel{
 			{Name: "Surface temperature", Unit: "K", Height: 190, Limits: []page.Limit{{Value: 273.15, Words: "273 K, water freezes"}}, Curves: curves("temperature")},
 		}},
-		{ID: "co2", Title: "CO₂ through time", Panels: []page.Panel{
+		{ID: "co2", Title: "CO₂ through time", Caption: rangedAll(c, "pco2", pressure), Doubts: near("ocean"), Panels: []page.Panel{
 			{Name: "CO₂ partial pressure", Unit: "bar", Log: true, Height: 190, Curves: curves("pco2")},
 		}},
-		{ID: "sources", Title: "Outgassing through time", Panels: []page.Panel{
+		{ID: "sources", Title: "Outgassing through time", Caption: rangedAll(c, "outgassing", unitSet("Tmol/yr")), Doubts: near("fluxes"), Panels: []page.Panel{
 			{Name: "Outgassing", Unit: "Tmol/yr", Height: 150, Log: true, Curves: curves("outgassing")},
 		}},
-		{ID: "coldside", Title: "Distance to freezing", Panels: []page.Panel{
+		{ID: "coldside", Title: "Distance to freezing", Caption: rangedAll(c, "cold_margin", unitSet("")), Doubts: near("interior"), Panels: []page.Panel{
 			{Name: "Outgassing over what the warm state needs", Height: 150, Log: true, Limits: []page.Limit{{Value: 1, Words: "1: the warm state is lost"}}, Curves: curves("cold_margin")},
 		}},
-		{ID: "hotside", Title: "Distance to overheating", Panels: []page.Panel{
+		{ID: "hotside", Title: "Distance to overheating", Caption: rangedAll(c, "hot_margin", unitSet("%")), Panels: []page.Panel{
 			{Name: "Sunlight left to the radiation limit", Unit: "%", Height: 150, Limits: []page.Limit{{Value: 0, Words: "the radiation limit"}}, Curves: curves("hot_margin")},
 		}},
 	}

@@ -76,7 +76,7 @@ func EnsembleHTML(w io.Writer, e *record.Ensemble) error {
 	b.Heading = clip(sentence(e.Sentence), 600)
 	b.CountNote = typeset(fmt.Sprintf("%d members count for shares and dates, from %s to %s. Intervals are Wilson's at 95 %%; dates are ages of the star.", e.Independent, num.Age(e.StartGyr), num.Age(e.EndGyr)))
 	for _, x := range e.Warnings {
-		b.Doubts = append(b.Doubts, typeset(clean(x.Words)))
+		b.Doubts = append(b.Doubts, sentence(x.Words))
 	}
 	b.reuse = reuseOf(methodsOfEnsemble(e), e.Works)
 	b.fates()
@@ -131,7 +131,7 @@ func threeDates(q ...float64) string {
 			return "–"
 		}
 	}
-	return fmt.Sprintf("%s, %s, %s Gyr", num.Fix(q[0], 3), num.Fix(q[1], 3), num.Fix(q[2], 3))
+	return fmt.Sprintf("%s, %s, %s\u00a0Gyr", num.Fix(q[0], 3), num.Fix(q[1], 3), num.Fix(q[2], 3))
 }
 
 func percents(x record.Interval) string {
@@ -150,7 +150,7 @@ func (b *ensembleBody) fates() {
 	}
 	for i, bar := range bars(values, "quiet") {
 		s := order[i]
-		r := fateRow{blotOf: blot(s.Kind, nan(), false), Share: num.Percent(s.Share.Value), Interval: percents(s.Share), All: percents(s.WithAll), Dates: "–", Median: "–", Typical: "–", Bar: bar}
+		r := fateRow{blotOf: blot(s.Kind, nan(), false), Share: typeset(num.Percent(s.Share.Value)), Interval: typeset(percents(s.Share)), All: typeset(percents(s.WithAll)), Dates: "–", Median: "–", Typical: "–", Bar: bar}
 		if s.Typical >= 0 {
 			r.Typical = fmt.Sprint(s.Typical)
 		}
@@ -175,7 +175,7 @@ func (b *ensembleBody) decides() {
 	}
 	for _, s := range b.Sensitive {
 		t := clockTable{Name: typeset(upper(clean(s.Clock)))}
-		words := fmt.Sprintf("%s; %d of %d members have the event. %s.", clean(s.Quantity), s.Count, s.Of, upper(clean(s.Method)))
+		words := fmt.Sprintf("%s; %d of %d members have the event. %s.", upper(clean(s.Quantity)), s.Count, s.Of, upper(clean(s.Method)))
 		if known(s.Laws.Value) {
 			words += fmt.Sprintf(" The choices of law explain %s together (%s); numbers and their interplay with the laws the rest.", num.Percent(s.Laws.Value), percents(s.Laws))
 		}
@@ -305,6 +305,37 @@ func between(t, v []float64, at float64) float64 {
 	return v[i]
 }
 
+// liquidWords says when half and when all but a tenth of the members have failed.
+func liquidWords(c *record.Curve, final string) []string {
+	var out []string
+	for _, q := range []struct {
+		at    float64
+		words string
+	}{{0.9, "nine in ten"}, {0.5, "half"}, {0.1, "one in ten"}} {
+		if t, ok := crossing(c, q.at); ok {
+			out = append(out, typeset("No more than "+q.words+" keep liquid water from "+num.Age(t)+" on."))
+		}
+	}
+	return append(out, final)
+}
+
+// typicalWords says which members are drawn.
+func typicalWords(e *record.Ensemble) []string {
+	var out []string
+	for i, t := range e.Typical {
+		if i == 6 {
+			break
+		}
+		s := fmt.Sprintf("Member %d, %s", t.Member, clip(clean(string(t.Kind)), 60))
+		r := &record.Run{Rows: t.Rows}
+		if x := extremes(r, "temperature"); x.ok {
+			s += ": from " + kelvin(x.least) + " (" + age(x.tLeast) + ") to " + kelvin(x.most) + " (" + age(x.tMost) + ")"
+		}
+		out = append(out, typeset(s)+".")
+	}
+	return append(out, "Of each outcome it is the member whose date is close to the median and whose inputs are closest to the mean of its kind.")
+}
+
 func ensembleFigures(e *record.Ensemble) []*page.Figure {
 	var out []*page.Figure
 	percent := func(name string, curves []page.Curve) page.Panel {
@@ -319,7 +350,7 @@ func ensembleFigures(e *record.Ensemble) []*page.Figure {
 		if n < 0 {
 			return ""
 		}
-		return fmt.Sprintf("%s: %s (%s) by %s.", upper(typeset(clean(q.Name))), num.Percent(q.Value[n]), percents(record.Interval{Low: q.Low[n], High: q.High[n]}), num.Age(q.TimeGyr[n]))
+		return typeset(fmt.Sprintf("%s: %s (%s) by %s.", upper(clean(q.Name)), num.Percent(q.Value[n]), percents(record.Interval{Low: q.Low[n], High: q.High[n]}), num.Age(q.TimeGyr[n])))
 	}
 	if len(e.Incidence) > 0 {
 		var curves []page.Curve
@@ -334,11 +365,11 @@ func ensembleFigures(e *record.Ensemble) []*page.Figure {
 			curves = append(curves, c...)
 			words = append(words, final(q))
 		}
-		out = append(out, &page.Figure{ID: "incidence", Title: "Cumulative incidence of each failure", Caption: append(words, "The failures compete: each curve is the probability that this one has come first (Aalen and Johansen)."),
+		out = append(out, &page.Figure{ID: "incidence", Title: "Cumulative incidence of each failure", Caption: append(words, "The failures compete: each curve is the probability that this one has come first (Aalen and Johansen)."), Doubts: beside(e.Warnings, every),
 			Panels: []page.Panel{percent("Probability to have failed so", curves)}})
 	}
 	if len(e.Liquid.TimeGyr) > 1 {
-		out = append(out, &page.Figure{ID: "liquid", Title: "Probability of liquid water", Caption: []string{final(&e.Liquid)}, Panels: []page.Panel{percent("Probability that no failure has come yet", band(0, "pool.surface"))}})
+		out = append(out, &page.Figure{ID: "liquid", Title: "Probability of liquid water", Caption: liquidWords(&e.Liquid, final(&e.Liquid)), Panels: []page.Panel{percent("Probability that no failure has come yet", band(0, "pool.surface"))}})
 	}
 	if len(e.Typical) > 0 {
 		curves := func(column string) []page.Curve {
@@ -352,7 +383,7 @@ func ensembleFigures(e *record.Ensemble) []*page.Figure {
 			}
 			return out
 		}
-		out = append(out, &page.Figure{ID: "typical", Title: "A typical history of each outcome", Caption: []string{"Of each outcome the member whose date is close to the median and whose inputs are closest to the mean of its kind; cycle ensemble --member runs it in full."},
+		out = append(out, &page.Figure{ID: "typical", Title: "A typical history of each outcome", Caption: typicalWords(e),
 			Panels: []page.Panel{
 				{Name: "Surface temperature", Unit: "K", Height: 190, Limits: []page.Limit{{Value: 273.15, Words: "273 K, water freezes"}}, Curves: curves("temperature")},
 				{Name: "CO₂ partial pressure", Unit: "bar", Log: true, Height: 170, Curves: curves("pco2")},

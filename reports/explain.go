@@ -236,6 +236,9 @@ func titleFor(title, name string) string {
 	return clean(name)
 }
 
+// minus sets the sign of a number as print does.
+func minus(s string) string { return strings.Replace(s, "-", "−", 1) }
+
 // signed is a number with its sign.
 func signed(v float64) string {
 	s := num.Short(v, 3)

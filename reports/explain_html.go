@@ -171,19 +171,49 @@ func distanceFigures(e *record.Explanation) []*page.Figure {
 	}
 	cold, hot := "pool.surface", "state.runaway"
 	return []*page.Figure{
-		{ID: "distance", Title: "Distance to failure through time", Caption: words[:min(len(words), 4)],
+		{ID: "distance", Title: "Distance to failure through time", Caption: words[:min(len(words), 4)], Doubts: beside(e.Warnings, every),
 			Panels: []page.Panel{
 				{Name: "In factors of outgassing", Height: 150, Log: true, Limits: []page.Limit{{Value: 1, Words: "1: failure"}}, Curves: []page.Curve{{Column: "cold_outgassing_factor", Role: cold}, {Column: "hot_outgassing_factor", Role: hot, Dash: "dashed"}}},
 				{Name: "In sunlight", Unit: "%", Height: 150, Limits: []page.Limit{{Value: 0, Words: "0: failure"}}, Curves: []page.Curve{{Column: "cold_sunlight_percent", Role: cold}, {Column: "hot_sunlight_percent", Role: hot, Dash: "dashed"}}},
 				{Name: "In kelvin", Unit: "K", Height: 150, Limits: []page.Limit{{Value: 0, Words: "0: failure"}}, Curves: []page.Curve{{Column: "cold_K", Role: cold}, {Column: "hot_K", Role: hot, Dash: "dashed"}}},
 			}},
-		{ID: "thermostat", Title: "The thermostat through time", Caption: []string{"Gain is d ln W/d ln p of all weathering along the energy balance; the response time is that of surface carbon on its way back to balance."},
+		{ID: "thermostat", Title: "The thermostat through time", Caption: thermostatWords(e),
 			Panels: []page.Panel{
 				{Name: "Outgassing, and what the warm state needs", Unit: "Tmol/yr", Height: 130, Log: true, Curves: []page.Curve{{Column: "outgassing_Tmol_per_yr", Role: "ink"}, {Column: "warm_state_needs_Tmol_per_yr", Role: cold, Dash: "dashed"}}},
 				{Name: "Feedback gain", Height: 110, Curves: []page.Curve{{Column: "gain", Role: "ink"}}},
 				{Name: "Response time", Unit: "kyr", Height: 110, Log: true, Curves: []page.Curve{{Column: "response_time_kyr", Role: "ink"}}},
 			}},
 	}
+}
+
+// thermostatWords picks the weakest and the strongest moment of the thermostat.
+func thermostatWords(e *record.Explanation) []string {
+	var out []string
+	for _, q := range []struct {
+		name, unit string
+		get        func(*record.Distance) float64
+	}{
+		{"Outgassing", "Tmol/yr", func(d *record.Distance) float64 { return d.Outgassing }},
+		{"The feedback gain, d ln W/d ln pCO₂ of all weathering along the energy balance,", "", func(d *record.Distance) float64 { return d.Gain }},
+		{"The response time of surface carbon", "kyr", func(d *record.Distance) float64 { return d.ResponseKyr }},
+	} {
+		var lo, hi *record.Distance
+		for i := range e.Distances {
+			d := &e.Distances[i]
+			if v := q.get(d); known(v) {
+				if lo == nil || v < q.get(lo) {
+					lo = d
+				}
+				if hi == nil || v > q.get(hi) {
+					hi = d
+				}
+			}
+		}
+		if lo != nil {
+			out = append(out, typeset(q.name+" lies between "+pretty(q.get(lo), 3, q.unit)+" ("+age(lo.AgeGyr)+") and "+pretty(q.get(hi), 3, q.unit)+" ("+age(hi.AgeGyr)+")."))
+		}
+	}
+	return out
 }
 
 func (b *explainBody) fill() {
@@ -200,7 +230,7 @@ func (b *explainBody) fill() {
 		if known(d.From) && known(d.To) {
 			v = typeset(num.Short(d.From, 3) + " to " + num.With(num.Short(d.To, 3), d.Unit))
 		}
-		b.Drivers = append(b.Drivers, fact{Name: upper(clean(d.Name)), Note: clean(d.Doc), Value: v})
+		b.Drivers = append(b.Drivers, fact{Name: upper(clean(d.Name)), Note: typeset(clean(d.Doc)), Value: v})
 	}
 	for _, c := range e.Combinations {
 		row := comboRow{blotOf: blot(c.Outcome, c.TimeGyr, c.Censored)}
@@ -218,9 +248,9 @@ func (b *explainBody) fill() {
 		shares = append(shares, s.Gyr)
 	}
 	for i, bar := range bars(shares, "accent") {
-		b.Shares = append(b.Shares, shareRow{Name: clean(e.Cause.Shares[i].Driver), Value: num.With(signed(shares[i]), "Gyr"), Bar: bar})
+		b.Shares = append(b.Shares, shareRow{Name: clean(e.Cause.Shares[i].Driver), Value: typeset(num.With(minus(signed(shares[i])), "Gyr")), Bar: bar})
 	}
-	b.Whole = num.With(signed(e.Cause.WholeGyr), "Gyr")
+	b.Whole = typeset(num.With(minus(signed(e.Cause.WholeGyr)), "Gyr"))
 	for _, m := range e.Margins {
 		b.Margins = append(b.Margins, sentence(m.Words))
 	}

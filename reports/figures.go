@@ -327,7 +327,22 @@ func (c *captions) margins() []string {
 	if len(out) == 0 {
 		out = append(out, "The record names no closest approach for this run.")
 	}
-	return append(out, "A curve that reaches its dashed line is a climate that is lost; where a curve is missing the boundary does not exist at that time.")
+	for _, q := range []struct{ column, boundary string }{{"cold_margin", "cold fold"}, {"hot_margin", "radiation limit"}} {
+		rows, last := c.r.Rows, -1
+		col := record.ColumnNamed(q.column)
+		for i := range rows {
+			if known(col.Value(&rows[i])) {
+				last = i
+			}
+		}
+		switch {
+		case last < 0 && len(rows) > 0:
+			out = append(out, "There is no "+q.boundary+" at any time.")
+		case last >= 0 && last < len(rows)-1:
+			out = append(out, "After "+age(rows[last].Age/1e9)+" there is no "+q.boundary+" to be close to, or it has been passed.")
+		}
+	}
+	return out
 }
 
 func (c *captions) fluxes() []string {

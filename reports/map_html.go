@@ -6,6 +6,7 @@ import (
 	"html/template"
 	"io"
 	"math"
+	"sort"
 	"strings"
 
 	"cycle/carbon/record"
@@ -51,6 +52,18 @@ func MapHTML(w io.Writer, m *record.Map) error {
 		s := m.Shares[i]
 		b.Shares = append(b.Shares, mapShare{blotOf: blot(s.Kind, 0, false), Name: typeset(clean(string(s.Kind))), Value: num.Percent(s.Share), Bar: bar})
 	}
+	if largest := b.largest(); len(largest) > 0 {
+		var parts []string
+		for i, s := range largest {
+			if i < 3 {
+				parts = append(parts, s.Name+" "+s.Value)
+			}
+		}
+		b.Heading = sentence(fmt.Sprintf("over %s and %s: %s of the map", clean(m.X.Key), clean(m.Y.Key), strings.Join(parts, ", ")))
+		if w := b.own(); w != "" {
+			b.Heading = strings.TrimSuffix(b.Heading, ".") + "; " + lower(w) + "."
+		}
+	}
 	for _, l := range m.Lines {
 		b.LineNotes = append(b.LineNotes, sentence(l.Name+": "+l.Words))
 	}
@@ -66,6 +79,42 @@ func MapHTML(w io.Writer, m *record.Map) error {
 		return err
 	}
 	return doc.Write(w, mapPage)
+}
+
+// largest lists the fates by the part of the map they take.
+func (b *mapBody) largest() []mapShare {
+	order := make([]int, len(b.Map.Shares))
+	for i := range order {
+		order[i] = i
+	}
+	sort.SliceStable(order, func(i, j int) bool { return b.Map.Shares[order[i]].Share > b.Map.Shares[order[j]].Share })
+	var out []mapShare
+	for _, i := range order {
+		out = append(out, b.Shares[i])
+	}
+	return out
+}
+
+// own says what becomes of the scenario itself.
+func (b *mapBody) own() string {
+	m := b.Map
+	if m.Run == nil || m.Steady || m.Run.Outcome.Kind == "" {
+		return ""
+	}
+	o := &m.Run.Outcome
+	return typeset("The scenario itself: " + fateText(o.Kind, o.TimeGyr, !lasting(o.Kind)))
+}
+
+// doubts are those of the map, and those of the scenario's own history.
+func (b *mapBody) doubts() []record.Warning {
+	out := append([]record.Warning(nil), b.Map.Warnings...)
+	if b.Map.Run != nil {
+		for _, w := range b.Map.Run.Warnings {
+			w.Words = "in the scenario’s own history, " + clean(w.Words)
+			out = append(out, w)
+		}
+	}
+	return out
 }
 
 func axisName(a *record.Axis) string {
@@ -154,10 +203,16 @@ func (b *mapBody) plots() {
 		}
 	}
 	overlay(p, m)
-	for _, s := range b.Shares {
-		p.Caption = append(p.Caption, fmt.Sprintf("%s on %s of the map.", upper(s.Name), s.Value))
+	for i, s := range b.largest() {
+		if i == 4 {
+			break
+		}
+		p.Caption = append(p.Caption, typeset(fmt.Sprintf("%s on %s of the map.", upper(s.Name), s.Value)))
 	}
-	p.Caption = p.Caption[:min(3, len(p.Caption))]
+	if w := b.own(); w != "" {
+		p.Caption = append(p.Caption, w+".")
+	}
+	p.Doubts = beside(b.doubts(), every)
 	p.Alt = p.Title + ". " + strings.Join(p.Caption, " ")
 	b.Plots = append(b.Plots, p)
 
@@ -191,7 +246,7 @@ func (b *mapBody) plots() {
 		role := fmt.Sprintf("shade.%d", k+1)
 		if d := shade[fmt.Sprint(k)]; d != "" {
 			q.Areas = append(q.Areas, plotPath{Role: role, D: d})
-			q.Keys = append(q.Keys, plotKey{Role: role, Area: true, Name: num.Short(lo+(hi-lo)*float64(k)/steps, 3) + " to " + num.Age(lo+(hi-lo)*float64(k+1)/steps)})
+			q.Keys = append(q.Keys, plotKey{Role: role, Area: true, Name: num.Fix(lo+(hi-lo)*float64(k)/steps, 2) + " to " + num.Fix(lo+(hi-lo)*float64(k+1)/steps, 2) + "\u00a0Gyr"})
 		}
 	}
 	overlay(q, m)

@@ -14,6 +14,7 @@ import (
 type plot struct {
 	ID, Title, Alt string
 	Caption        []string
+	Doubts         []string // stand below the caption
 	W, H           float64
 	L, T, R, B     float64 // the frame
 	X, Y           plotAxis

@@ -732,6 +732,9 @@ func percent(x record.Interval) string {
 	case half < 1:
 		return fmt.Sprintf("%.1f %%", 100*x.Value)
 	}
+	if p := 100 * x.Value; p > 0 && p < 1 {
+		return fmt.Sprintf("%.1g %%", p)
+	}
 	return fmt.Sprintf("%.0f %%", 100*x.Value)
 }
 
@@ -775,7 +778,7 @@ func (s *summary) words() {
 		}
 	}
 	if clock != "" {
-		s.Worth += fmt.Sprintf(" The median date of %s is known to ± %.2g Gyr (%.2g %%).", clock, by, 100*worst)
+		s.Worth += fmt.Sprintf(" The median date of %s is known to ± %.2g Gyr (%s %%).", clock, by, plainCount(100*worst))
 		const numerical = 1e-3
 		if worst > numerical {
 			s.Worth += fmt.Sprintf(" Beyond about %s members it would be known better than a single date is computed (0.1 %%).", plainCount(float64(s.Members)*(worst/numerical)*(worst/numerical)))
@@ -815,16 +818,21 @@ func (s *summary) words() {
 	}
 }
 
-// plainCount writes a large number to two digits: 4800, 4.8 million.
+// plainCount writes a number to two digits without a power of ten: 3.5, 170,
+// 4800, 4.8 million.
 func plainCount(x float64) string {
+	word := ""
 	switch {
 	case x >= 1e9:
-		return fmt.Sprintf("%.2g billion", x/1e9)
+		x, word = x/1e9, " billion"
 	case x >= 1e6:
-		return fmt.Sprintf("%.2g million", x/1e6)
+		x, word = x/1e6, " million"
 	}
-	m := math.Pow(10, math.Max(0, math.Floor(math.Log10(math.Max(x, 1)))-1))
-	return fmt.Sprintf("%.0f", math.Round(x/m)*m)
+	if x < 10 {
+		return fmt.Sprintf("%.2g", x) + word
+	}
+	m := math.Pow(10, math.Floor(math.Log10(x))-1)
+	return fmt.Sprintf("%.0f", math.Round(x/m)*m) + word
 }
 
 func bitLen(n int) int {
