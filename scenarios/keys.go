@@ -269,14 +269,22 @@ func Keys(section string) ([]Key, error) {
 			out = append(out, *k)
 		}
 	}
+	if section == "" || section == uncertainSection {
+		out = append(out, uncertainKeys...)
+	}
 	if out == nil {
-		return nil, &KeyError{Key: section, What: "there is no such section or key", Allowed: strings.Join(c.order, ", "), Near: Nearest(section, append(c.dotted(), c.order...))}
+		return nil, &KeyError{Key: section, What: "there is no such section or key", Allowed: strings.Join(append(slices.Clone(c.order), uncertainSection), ", "), Near: Nearest(section, append(append(c.dotted(), c.order...), uncertainSection))}
 	}
 	return out, nil
 }
 
 // SectionDoc returns what a section is about.
-func SectionDoc(section string) string { return known().docs[first(section)] }
+func SectionDoc(section string) string {
+	if section == uncertainSection {
+		return "distributions instead of values, for cycle ensemble"
+	}
+	return known().docs[first(section)]
+}
 
 // Laws returns the laws a section offers, nil when it has no key "law" of this kind.
 func Laws(section string) []Law {

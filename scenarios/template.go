@@ -94,7 +94,23 @@ func Template(name string) string {
 			}
 		}
 	}
+	b.WriteString("\n")
+	comment(&b, "Distributions instead of values, for cycle ensemble "+name+".toml (cycle keys uncertain): \"published\" is uniform over the range the key's source gives.")
+	for _, line := range templateUncertain {
+		b.WriteString("# " + line + "\n")
+	}
 	return b.String()
+}
+
+// templateUncertain is an example of the section [uncertain].
+var templateUncertain = []string{
+	"[uncertain]",
+	`"weathering.land.efold" = "published"`,
+	`"sources.outgassing" = { distribution = "uniform", low = "6 Tmol/yr", high = "10 Tmol/yr" }`,
+	`"land.middle" = { distribution = "normal", mean = "2 Gyr", sd = "0.3 Gyr", at_least = "1 Gyr" }`,
+	`"weathering.land.law" = { choices = ["walker1981", "krissansentotton2017"], weights = [2, 1] }`,
+	`correlations = [ { between = ["weathering.land.efold", "sources.outgassing"], rank = 0.3 } ]`,
+	`ages = ["2.07 Gyr"]`,
 }
 
 // comment writes wrapped comment lines.

@@ -57,6 +57,43 @@ var shapes = []struct {
 	{Published, nil, false},
 }
 
+// uncertainKeys explains the section as Keys lists it. KEY stands for the full
+// name of a key of another section.
+var uncertainKeys = func() []Key {
+	const of = `"KEY".`
+	list := []Key{
+		{Name: `"KEY"`, Kind: "distribution", Default: "none: the key has its one value", Allowed: `"published", or { distribution = ... } with the words below, or { choices = ... }`, Doc: `the distribution of a key, by its full name in quotes; "published" is uniform over the range its source gives. A key that --set gives a value is certain`},
+		{Name: of + "distribution", Kind: "word", Doc: "its shape"},
+		{Name: of + "low", Kind: "value", Allowed: "what KEY allows, with its unit", Doc: "lower end of uniform, log-uniform and triangular"},
+		{Name: of + "high", Kind: "value", Allowed: "above low", Doc: "upper end of the same"},
+		{Name: of + "mode", Kind: "value", Allowed: "from low to high", Doc: "most likely value of triangular"},
+		{Name: of + "mean", Kind: "value", Allowed: "what KEY allows, with its unit", Doc: "mean of normal"},
+		{Name: of + "sd", Kind: "value", Allowed: "above zero, with the unit of KEY", Doc: "standard deviation of normal"},
+		{Name: of + "median", Kind: "value", Allowed: "above zero, with its unit", Doc: "median of log-normal"},
+		{Name: of + "sigma", Kind: "number", Allowed: "above zero", Doc: "standard deviation of the natural logarithm, of log-normal"},
+		{Name: of + "at_least", Kind: "value", Allowed: "what KEY allows, with its unit", Doc: "normal and log-normal are cut off below it"},
+		{Name: of + "at_most", Kind: "value", Allowed: "above at_least", Doc: "normal and log-normal are cut off above it"},
+		{Name: of + "choices", Kind: "list", Allowed: "a list of at least two of the words that KEY allows", Doc: "the laws or words a member may have"},
+		{Name: of + "weights", Kind: "list", Default: "all alike", Allowed: "a list of positive numbers, one a choice", Doc: "how likely each choice is against the others"},
+		{Name: "correlations", Kind: "list", Default: "[]", Allowed: `[ { between = ["KEY", "OTHER"], rank = 0.5 } ], rank above -1 and below 1`, Doc: "rank correlations between two uncertain numbers"},
+		{Name: "ages", Kind: "list", Default: "[]", Allowed: `a list of ages within the history: ["2.07 Gyr"]`, Doc: "ages at which the spread of temperature, CO2 and pH is reported"},
+	}
+	var names []string
+	for _, s := range shapes {
+		if s.name != Published {
+			names = append(names, s.name)
+		}
+	}
+	list[1].Allowed = words(names)
+	for i := range list {
+		list[i].Section, list[i].Source = uncertainSection, "the user"
+		if list[i].Default == "" {
+			list[i].Default = "none"
+		}
+	}
+	return list
+}()
+
 // specWords are the keys inside a distribution.
 var specWords = []string{"distribution", "low", "high", "mean", "sd", "median", "sigma", "mode", "at_least", "at_most", "choices", "weights"}
 

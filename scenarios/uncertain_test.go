@@ -132,3 +132,41 @@ law = "krissansentotton2017"
 		t.Error(err)
 	}
 }
+
+// The example at the end of a new scenario holds once its "#" are taken away, and
+// every word a distribution may have is explained.
+func TestUncertainExplained(t *testing.T) {
+	text := Template("mine")
+	_, example, ok := strings.Cut(text, "# [uncertain]\n")
+	if !ok {
+		t.Fatal("a new scenario shows no distributions")
+	}
+	r, err := Parse("mine.toml", []byte(text+"\n[uncertain]\n"+strings.ReplaceAll(example, "# ", "")), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if u := r.Uncertain; u == nil || len(u.Priors) != 4 || len(u.Correlations) != 1 || len(u.Ages) != 1 {
+		t.Errorf("the example gives %+v", r.Uncertain)
+	}
+	keys, err := Keys("uncertain")
+	if err != nil {
+		t.Fatal(err)
+	}
+	told := map[string]bool{}
+	for _, k := range keys {
+		told[k.Name] = true
+		if k.Doc == "" || k.Allowed == "" || k.Default == "" || k.Source == "" || k.Section != "uncertain" {
+			t.Errorf("not explained: %+v", k)
+		}
+	}
+	for _, w := range specWords {
+		if !told[`"KEY".`+w] {
+			t.Errorf("the word %s is not explained", w)
+		}
+	}
+	for _, s := range shapes {
+		if s.name != Published && !strings.Contains(keys[1].Allowed, s.name) {
+			t.Errorf("the distribution %s is not named", s.name)
+		}
+	}
+}

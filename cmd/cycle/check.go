@@ -20,7 +20,8 @@ var checkCommand = command{
 	usage: `
 Reads a scenario and prints every value with its unit, who set it (default, built-in,
 file or --set), what is allowed and where the value comes from. A "!" marks a value
-outside the range its source gives. Nothing is computed or written.
+outside the range its source gives. Of the section [uncertain] it tells every
+distribution with its unit. Nothing is computed or written.
 
   --set KEY=VALUE    a value over that of the scenario; repeatable
   --quiet            print nothing unless something is wrong
@@ -63,6 +64,7 @@ func check(u *ui, o *options, args []string) int {
 		}
 		fmt.Fprintf(u.out, "%s %s  %s  %s  %s  %s\n", mark, pad(leaf(in.Key), keyW), pad(in.Value, valW), pad(in.Origin, originW), pad(allowedWords(in), allowedW), in.Source)
 	}
+	uncertainty(u, r, inputs)
 	forcing, sensitivity := m.Response()
 	fmt.Fprintf(u.out, "\nat the reference state: CO2 forcing %.3g W/m2 a doubling, sensitivity %.3g K a doubling at fixed sunlight\n", forcing, sensitivity)
 	set := 0
@@ -73,6 +75,42 @@ func check(u *ui, o *options, args []string) int {
 	}
 	fmt.Fprintf(u.out, "%d values, %d of them set, %s\n", len(inputs), set, outsideWords(inputs, outside))
 	return exitOK
+}
+
+// uncertainty lists the section [uncertain]: every key with its distribution in
+// its unit, and where its value and range come from.
+func uncertainty(u *ui, r *scenarios.Resolved, inputs []record.Input) {
+	if r.Uncertain == nil {
+		return
+	}
+	fmt.Fprintf(u.out, "\n[uncertain] %s\n", scenarios.SectionDoc("uncertain"))
+	var rows [][2]string
+	keyW, distW := 0, 0
+	for i := range r.Uncertain.Priors {
+		p := &r.Uncertain.Priors[i]
+		rows = append(rows, [2]string{p.Key, r.Words(p)})
+		keyW, distW = max(keyW, len(p.Key)), max(distW, utf8.RuneCountInString(r.Words(p)))
+	}
+	for _, row := range rows {
+		source := "a key of another law"
+		for _, in := range inputs {
+			if in.Key == row[0] {
+				source = allowedWords(in) + "; " + in.Source
+			}
+		}
+		fmt.Fprintf(u.out, "  %s  %s  %s\n", pad(row[0], keyW), pad(row[1], min(distW, 60)), source)
+	}
+	for _, c := range r.Uncertain.Correlations {
+		fmt.Fprintf(u.out, "  %s and %s: rank correlation %g\n", c.A, c.B, c.Rank)
+	}
+	words := "1 key is uncertain"
+	if n := len(rows); n != 1 {
+		words = fmt.Sprintf("%d keys are uncertain", n)
+	}
+	if n := len(r.Uncertain.Correlations); n > 0 {
+		words += fmt.Sprintf(", %d of their pairs correlated", n)
+	}
+	fmt.Fprintf(u.out, "%s; run and explain take the values above, cycle ensemble draws from these\n", words)
 }
 
 func outsideWords(inputs []record.Input, n int) string {

@@ -17,7 +17,8 @@ var keysCommand = command{
 	usage: `
 Lists the keys a scenario may set, with meaning, default, allowed and published range,
 units and the source of the default; for a section with a choice of laws, also the
-laws. SECTION may be a full key as well.
+laws. SECTION may be a full key as well, or "uncertain": how a key is given a
+distribution instead of a value, for cycle ensemble.
 
   cycle keys weathering.land
 `,

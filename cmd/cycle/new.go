@@ -17,8 +17,9 @@ var newCommand = command{
 	minArgs: 1, maxArgs: 1, run: newScenario,
 	flags: func(f *pflag.FlagSet, o *options) { quietFlag(f, o) },
 	usage: `
-Writes NAME.toml, an Earth whose keys are explained, to be edited. A file that is
-there already is left alone.
+Writes NAME.toml, an Earth whose keys are explained, to be edited; at its end stands
+an example of distributions for cycle ensemble, behind "#". A file that is there
+already is left alone.
 
   --quiet            print nothing unless something is wrong
 

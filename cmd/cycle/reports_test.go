@@ -369,3 +369,23 @@ func TestUnits(t *testing.T) {
 		t.Errorf("only %d values with a dimension were found", seen)
 	}
 }
+
+// check tells how many keys are uncertain, and each with its distribution, unit
+// and source.
+func TestCheckUncertain(t *testing.T) {
+	status, stdout, stderr := call("check", "earth_uncertain")
+	if status != exitOK || stderr != "" {
+		t.Fatalf("status %d, %s", status, stderr)
+	}
+	for _, want := range []string{"[uncertain] ", "uniform, 6 to 10 Tmol/yr ", "Haqq-Misra et al. 2016", "12 keys are uncertain", "weathering.land.efold                  uniform, 10 to 40 K"} {
+		if !strings.Contains(stdout, want) {
+			t.Errorf("check does not tell %q", want)
+		}
+	}
+	if _, stdout, _ := call("check", "earth"); strings.Contains(stdout, "uncertain") {
+		t.Error("a scenario without distributions speaks of them")
+	}
+	if status, stdout, _ := call("keys", "uncertain"); status != exitOK || !strings.Contains(stdout, `"log-uniform"`) {
+		t.Errorf("keys does not explain the section:\n%s", stdout)
+	}
+}
