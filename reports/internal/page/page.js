@@ -845,7 +845,9 @@ document.addEventListener("click", async (ev) => {
   } else if (b.dataset.save === "rows") {
     save(page.file + "-history.csv", new Blob([csv([...columns.values()])], { type: "text/csv" }));
   } else if (b.dataset.save) {
-    save(b.dataset.save, new Blob([$("#" + b.dataset.from).textContent], { type: "text/plain" }));
+    // An ending alone goes with the name of the page's files.
+    const name = (b.dataset.save[0] === "." ? page.file : "") + b.dataset.save;
+    save(name, new Blob([$("#" + b.dataset.from).textContent], { type: "text/plain" }));
   } else if (b.dataset.copy) {
     const from = $("#" + b.dataset.copy);
     getSelection().selectAllChildren(from);
