@@ -3,7 +3,10 @@ package reports
 import (
 	"fmt"
 	"io"
+	"math"
 	"strings"
+
+	"github.com/mattn/go-runewidth"
 
 	"cycle/carbon/record"
 	"cycle/reports/internal/num"
@@ -67,6 +70,14 @@ func HistoriesParquet(w io.Writer, c *record.Comparison) error {
 	return historiesSheet(c).parquet(w, map[string]string{"title": strings.Join(c.Names, ", "), "version": c.Version})
 }
 
+// letterOf names a scenario in the tables of a terminal.
+func letterOf(i int) string {
+	if i < 26 {
+		return string(rune('A' + i))
+	}
+	return fmt.Sprint(i + 1)
+}
+
 // CompareTerminal writes the comparison for people.
 func CompareTerminal(w io.Writer, c *record.Comparison, opt TerminalOptions) error {
 	t := newTerminal(opt, strings.Join(c.Names, " / "), "", c.Version)
@@ -74,13 +85,25 @@ func CompareTerminal(w io.Writer, c *record.Comparison, opt TerminalOptions) err
 	var rows [][]string
 	for i := range c.Results {
 		r := &c.Results[i]
-		date := "to " + num.Age(r.Outcome.TimeGyr)
-		if lasting(r.Outcome.Kind) {
-			date = "at " + num.Date(r.Outcome.TimeGyr, r.Outcome.ErrorGyr)
+		date := "up to " + num.Age(r.Outcome.TimeGyr)
+		switch {
+		case !lasting(r.Outcome.Kind):
+		case r.Outcome.ErrorGyr >= 0.5e-3:
+			date = num.Date(r.Outcome.TimeGyr, r.Outcome.ErrorGyr)
+		default:
+			date = num.Age(r.Outcome.TimeGyr)
 		}
-		rows = append(rows, []string{clean(r.Name), clean(string(r.Outcome.Kind)), date, num.With(num.Short(r.Liquid, 4), "Gyr") + " of liquid water"})
+		name := short(clean(r.Name), max(12, t.width-60))
+		rows = append(rows, []string{letterOf(i), name, clean(string(r.Outcome.Kind)), date, num.With(num.Short(r.Liquid, 4), "Gyr")})
+	}
+	if len(rows) > 0 {
+		rows = append([][]string{{"", "", "outcome", "date", "liquid water"}}, rows...)
 	}
 	t.table("What becomes of them", rows)
+	head := []string{""}
+	for i := range c.Names {
+		head = append(head, letterOf(i))
+	}
 	rows = nil
 	for _, d := range c.Differ {
 		row := []string{clean(d.Key)}
@@ -92,26 +115,66 @@ func CompareTerminal(w io.Writer, c *record.Comparison, opt TerminalOptions) err
 		}
 		rows = append(rows, row)
 	}
-	if len(rows) > 0 {
-		head := []string{""}
-		for _, n := range c.Names {
-			head = append(head, clean(n))
-		}
-		rows = append([][]string{head}, rows...)
-	}
-	t.table(fmt.Sprintf("What differs in input (%d agree)", c.Agree), rows)
+	t.grid(fmt.Sprintf("What differs in input (%d agree)", c.Agree), head, rows)
 	rows = nil
 	for _, m := range c.Margins {
 		row := []string{clean(m.Boundary + ", " + m.Unit)}
 		for i := range m.Values {
 			v := "-"
 			if known(m.Values[i]) {
-				v = num.Short(m.Values[i], 3) + " at " + num.Age(m.TimeGyr[i])
+				v = num.Short(m.Values[i], 3)
+				if math.Abs(m.Values[i]) < 0.0005 { // a limit that is reached
+					v = "0"
+				}
+				v += " at " + num.Age(m.TimeGyr[i])
 			}
 			row = append(row, v)
 		}
 		rows = append(rows, row)
 	}
-	t.table("Closest approach to", rows)
+	t.grid("Closest approach to", head, rows)
 	return t.write(w)
+}
+
+// grid is a table with a column a scenario. Where it is too wide for the terminal
+// the values of a row stand below its name.
+func (t *terminal) grid(title string, head []string, rows [][]string) {
+	if len(rows) == 0 {
+		return
+	}
+	var wide []int
+	for _, r := range append([][]string{head}, rows...) {
+		for i := range r {
+			if r[i] = plainly(r[i]); i >= len(wide) {
+				wide = append(wide, 0)
+			}
+			wide[i] = max(wide[i], runewidth.StringWidth(r[i]))
+		}
+	}
+	total := 2 * len(wide)
+	for _, w := range wide {
+		total += w
+	}
+	if total <= t.width {
+		t.table(title, append([][]string{head}, rows...))
+		return
+	}
+	t.line(t.bold(title))
+	for _, r := range rows {
+		t.line("  " + short(r[0], t.width-2))
+		line := ""
+		for i, v := range r[1:] {
+			cell := letterOf(i) + " " + v
+			if line != "" && runewidth.StringWidth(line)+3+runewidth.StringWidth(cell) > t.width-6 {
+				t.line("      " + line)
+				line = ""
+			}
+			if line != "" {
+				line += "   "
+			}
+			line += cell
+		}
+		t.line("      " + short(line, t.width-6))
+	}
+	t.line("")
 }

@@ -100,7 +100,7 @@ func EnsembleTerminal(w io.Writer, e *record.Ensemble, opt TerminalOptions) erro
 	}
 	if e.Worth != "" {
 		t.line("")
-		t.item("more", clean(e.Worth), 4)
+		t.item("more", clean(e.Worth), 6)
 	}
 	t.doubts(e.Warnings, 6)
 	_, err := io.WriteString(w, strings.Join(t.out, "\n")+"\n")

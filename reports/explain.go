@@ -147,6 +147,26 @@ func fateText(k record.Kind, gyr float64, censored bool) string {
 	return clean(string(k)) + " at " + num.Age(gyr)
 }
 
+// changeText words a change with its unit once.
+func changeText(r *record.Rescue) string {
+	from, to := clean(r.FromText), clean(r.ToText)
+	if _, unit, ok := strings.Cut(to, " "); ok {
+		from = strings.TrimSuffix(from, " "+unit)
+	}
+	return from + " -> " + to
+}
+
+// shortFate words an outcome for a narrow column.
+func shortFate(k record.Kind, gyr float64) string {
+	switch {
+	case k == "":
+		return "cannot be computed"
+	case !lasting(k) || k == record.StarLeft:
+		return "no failure"
+	}
+	return clean(string(k)) + ", " + num.Fix(gyr, 2) + " Gyr"
+}
+
 // shownRescues and the like are how many rows a terminal gets.
 const (
 	shownRescues      = 8
@@ -201,7 +221,7 @@ func ExplainTerminal(w io.Writer, e *record.Explanation, opt TerminalOptions) er
 			if !r.Published {
 				mark = "*"
 			}
-			rows = append(rows, []string{clean(r.Key), clean(r.FromText) + " -> " + clean(r.ToText) + mark, fateText(r.Outcome, r.TimeGyr, !lasting(r.Outcome) || r.Outcome == record.StarLeft)})
+			rows = append(rows, []string{clean(r.Key), changeText(&r) + mark, shortFate(r.Outcome, r.TimeGyr)})
 		}
 	}
 	t.table(head, rows)

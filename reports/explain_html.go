@@ -325,7 +325,7 @@ func (b *explainBody) elasticities() {
 		x := shown[i]
 		row := elasticRow{Key: clean(x.Key), Doc: typeset(clean(x.Doc)), Value: "–", Moves: "–", Near: typeset(clean(x.Near)), Bar: bar}
 		if known(x.Value) {
-			row.Value = signed(x.Value) + " ± " + num.Pretty(num.Short(x.Error, 1))
+			row.Value = minus(signed(x.Value)) + " ± " + num.Pretty(num.Short(x.Error, 1))
 			row.Moves = num.With(num.Pretty(signed(x.Gyr*1e3)), "Myr")
 		}
 		b.Elastic = append(b.Elastic, row)
