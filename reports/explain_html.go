@@ -222,7 +222,7 @@ func (b *explainBody) fill() {
 	b.Heading = clip(sentence(e.Outcome.Sentence), 600)
 	b.CauseWords, b.SpreadWords = sentence(e.Cause.Words), sentence(e.Spread.Words)
 	for _, w := range e.Warnings {
-		b.Doubts = append(b.Doubts, record.Warning{About: clean(w.About), Words: sentence(w.Words)})
+		b.Doubts = append(b.Doubts, record.Warning{About: clean(w.About), Words: typeset(sentenceEnd(w.Words))})
 	}
 	for _, d := range e.Drivers {
 		b.DriverNames = append(b.DriverNames, clean(d.Name))

@@ -171,7 +171,7 @@ func (b *runBody) fill() {
 	b.Why = sentence(r.Outcome.Why)
 	b.FullTitle = strings.TrimSpace(r.Title)
 	b.ShortTitle = clip(titleOf(r), 120)
-	b.Kind = upper(clip(clean(string(r.Outcome.Kind)), 80))
+	b.Kind = typeset(upper(clip(clean(string(r.Outcome.Kind)), 80)))
 	b.Role = outcomeRole(r.Outcome.Kind)
 	b.Date, b.Ago = when(r)
 	b.Date = num.Pretty(strings.TrimPrefix(b.Date, "at "))
@@ -184,10 +184,10 @@ func (b *runBody) fill() {
 			b.Passed = append(b.Passed, fmt.Sprintf("%d more stand below the first figure.", len(r.Recoveries)-i))
 			break
 		}
-		b.Passed = append(b.Passed, sentence(passed(&r.Recoveries[i], num.Pretty)))
+		b.Passed = append(b.Passed, strings.Replace(sentence(passed(&r.Recoveries[i], num.Pretty)), ": -", ": −", 1))
 	}
 	for _, w := range r.Warnings {
-		b.Doubts = append(b.Doubts, record.Warning{About: clean(w.About), Words: sentence(w.Words)})
+		b.Doubts = append(b.Doubts, record.Warning{About: clean(w.About), Words: typeset(sentenceEnd(w.Words))})
 	}
 	b.FirstDoubts = b.Doubts
 	if len(b.Doubts) > 6 {

@@ -68,7 +68,7 @@ func stripOf(r *record.Run) *strip {
 			anchor = "end"
 		}
 		date := age(r.Outcome.TimeGyr)
-		s.End = &stripTick{X: percent(x), Label: clip(clean(string(r.Outcome.Kind)), 40) + ", " + date, Anchor: anchor}
+		s.End = &stripTick{X: percent(x), Label: typeset(clip(clean(string(r.Outcome.Kind)), 40)) + ", " + date, Anchor: anchor}
 	}
 	return s
 }

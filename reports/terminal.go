@@ -277,7 +277,7 @@ func feedbackWords(r *record.Run) string {
 		parts = append(parts, "gain "+num.Short(f.Gain, 3))
 	}
 	if known(f.ResponseKyr) {
-		parts = append(parts, "response "+num.With(num.Short(f.ResponseKyr, 3), "kyr"))
+		parts = append(parts, "response "+num.Span(f.ResponseKyr*1e-6))
 	}
 	if known(f.Sensitivity) {
 		parts = append(parts, num.With(num.Short(f.Sensitivity, 3), "K")+" a doubling of CO₂")

@@ -27,7 +27,7 @@ func factsOf(r *record.Run) []fact {
 		add("Outgassing", pretty(s.Outgassing, 3, "Tmol/yr"), "")
 	}
 	add("Feedback gain", pretty(f.Gain, 3, ""), "d ln W / d ln pCO₂")
-	add("Response time", pretty(f.ResponseKyr, 3, "kyr"), "surface carbon, e-folding")
+	add("Response time", num.Pretty(num.Span(f.ResponseKyr*1e-6)), "of surface carbon, e-fold")
 	add("Sensitivity", pretty(f.Sensitivity, 3, "K"), "a doubling of CO₂")
 	add("Forcing", pretty(f.Forcing, 3, "W/m²"), "a doubling of CO₂")
 	return out
