@@ -27,15 +27,16 @@ type Data struct {
 	Columns []Column
 	Rows    int
 
-	drop int // bits of the mantissa left out, so that a long history stays small
+	drop   int    // bits of the mantissa left out, so that a long history stays small
+	packed string // what the page carries
 }
 
 // settle leaves out digits until the rows take no more than room, in characters.
 // All rows stay: a history of hundreds of cycles can still be zoomed.
 func (d *Data) settle(sets [][]int, room int) error {
 	for _, d.drop = range []int{0, 3, 6, 9, 12} {
-		s, err := d.pack(sets)
-		if err != nil || len(s) <= room {
+		var err error
+		if d.packed, err = d.pack(sets); err != nil || len(d.packed) <= room {
 			return err
 		}
 	}

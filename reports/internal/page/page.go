@@ -151,10 +151,6 @@ func (d *Document) Write(w io.Writer, t *template.Template) error {
 	if err != nil {
 		return err
 	}
-	rows, err := d.Data.pack(sets)
-	if err != nil {
-		return err
-	}
 	library, err := libraryHash()
 	if err != nil {
 		return err
@@ -177,7 +173,7 @@ func (d *Document) Write(w io.Writer, t *template.Template) error {
 `)
 	out.write(body.String())
 	out.write("\n<script type=\"application/json\" id=\"page-data\">" + string(data) + "</script>\n")
-	out.write("<script type=\"text/plain\" id=\"page-rows\">" + rows + "</script>\n")
+	out.write("<script type=\"text/plain\" id=\"page-rows\">" + d.Data.packed + "</script>\n")
 	out.write("<script type=\"text/plain\" id=\"page-library\">" + base64.StdEncoding.EncodeToString(assets.EChartsGzip) + "</script>\n")
 	out.write("<script>" + script + "</script>\n</body>\n</html>\n")
 	return out.err
