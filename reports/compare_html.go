@@ -63,7 +63,7 @@ func CompareHTML(w io.Writer, c *record.Comparison) error {
 	b.Heading = clip(sentence(c.Words), 400)
 	b.AgreeWords = fmt.Sprintf("%d inputs are the same everywhere and are not shown.", c.Agree)
 	for _, m := range c.Margins {
-		b.MarginHeads = append(b.MarginHeads, typeset("Closest to the "+clean(m.Boundary)+" ("+clean(m.Side)+" side), "+clean(m.Unit)))
+		b.MarginHeads = append(b.MarginHeads, typeset(upper(clean(m.Boundary))+", "+clean(m.Unit)))
 	}
 	var liquid []float64
 	for i := range c.Results {

@@ -158,7 +158,7 @@ func (b *ensembleBody) fates() {
 			if d.Failure && d.Clock == string(s.Kind) && len(d.Quantiles) == 5 {
 				r.Dates = threeDates(d.Quantiles[0].TimeGyr.Value, d.Quantiles[2].TimeGyr.Value, d.Quantiles[4].TimeGyr.Value)
 				if m := d.Quantiles[2].TimeGyr; known(m.Low) && known(m.High) {
-					r.Median = num.Fix(m.Low, 4) + " to " + num.Fix(m.High, 4) + " Gyr"
+					r.Median = num.Fix(m.Low, 4) + " to " + num.Fix(m.High, 4) + "\u00a0Gyr"
 				}
 			}
 		}

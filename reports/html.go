@@ -275,7 +275,7 @@ func typeset(s string) string {
 
 var plainNumber = regexp.MustCompile(`\b[0-9]+(?:\.[0-9]+)?e[+-]?[0-9]{1,3}\b`)
 
-var beforeUnit = regexp.MustCompile(`([0-9⁰¹²³⁴⁵⁶⁷⁸⁹]) (%|K|[GMk]?yr|ppm|bar|Tmol/yr|Emol|TW|W/m[2²]|au)`)
+var beforeUnit = regexp.MustCompile(`([0-9⁰¹²³⁴⁵⁶⁷⁸⁹]) (%|K|[GMk]?yr|ppm|bar|Tmol/yr|Emol|mmol/kg|kJ/mol|M_E|TW|W/m[2²]|au)`)
 
 func upper(s string) string {
 	r, n := utf8.DecodeRuneInString(s)

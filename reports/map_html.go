@@ -269,7 +269,9 @@ func overlay(p *plot, m *record.Map) {
 		for _, q := range m.Path {
 			xs, ys = append(xs, q.X), append(ys, q.Y)
 		}
-		p.curve("paper", "", true, xs, ys)
+		if p.curve("paper", "", true, xs, ys) { // so that the path stands out from every fate
+			p.Lines[len(p.Lines)-1].Halo = true
+		}
 		p.curve("flux.pulse", "", true, xs, ys)
 		first, last := m.Path[0], m.Path[len(m.Path)-1]
 		p.dot("flux.pulse", num.Age(first.AgeGyr), first.X, first.Y, false)
