@@ -748,7 +748,7 @@ func (b *builder) warnings(residual float64) {
 		b.warn("solver", "the stability guard is off: a lost climate branch may have been followed")
 	}
 	if h.cause != nil {
-		b.warn("solver", "the solver stopped: "+b.stopped())
+		b.warn("solver", "the solver stopped: "+strings.Replace(b.stopped(), "the solver ", "it ", 1))
 	}
 	if h.reason == endSwings {
 		b.warn("solver", fmt.Sprintf("the history was stopped after %d swings of the temperature, at %.3g Gyr", h.swings.count/2, gyr(h.end)))
