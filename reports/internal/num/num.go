@@ -132,10 +132,21 @@ func Date(gyr, err float64) string {
 	}
 	err = math.Abs(err)
 	if err < 0.5e-4 {
-		return Fix(gyr, 4) + " Gyr ± under 0.1 Myr"
+		return Fix(gyr, 4) + " Gyr ± " + small(err)
 	}
 	d := min(max(int(math.Ceil(-math.Log10(err)-1e-9)), 2), 4)
 	return Fix(gyr, d) + " ± " + Fix(err, d) + " Gyr"
+}
+
+// small writes an error below 0.1 Myr, given in Gyr, as headlines do.
+func small(gyr float64) string {
+	switch yr := gyr * 1e9; {
+	case yr >= 1000:
+		return Fix(yr/1e3, 0) + " kyr"
+	case yr >= 1:
+		return Fix(yr, 0) + " yr"
+	}
+	return "below 1 yr"
 }
 
 // Ago writes a date as time from a present: "2.63 Gyr before" or "1.20 Gyr after".
