@@ -754,7 +754,7 @@ func (s *Solver) stabilityExcess(jac []float64, st []blockState) float64 {
 	for k, b := range g.blocks {
 		m := len(b)
 		c0 := g.cur[k].count
-		v := math.Inf(-1)
+		var v float64
 		if m == 1 {
 			v = s.dir*s.entry(jac, b[0], b[0]) - sig
 			if c0 == 1 {
