@@ -418,3 +418,41 @@ func TestIntegrateAt(t *testing.T) {
 		}
 	}
 }
+
+// TestStateAfterEvent: what the next step starts from belongs to the time of the
+// event: the state, f and the Jacobian there.
+func TestStateAfterEvent(t *testing.T) {
+	f := func(d []float64, t float64, y []float64) { d[0], d[1] = y[1]+0.1*y[0]*y[0], -y[0]*math.Cosh(0.1*t) }
+	for _, m := range []Method{Rodas5P, RadauIIA3, RadauIIA5, RadauIIA7} {
+		s := mustSolver(t, &Problem{Dim: 2, Func: f, Events: []Event{
+			{Func: func(_ float64, y []float64) float64 { return y[0] }},
+			{Func: func(t float64, y []float64) float64 { return y[1] - 0.3*math.Sin(t) }},
+		}}, &Settings{Method: m, RelTol: 1e-6, AbsTol: []float64{1e-9}})
+		if err := s.Init(0, 20, []float64{0.5, 0}); err != nil {
+			t.Fatal(err)
+		}
+		fired := 0
+		for done := false; !done; {
+			var err error
+			if done, err = s.Step(); err != nil {
+				t.Fatal(m, err)
+			}
+			fired += len(s.Fired())
+			y := s.Y()
+			var d [2]float64
+			f(d[:], s.T(), y)
+			if d[0] != s.f0[0] || d[1] != s.f0[1] {
+				t.Fatalf("%v: f at %g is %v, the solver holds %v", m, s.T(), d, s.f0)
+			}
+			want := [4]float64{0.2 * y[0], 1, -math.Cosh(0.1 * s.T()), 0}
+			for i, v := range s.jac {
+				if math.Abs(v-want[i]) > 1e-4 { // differences
+					t.Fatalf("%v: Jacobian at %g is %v, want %v", m, s.T(), s.jac, want)
+				}
+			}
+		}
+		if fired < 10 {
+			t.Errorf("%v: %d events", m, fired)
+		}
+	}
+}
