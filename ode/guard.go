@@ -39,6 +39,7 @@ type guardState struct {
 	ref, refTol [][]float64 // large blocks as of the last closer look
 	byPoly      []bool      // comparisonStable does not hold for the block
 	detOnly     bool
+	signOnly    bool        // while a change is located, only the number of growing modes matters
 	det         determinant // of the last matrix that oddAbove or oddBand factored
 
 	hMax     float64 // longest step that resolves the growth at the end
@@ -370,6 +371,10 @@ func (s *Solver) oddState(jac []float64, sig float64) blockState {
 	if !grows {
 		return st
 	}
+	if s.gd.signOnly {
+		st.count, st.re = 1, c
+		return st
+	}
 	// The bound of the last step is a good one to begin with, and need not be
 	// sharp while steps resolve it well.
 	if old := s.gd.cur[0].re; s.gd.cur[0].count == 1 && old > c {
@@ -381,11 +386,14 @@ func (s *Solver) oddState(jac []float64, sig float64) blockState {
 			c = 0.5 * old
 		}
 	}
-	for range 60 {
-		c *= 2
+	for range 30 {
+		c *= 4
 		if !odd(jac, c) {
 			break
 		}
+	}
+	if !odd(jac, 0.5*c) {
+		c *= 0.5
 	}
 	st.count, st.re = 1, c
 	return st
@@ -844,6 +852,8 @@ func (s *Solver) locateLoss(h float64) (float64, outcome) {
 	}
 	br := newBracket(0, h, fa, fb, 0.5*tol)
 	at := h
+	s.gd.signOnly = true
+	defer func() { s.gd.signOnly = false }()
 	if s.resolvedAll(h) {
 		// The dense output follows the modes: find the change on it first.
 		for !br.done() {
@@ -881,11 +891,14 @@ func (s *Solver) locateLoss(h float64) (float64, outcome) {
 		at = x
 		br.update(x, s.stabilityExcess(s.jac1, s.gd.end), s.stabilityChanged())
 	}
+	s.gd.signOnly = false
 	if at != br.b {
 		if !s.retake(br.b) {
 			s.gd.hRetry = 0.5 * br.b
 			return 0, s.lastOutcome
 		}
+	} else if s.gd.detOnly {
+		s.guardAll(s.gd.end, s.jac1, s.t+s.dir*at, s.y1)
 	}
 	if grows > 0 && h > br.b {
 		slope := rate / (h - br.b)
