@@ -141,7 +141,8 @@ func TestInterrupted(t *testing.T) {
 	stops := 0
 	for {
 		ctx, cancel := context.WithCancel(context.Background())
-		timer := time.AfterFunc(40*time.Millisecond, cancel)
+		// Ever later, so that a slow machine gets beyond a member.
+		timer := time.AfterFunc(time.Duration(40+5*stops)*time.Millisecond, cancel)
 		err := p.Run(ctx, dir, Options{Shard: 1, Shards: 1, Workers: 2})
 		timer.Stop()
 		cancel()
