@@ -224,8 +224,9 @@ const yardstick = `(() => { const t0 = performance.now(); let n = 0, sink = 0; d
 	n++; } while (performance.now() - t0 < 1500); return [(performance.now() - t0) / n, sink][0]; })()`
 
 // readyPieces is how many pieces of the yardstick a report may take to be ready.
-// A report takes 40 to 190.
-const readyPieces = 400
+// A report takes 40 to 190 on a busy machine and, since loading is not all
+// work, up to 360 on an idle one.
+const readyPieces = 1000
 
 // Every report is ready within two seconds of its navigation, by the page's own
 // clock. What fails is the ratio to other work on the same machine; the seconds
