@@ -674,3 +674,34 @@ func TestBandedSolve(t *testing.T) {
 		}
 	}
 }
+
+// TestBoundAfterLoss: once a change of a large whole Jacobian is located, its
+// bound of growth has no odd number of real eigenvalues above it.
+func TestBoundAfterLoss(t *testing.T) {
+	p := odetest.Brusselator(20)
+	lost := 0
+	for _, m := range allMethods {
+		for _, rtol := range []float64{1e-4, 1e-5, 1e-6} {
+			s := mustSolver(t, &Problem{Dim: 40, Func: p.Func, Autonomous: true, Band: &Band{2, 2}},
+				&Settings{Method: m, RelTol: rtol, AbsTol: []float64{rtol * 1e-2}})
+			if err := s.Init(0, p.T1, p.Y0); err != nil {
+				t.Fatal(err)
+			}
+			for done := false; !done; {
+				var err error
+				if done, err = s.Step(); err != nil {
+					t.Fatal(m, err)
+				}
+				if s.Growing() > 0 {
+					lost += len(s.Losses())
+					if re := s.gd.cur[0].re; s.oddBand(s.jac, re) {
+						t.Errorf("%v, rtol %g: an odd number of real eigenvalues above the bound %g at %g", m, rtol, re, s.T())
+					}
+				}
+			}
+		}
+	}
+	if lost == 0 {
+		t.Error("nothing was lost")
+	}
+}
