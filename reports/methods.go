@@ -34,14 +34,13 @@ func reuseOf(p *prose, works []record.Work) reuse {
 // reference list by author and year and remembers which.
 type prose struct {
 	labels map[string]string // key of a work -> as cited
-	cited  map[string]bool
 	paras  []string
 	b      strings.Builder
 	solved bool // carbon or outgassing is solved for
 }
 
 func newProse(works []record.Work) *prose {
-	return &prose{labels: labelsOf(works), cited: map[string]bool{}}
+	return &prose{labels: labelsOf(works)}
 }
 
 // labelsOf says how each work is cited. Works that share author and year get a
@@ -119,7 +118,6 @@ func (p *prose) refs(keys ...string) string {
 	for _, k := range keys {
 		if l := p.labels[k]; l != "" && !slices.Contains(out, l) {
 			out = append(out, l)
-			p.cited[k] = true
 		}
 	}
 	return strings.Join(out, "; ")
